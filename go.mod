@@ -1,0 +1,3 @@
+module tautbook
+
+go 1.26.8

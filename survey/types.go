@@ -1,0 +1,170 @@
+package survey
+
+import "time"
+
+// Point is one surveyed point in the frame of its survey, in metres.
+type Point struct {
+	ID      string  // point id as written in the file
+	E, N, Z float64 // easting (x), northing (y), elevation (z), m; E is the station and N is 0 in a two-column survey
+	Cov     Cov3    // covariance of (E, N, Z), m2; meaningful only when HasCov
+	HasCov  bool    // true when the file gave standard deviations for this point
+	Code    string  // code or description as written in the file, "" when the file has none
+	Line    int     // line of the file, counted from 1
+}
+
+// Cov3 is a symmetric 3x3 covariance of (E, N, Z) in m2, upper triangle.
+type Cov3 struct{ EE, EN, EZ, NN, NZ, ZZ float64 }
+
+// Role says what a point is on.
+type Role string
+
+// The roles that a code can map to.
+const (
+	OnCable  Role = "cable"
+	SupportA Role = "support A"
+	SupportB Role = "support B"
+	Control  Role = "control"
+	Ground   Role = "ground"
+	Ignored  Role = "ignored"
+)
+
+// CodeUse says how one code of the file was understood and how many points carry it.
+type CodeUse struct {
+	Code   string `json:"code"`
+	Role   Role   `json:"role"`
+	Cable  string `json:"cable,omitempty"`
+	Span   string `json:"span,omitempty"`
+	Points int    `json:"points"`
+	How    string `json:"how"` // why it was understood so, and the flag that changes it
+}
+
+// Guess is something that was not written in the file and had to be inferred; it is always printed.
+type Guess struct {
+	What  string `json:"what"`   // for example "separator"
+	Taken string `json:"taken"`  // for example "semicolon"
+	Why   string `json:"why"`    // the evidence
+	SetBy string `json:"set_by"` // the flag or file edit that settles it
+}
+
+// Notice is something in the input that deserves a look but does not stop the work.
+type Notice struct {
+	File   string `json:"file,omitempty"`
+	Line   int    `json:"line,omitempty"` // 0 when it concerns the whole file
+	Column string `json:"column,omitempty"`
+	Text   string `json:"text"`
+}
+
+// SpanPoints is what a survey holds of one cable span.
+type SpanPoints struct {
+	Cable, Span string
+	Points      []Point // points on the cable, in file order
+	A, B        *Point  // surveyed supports, nil when they were not surveyed
+}
+
+// Survey is one file of points, read and sorted, with everything that was assumed on the way.
+type Survey struct {
+	File       string       // name as given, "-" for standard input
+	SHA256     string       // of the bytes as received, hexadecimal
+	Encoding   string       // for example "UTF-8"
+	Separator  string       // "comma", "semicolon", "tab", "blanks"
+	Decimal    string       // "point" or "comma"
+	Header     []HeaderUse  // how each column was understood, in file order
+	LengthUnit string       // unit of the coordinates as written, for example "m" or "ft"
+	PointsRead int          // data rows
+	Spans      []SpanPoints // in order of first appearance
+	Control    []Point
+	Ground     []Point
+	Ignored    []Point
+	Codes      []CodeUse
+	Conditions Conditions
+	Guesses    []Guess
+	Notices    []Notice
+	Flat       bool // a two-column survey: station and elevation only
+}
+
+// HeaderUse says how one column of a file was understood.
+type HeaderUse struct {
+	Column int    `json:"column"` // counted from 1
+	Name   string `json:"name"`   // as written, "" in a headerless file
+	Field  string `json:"field"`  // id, easting, northing, elevation, station, code, u_easting, ... or "not used"
+	Unit   string `json:"unit,omitempty"`
+}
+
+// LoadStatus says whether the loads on the cable were looked at during the visit.
+type LoadStatus string
+
+// The three states of the record of loads; LoadsNotChecked is the default.
+const (
+	LoadsNotChecked LoadStatus = "not checked"
+	LoadsAsFiled    LoadStatus = "as filed"
+	LoadsListed     LoadStatus = "listed"
+)
+
+// Spread says along what a load is even.
+type Spread string
+
+// A load is even along the cable (ice, a clipped cable) or along the horizontal (a deck, people on it).
+const (
+	AlongCable Spread = "along cable"
+	AlongDeck  Spread = "along deck"
+)
+
+// ListedLoad is one load seen on the day that the design values do not contain.
+type ListedLoad struct {
+	Cable, Span string   // "" = every cable, every span
+	Load        Quantity // N/m along the cable or along the horizontal; negative for a load found missing
+	Spread      Spread
+	What        string // free text, for example "service pipe"
+}
+
+// Accuracy is the instrument's stated standard deviation of one point, m.
+type Accuracy struct {
+	Horizontal float64 // each of E and N
+	Vertical   float64 // Z
+}
+
+// Conditions are the circumstances of one visit. Absent values are nil, zero time or "".
+type Conditions struct {
+	Structure        string
+	Date             time.Time
+	CableTemperature *Quantity // degC
+	Wind             string
+	Loads            LoadStatus // "" means not stated, which counts as LoadsNotChecked
+	Listed           []ListedLoad
+	Instrument       string
+	Accuracy         *Accuracy
+	Crew             string
+	Notes            []string
+}
+
+// LoadKind says which load shapes a cable.
+type LoadKind string
+
+// The kinds of load of the design file.
+const (
+	LoadSelfWeight LoadKind = "self weight" // even along the cable: catenary
+	LoadDeck       LoadKind = "deck"        // even along the horizontal: parabola
+	LoadBoth       LoadKind = "both"        // the mixed curve
+)
+
+// Design holds the design values of one cable span, SI. A nil pointer means that the file does not give the value.
+type Design struct {
+	Structure, Cable, Span string
+	Load                   LoadKind
+	SelfWeight             *Quantity // N per metre of cable, unstressed, at the design temperature
+	DeckLoad               *Quantity // N per metre of horizontal
+	SpanLength             *Quantity // design_span: horizontal distance of the supports, m
+	Rise                   *Quantity // design_rise: z_B - z_A, m
+	Tension                *Quantity // design_tension: horizontal tension H, N
+	Sag                    *Quantity // design_sag: at mid-span, m
+	Temperature            *Quantity // design_temperature, degC
+	AxialStiffness         *Quantity // EA, N
+	Expansion              *Quantity // alpha, 1/degC
+	BreakingLoad           *Quantity // MBL, N
+	SafetyFactor           *float64
+	SlackBelow             *float64  // fraction of expected (0.10 for 10 %)
+	OverloadAbove          *float64  // fraction of expected
+	Diameter               *Quantity // m
+	TakeUpPerTurn          *Quantity // m of unstressed length for one turn
+	Line                   int       // line of cables.csv
+}
