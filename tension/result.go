@@ -1,0 +1,213 @@
+package tension
+
+import (
+	"tautbook/fit"
+	"tautbook/survey"
+)
+
+// Quantity is a value with its standard uncertainty; the field that holds it names the unit.
+type Quantity = survey.Quantity
+
+// Assessment is what one survey says about one cable span. It is the one result from which every sheet is printed.
+// Pointers are nil where the figure could not be worked out; Findings then say what was missing.
+type Assessment struct {
+	Structure string `json:"structure,omitempty"`
+	Cable     string `json:"cable"`
+	Span      string `json:"span"`
+
+	Fit  FitSummary  `json:"fit"`
+	Load LoadSummary `json:"load"`
+
+	// HorizontalTension is H = load as it hangs / curvature, N, valid if the load is as filed. Nil when the curvature is
+	// not known to be positive (value under 2 u); HorizontalTensionAtLeast then holds the 95 % lower bound.
+	HorizontalTension        *Quantity      `json:"horizontal_tension_N"`
+	HorizontalTensionAtLeast *float64       `json:"horizontal_tension_at_least_N,omitempty"`
+	Reactions                []Reaction     `json:"reactions"`
+	ImpliedLoad              *ImpliedLoad   `json:"implied_load_N_per_m"`
+	UnstressedLength         *LengthSummary `json:"unstressed_length_m,omitempty"`
+	AtDesignTemperature      *Quantity      `json:"horizontal_tension_at_design_temperature_N,omitempty"`
+	Expected                 *Expected      `json:"expected"`
+	Rival                    *Rival         `json:"rival_reading,omitempty"`
+	Stiffness                *Stiffness     `json:"stiffness,omitempty"`
+	Strength                 *Strength      `json:"strength_use"`
+
+	Verdict  Verdict      `json:"verdict"`
+	Reason   string       `json:"reason"`    // one sentence: why this verdict
+	NextStep string       `json:"next_step"` // one sentence: what to do or to measure now
+	Findings []Finding    `json:"findings"`
+	Budget   []BudgetLine `json:"budget"`
+
+	Drawing Drawing `json:"-"`
+}
+
+// Verdict is the word for the state of a cable.
+type Verdict string
+
+// The verdicts, see DESIGN "Verdict"; the probability rule is that of JCGM 106:2012.
+const (
+	AsDesigned Verdict = "as designed"
+	Slack      Verdict = "slack"
+	Overload   Verdict = "overload"
+	OffDesign  Verdict = "off design"
+	Undecided  Verdict = "undecided"
+	NoDesign   Verdict = "no design"
+)
+
+// FitSummary is the fitted shape in the figures that people use. Lengths in m, stations from support A.
+type FitSummary struct {
+	Shape             fit.Shape         `json:"shape"`
+	PointsUsed        int               `json:"points_used"`
+	Rejected          []fit.Suspect     `json:"rejected"`
+	Suspects          []fit.Suspect     `json:"suspects"`
+	DegreesOfFreedom  int               `json:"degrees_of_freedom"`
+	RMS               float64           `json:"rms_m"`
+	VarianceFactor    float64           `json:"variance_factor"` // dimensionless with a stated accuracy, else m2
+	AccuracyStated    bool              `json:"accuracy_stated"`
+	Widening          float64           `json:"widening"` // factor on u for correlated residuals
+	PlaneFrom         string            `json:"plane_from"`
+	AzimuthDeg        float64           `json:"azimuth_deg"`
+	Chord             Quantity          `json:"chord_m"` // horizontal
+	Rise              Quantity          `json:"rise_m"`
+	CatenaryConstant  *Quantity         `json:"catenary_constant_m,omitempty"`
+	ParabolaParameter *Quantity         `json:"parabola_parameter_m,omitempty"`
+	MixedConstant     *Quantity         `json:"mixed_constant_m,omitempty"` // (w + q) / H inverted, for the mixed curve
+	LowPointStation   *Quantity         `json:"low_point_station_m"`
+	LowPointElevation *Quantity         `json:"low_point_elevation_m"`
+	SagMid            Quantity          `json:"sag_mid_m"`
+	GreatestSag       Quantity          `json:"greatest_sag_m"`
+	GreatestSagAt     float64           `json:"greatest_sag_station_m"`
+	ArcLength         Quantity          `json:"arc_length_m"`
+	SagRatio          float64           `json:"sag_ratio"` // sag at mid-span / horizontal chord
+	Alternatives      []fit.Alternative `json:"alternatives"`
+}
+
+// LoadSummary says which load the forces rest on, N/m.
+type LoadSummary struct {
+	Kind       survey.LoadKind   `json:"kind"`
+	SelfWeight *Quantity         `json:"self_weight_N_per_m,omitempty"` // as filed, per metre of unstressed cable
+	DeckLoad   *Quantity         `json:"deck_load_N_per_m,omitempty"`   // as filed, per metre of horizontal
+	Listed     []ListedLoad      `json:"listed,omitempty"`              // seen on the day beside the filed load
+	Hanging    Quantity          `json:"hanging_N_per_m"`               // all of it, per metre as it hangs: H = hanging x a
+	Record     survey.LoadStatus `json:"record"`                        // not checked, as filed, listed
+}
+
+// ListedLoad is a load recorded on the day.
+type ListedLoad struct {
+	Load   Quantity      `json:"load_N_per_m"`
+	Spread survey.Spread `json:"spread"`
+	What   string        `json:"what"`
+}
+
+// Reaction is the force of a support on the cable, along the end tangent.
+type Reaction struct {
+	Support    string   `json:"support"`  // A or B
+	Surveyed   bool     `json:"surveyed"` // false: the outermost point stands in for the support
+	Station    float64  `json:"station_m"`
+	Elevation  float64  `json:"elevation_m"` // of the fitted cable there
+	Horizontal Quantity `json:"horizontal_N"`
+	Vertical   Quantity `json:"vertical_N"`
+	Tension    Quantity `json:"tension_N"`
+	SlopeDeg   Quantity `json:"slope_deg"` // dz/ds from A to B as an angle
+}
+
+// ImpliedLoad is the even load, N per metre as it hangs, that the fitted shape needs under two assumptions.
+type ImpliedLoad struct {
+	IfTensionAsExpected *Quantity `json:"if_tension_as_expected,omitempty"`
+	IfLengthAsDesigned  *Quantity `json:"if_length_as_designed,omitempty"`
+	Filed               Quantity  `json:"filed"` // the design load as it hangs, for comparison
+}
+
+// LengthSummary compares unstressed lengths at the design temperature, m.
+type LengthSummary struct {
+	Today      Quantity `json:"today"`  // if the load is as recorded
+	Design     Quantity `json:"design"` // from the design values
+	Difference Quantity `json:"difference"`
+}
+
+// Expected is the state that the designer's cable would have today: its unstressed length, today's temperature and
+// span, and the load on record. Probabilities follow JCGM 106:2012.
+type Expected struct {
+	HorizontalTension Quantity `json:"horizontal_tension_N"`
+	SagMid            Quantity `json:"sag_mid_m"`
+	Ratio             Quantity `json:"ratio"` // tension today / expected
+	PSlack            float64  `json:"p_slack"`
+	PInside           float64  `json:"p_inside"`
+	POverload         float64  `json:"p_overload"`
+	SlackBelow        float64  `json:"slack_below_ratio"`    // for example 0.90
+	OverloadAbove     float64  `json:"overload_above_ratio"` // for example 1.10
+	LimitsFrom        string   `json:"limits_from"`          // "cables file" or "default, common practice"
+	SpanFrom          string   `json:"span_from"`            // "surveyed supports" or "design"
+	TemperatureShift  float64  `json:"temperature_shift_degC"`
+	Uncorrected       Quantity `json:"ratio_without_temperature_N_per_N"` // today / design tension: what a naive check would say
+	LoadRatio         Quantity `json:"load_ratio"`                        // load on record / design load
+}
+
+// Rival is the other reading of the same shape: the cable still has its designed unstressed length and the load differs.
+type Rival struct {
+	HorizontalTension Quantity `json:"horizontal_tension_N"`
+	Ratio             Quantity `json:"ratio"`       // to the expected tension
+	LoadFactor        Quantity `json:"load_factor"` // load needed / load on record
+	ExtraLoad         Quantity `json:"extra_load_N_per_m"`
+	PLoadLess         float64  `json:"p_load_below_limit"`
+	PLoadMore         float64  `json:"p_load_above_limit"`
+	Excluded          bool     `json:"excluded"`
+	ExcludedBy        string   `json:"excluded_by,omitempty"`
+}
+
+// Stiffness says how the shape and the tension answer to load, from the exact elastic state.
+type Stiffness struct {
+	Lambda2          float64  `json:"lambda_squared"`          // Irvine (1981)
+	SagPerLoad       float64  `json:"sag_change_per_load"`     // relative change of sag / relative change of even load
+	TensionPerLoad   float64  `json:"tension_change_per_load"` // the same for H
+	TensionPerDegree float64  `json:"tension_change_N_per_degC"`
+	HiddenLoad       *float64 `json:"hidden_load_N_per_m,omitempty"` // even load that moves the sag by less than U; nil: more than ten times the load
+	Meaning          string   `json:"meaning"`
+}
+
+// Strength holds the greatest tension in the span against the permitted one, MBL / safety factor.
+type Strength struct {
+	Use          Quantity  `json:"use"` // T_max / permitted, if the load is as on record
+	POver        float64   `json:"p_over"`
+	Permitted    float64   `json:"permitted_N"`
+	GreatestT    Quantity  `json:"greatest_tension_N"`
+	RivalUse     *Quantity `json:"use_in_rival_reading,omitempty"`
+	RivalPOver   *float64  `json:"p_over_in_rival_reading,omitempty"`
+	SafetyFactor float64   `json:"safety_factor"`
+}
+
+// Level says how much a finding weighs.
+type Level string
+
+// Levels of a finding, heaviest first.
+const (
+	Act  Level = "act"  // something to do before the next load
+	Look Level = "look" // something to check
+	Note Level = "note" // something to know
+)
+
+// Finding is one thing that the reader should know, in a sentence with its numbers.
+type Finding struct {
+	ID    string `json:"id"`
+	Level Level  `json:"level"`
+	Text  string `json:"text"`
+}
+
+// BudgetLine is one input's share in the uncertainty of the ratio (of H when there is no expected state).
+type BudgetLine struct {
+	Input string  `json:"input"`
+	Value string  `json:"value"`       // with unit, as printed
+	U     string  `json:"u"`           // with unit, as printed
+	OnH   float64 `json:"u_tension_N"` // standard uncertainty of H that it causes, N
+	OnR   float64 `json:"u_ratio"`     // standard uncertainty of the ratio that it causes
+	Share float64 `json:"share"`       // of the variance, 0 to 1
+}
+
+// Drawing is what a picture of the span needs; m, stations from A.
+type Drawing struct {
+	Stations, Elevations, Residuals []float64    // points used
+	IDs                             []string     // of the points used
+	Curve                           fit.Curve    // fitted
+	Expected                        *fit.Curve   // the designer's cable today, between the same ends
+	From, To                        float64      // stations of the chord ends
+	Dropped                         [][2]float64 // station, elevation of rejected points
+}
