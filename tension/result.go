@@ -15,6 +15,9 @@ type Assessment struct {
 	Cable     string `json:"cable"`
 	Span      string `json:"span"`
 
+	SurveyFile  string    `json:"survey_file"`            // the file that its points came from
+	Temperature *Quantity `json:"cable_temperature_degC"` // on the day, nil when not recorded
+
 	Fit  FitSummary  `json:"fit"`
 	Load LoadSummary `json:"load"`
 
