@@ -130,19 +130,19 @@ type LengthSummary struct {
 // Expected is the state that the designer's cable would have today: its unstressed length, today's temperature and
 // span, and the load on record. Probabilities follow JCGM 106:2012.
 type Expected struct {
-	HorizontalTension Quantity `json:"horizontal_tension_N"`
-	SagMid            Quantity `json:"sag_mid_m"`
-	Ratio             Quantity `json:"ratio"` // tension today / expected
-	PSlack            float64  `json:"p_slack"`
-	PInside           float64  `json:"p_inside"`
-	POverload         float64  `json:"p_overload"`
-	SlackBelow        float64  `json:"slack_below_ratio"`    // for example 0.90
-	OverloadAbove     float64  `json:"overload_above_ratio"` // for example 1.10
-	LimitsFrom        string   `json:"limits_from"`          // "cables file" or "default, common practice"
-	SpanFrom          string   `json:"span_from"`            // "surveyed supports" or "design"
-	TemperatureShift  float64  `json:"temperature_shift_degC"`
-	Uncorrected       Quantity `json:"ratio_without_temperature_N_per_N"` // today / design tension: what a naive check would say
-	LoadRatio         Quantity `json:"load_ratio"`                        // load on record / design load
+	HorizontalTension Quantity  `json:"horizontal_tension_N"`
+	SagMid            Quantity  `json:"sag_mid_m"`
+	Ratio             *Quantity `json:"ratio"` // tension today / expected; nil when HorizontalTension is
+	PSlack            float64   `json:"p_slack"`
+	PInside           float64   `json:"p_inside"`
+	POverload         float64   `json:"p_overload"`
+	SlackBelow        float64   `json:"slack_below_ratio"`    // for example 0.90
+	OverloadAbove     float64   `json:"overload_above_ratio"` // for example 1.10
+	LimitsFrom        string    `json:"limits_from"`          // "cables file" or "default, common practice"
+	SpanFrom          string    `json:"span_from"`            // "surveyed supports" or "design"
+	TemperatureShift  float64   `json:"temperature_shift_degC"`
+	Uncorrected       *Quantity `json:"ratio_to_design_tension"` // tension today / design tension, not brought to the day; nil when HorizontalTension is
+	LoadRatio         Quantity  `json:"load_ratio"`              // load on record / design load
 }
 
 // Rival is the other reading of the same shape: the cable still has its designed unstressed length and the load differs.
