@@ -14,17 +14,16 @@ type Scale struct {
 
 // The printing units of sheets and sentences.
 var (
-	Newton          = Scale{"N", 1}
-	Kilonewton      = Scale{"kN", 1e3}
-	Meganewton      = Scale{"MN", 1e6}
-	Metre           = Scale{"m", 1}
-	Millimetre      = Scale{"mm", 1e-3}
-	NewtonPerMetre  = Scale{"N/m", 1}
-	KilonewtonPerMe = Scale{"kN/m", 1e3}
-	DegreeCelsius   = Scale{"°C", 1}
-	Degree          = Scale{"°", 1}
-	Percent         = Scale{"%", 0.01}
-	Plain           = Scale{"", 1}
+	Newton         = Scale{"N", 1}
+	Kilonewton     = Scale{"kN", 1e3}
+	Meganewton     = Scale{"MN", 1e6}
+	Metre          = Scale{"m", 1}
+	Millimetre     = Scale{"mm", 1e-3}
+	NewtonPerMetre = Scale{"N/m", 1}
+	DegreeCelsius  = Scale{"°C", 1}
+	Degree         = Scale{"°", 1}
+	Percent        = Scale{"%", 0.01}
+	Plain          = Scale{"", 1}
 )
 
 // ForceScale is the force unit in which a value of this size (N) reads best.
@@ -72,6 +71,9 @@ func (s Scale) Figure(q Quantity) string {
 func (s Scale) Value(q Quantity) string {
 	return s.suffix(fixed(q.Value/s.Per, Decimals(q.Value/s.Per, q.Expanded()/s.Per)))
 }
+
+// About prints a number that is good to two significant digits.
+func (s Scale) About(v float64) string { return s.Value(Quantity{Value: v, U: math.Abs(v) / 2}) }
 
 func (s Scale) suffix(text string) string {
 	switch s.Unit {

@@ -141,8 +141,9 @@ type Expected struct {
 	LimitsFrom        string    `json:"limits_from"`          // "cables file" or "default, common practice"
 	SpanFrom          string    `json:"span_from"`            // "surveyed supports" or "design"
 	TemperatureShift  float64   `json:"temperature_shift_degC"`
-	Uncorrected       *Quantity `json:"ratio_to_design_tension"` // tension today / design tension, not brought to the day; nil when HorizontalTension is
-	LoadRatio         Quantity  `json:"load_ratio"`              // load on record / design load
+	Uncorrected       *Quantity `json:"ratio_to_design_tension"`               // tension today / design tension, not brought to the day; nil when HorizontalTension is
+	UnderFiledLoad    Quantity  `json:"horizontal_tension_under_filed_load_N"` // without the loads seen on the day
+	LoadRatio         Quantity  `json:"load_ratio"`                            // load on record / design load
 }
 
 // Rival is the other reading of the same shape: the cable still has its designed unstressed length and the load differs.

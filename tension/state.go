@@ -3,6 +3,8 @@ package tension
 import (
 	"fmt"
 	"math"
+
+	"tautbook/fit/hanging"
 )
 
 func (c Cable) check(ch Chord, dt float64) error {
@@ -21,8 +23,8 @@ func (c Cable) check(ch Chord, dt float64) error {
 	return nil
 }
 
-func (c Cable) equation(h, dt float64) equation {
-	return equation{kw: c.SelfWeight / h, kq: c.DeckLoad / h, eta: h / c.AxialStiffness, g: 1 + c.Expansion*dt}
+func (c Cable) equation(h, dt float64) hanging.Equation {
+	return hanging.Equation{KW: c.SelfWeight / h, KQ: c.DeckLoad / h, Eta: h / c.AxialStiffness, G: 1 + c.Expansion*dt}
 }
 
 // AtTension is the state with horizontal tension h (N, > 0) at dt degC above the reference temperature: it gives the
@@ -35,12 +37,12 @@ func (c Cable) AtTension(h float64, ch Chord, dt float64) (State, error) {
 		return State{}, fmt.Errorf("%w: horizontal tension %g N", errBadInputs, h)
 	}
 	e := c.equation(h, dt)
-	a, b := e.start(ch)
-	a, b, err := e.span(ch, a, b)
+	a, b := e.Start(ch.Length, ch.Rise)
+	a, b, err := e.Span(ch.Length, ch.Rise, a, b)
 	if err != nil {
-		return State{}, err
+		return State{}, fmt.Errorf("%w: %w", ErrNoState, err)
 	}
-	return State{Cable: c, Chord: ch, DT: dt, H: h, Unstressed: e.between(a, b).s, psiA: a, psiB: b}, nil
+	return State{Cable: c, Chord: ch, DT: dt, H: h, Unstressed: e.Between(a, b).S, psiA: a, psiB: b}, nil
 }
 
 // AtLength is the state of a cable with unstressed length s0 (m, at the reference temperature) at dt degC above that
@@ -63,17 +65,17 @@ func (c Cable) AtLength(s0 float64, ch Chord, dt float64) (State, error) {
 // lengthRoot does the bracketed Newton iteration of AtLength from tension h.
 func (c Cable) lengthRoot(s0 float64, ch Chord, dt, h float64) (State, error) {
 	lo, hi := 0.0, math.Inf(1)
-	a, b := c.equation(h, dt).start(ch)
+	a, b := c.equation(h, dt).Start(ch.Length, ch.Rise)
 	var err error
 	for range 200 {
 		e := c.equation(h, dt)
-		if a, b, err = e.span(ch, a, b); err != nil {
-			a, b = e.start(ch)
-			if a, b, err = e.span(ch, a, b); err != nil {
-				return State{}, err
+		if a, b, err = e.Span(ch.Length, ch.Rise, a, b); err != nil {
+			a, b = e.Start(ch.Length, ch.Rise)
+			if a, b, err = e.Span(ch.Length, ch.Rise, a, b); err != nil {
+				return State{}, fmt.Errorf("%w: %w", ErrNoState, err)
 			}
 		}
-		s := e.between(a, b).s
+		s := e.Between(a, b).S
 		miss := s - s0
 		if miss > 0 {
 			lo = h
@@ -89,7 +91,7 @@ func (c Cable) lengthRoot(s0 float64, ch Chord, dt, h float64) (State, error) {
 			return State{Cable: c, Chord: ch, DT: dt, H: h, Unstressed: s0, psiA: a, psiB: b}, nil
 		}
 		if next > 4*h || next < h/4 { // far: the old tangents are no start
-			a, b = c.equation(next, dt).start(ch)
+			a, b = c.equation(next, dt).Start(ch.Length, ch.Rise)
 		}
 		h = next
 	}
@@ -110,13 +112,13 @@ func middle(lo, hi float64) float64 {
 
 // lengthByTension is dS0/dH at a fixed chord, m/N: the direct part and that through the end tangents, which move so that
 // the chord stays.
-func (c Cable) lengthByTension(e equation, a, b, h float64) float64 {
-	d := e.betweenByH(a, b, h, c.AxialStiffness)
-	ra, rb := e.rate(a), e.rate(b)
+func (c Cable) lengthByTension(e hanging.Equation, a, b, h float64) float64 {
+	d := e.ByLogTension(a, b)
+	ra, rb := e.Rate(a), e.Rate(b)
 	det := 2 * math.Sinh((b-a)/2) * math.Cosh((a+b)/2)
-	da := (-d.y + math.Sinh(b)*d.x) / (ra.x * det)
-	db := (-d.y + math.Sinh(a)*d.x) / (rb.x * det)
-	return d.s - ra.s*da + rb.s*db
+	da := (-d.Y + math.Sinh(b)*d.X) / (ra.X * det)
+	db := (-d.Y + math.Sinh(a)*d.X) / (rb.X * det)
+	return (d.S - ra.S*da + rb.S*db) / h
 }
 
 // startTension solves the parabolic approximation g s0 (1 + T/EA) = chord + p^2 l^3 cos^3 / (24 H^2) for H, NaN when there is
@@ -207,17 +209,14 @@ func (s State) GreatestTension() float64 { return math.Max(s.TensionA(), s.Tensi
 // SagMid is the vertical distance from the chord down to the cable at mid-span, m.
 func (s State) SagMid() float64 {
 	e := s.Cable.equation(s.H, s.DT)
-	half := s.Chord.Length / 2
-	psi := (s.psiA + s.psiB) / 2
-	for range 50 {
-		l := e.between(s.psiA, psi)
-		step := (half - l.x) / e.rate(psi).x
-		psi += step
-		if math.Abs(step) <= 1e-14*(math.Abs(psi)+s.psiB-s.psiA) {
-			break
-		}
-	}
-	return -e.below(s.psiA, psi, s.Chord.Rise/s.Chord.Length)
+	psi := e.Reach(s.psiA, (s.psiA+s.psiB)/2, s.Chord.Length/2)
+	return -e.Below(s.psiA, psi, s.Chord.Rise/s.Chord.Length)
+}
+
+// Height is the elevation of the cable above support A at a station (m from A, within the span), m.
+func (s State) Height(station float64) float64 {
+	e := s.Cable.equation(s.H, s.DT)
+	return e.Between(s.psiA, e.Reach(s.psiA, s.psiA+(s.psiB-s.psiA)*station/s.Chord.Length, station)).Y
 }
 
 // Lambda2 is Irvine's parameter of the state, dimensionless: (w l cos / T)^2 l' / (T Le / EA) on the inclined chord, with

@@ -1,4 +1,4 @@
-package tension
+package hanging
 
 import (
 	"math"

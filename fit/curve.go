@@ -1,0 +1,225 @@
+package fit
+
+import "math"
+
+// sinhc is sinh(x)/x and its derivative, smooth through zero. The series are exact to rounding for |x| < 1.
+func sinhc(x float64) (s, d float64) {
+	if x2 := x * x; x2 < 1 {
+		s = 1 + x2/6*(1+x2/20*(1+x2/42*(1+x2/72*(1+x2/110*(1+x2/156*(1+x2/210*(1+x2/272)))))))
+		d = x / 3 * (1 + x2/10*(1+x2/28*(1+x2/54*(1+x2/88*(1+x2/130*(1+x2/180*(1+x2/238)))))))
+		return s, d
+	}
+	s = math.Sinh(x) / x
+	return s, (math.Cosh(x) - s) / x
+}
+
+// Shape is the family that the curve belongs to.
+func (c Curve) Shape() Shape {
+	switch c.SelfShare {
+	case 1:
+		return Catenary
+	case 0:
+		return Parabola
+	default:
+		return Mixed
+	}
+}
+
+// Constant is the catenary constant a or parabola parameter p, 1/Curvature, m; infinite for a straight line.
+func (c Curve) Constant() float64 { return 1 / c.Curvature }
+
+func (c Curve) middle() float64 { return (c.S1 + c.S2) / 2 }
+func (c Curve) length() float64 { return c.S2 - c.S1 }
+func (c Curve) chord() float64  { return (c.Z2 - c.Z1) / (c.S2 - c.S1) }
+
+// above is the height over the line through the two defining points, m. It is in product form: nothing is lost for a taut
+// cable, and the value passes smoothly through zero curvature.
+//
+// With m the middle station, L the distance and t the slope of the line, S(x) = sinh(x)/x, u = k(s-m), l = kL/2 and
+// sinh(psi) = t/S(l), the catenary is
+//
+//	z - line = t (s-m) (S(u) - S(l))/S(l) + cosh(psi) (k/2) (s-S1)(s-S2) S((u+l)/2) S((u-l)/2)
+func (c Curve) above(s float64) float64 {
+	k := c.Curvature
+	bow := k / 2 * (s - c.S1) * (s - c.S2)
+	switch c.Shape() {
+	case Parabola:
+		return bow
+	case Mixed:
+		return c.aboveMixed(s)
+	}
+	m, t := c.middle(), c.chord()
+	u, l := k*(s-m), k*c.length()/2
+	sl, _ := sinhc(l)
+	sp, _ := sinhc((u + l) / 2)
+	sm, _ := sinhc((u - l) / 2)
+	// S(u) - S(l), whose relative error matters for a steep taut cable: (u^2-l^2) times a smooth quotient.
+	ratio := t / sl
+	return t*(s-m)*sinhcDifference(u, l)/sl + math.Sqrt(1+ratio*ratio)*bow*sp*sm
+}
+
+// sinhcDifference is S(x) - S(y) without cancellation for small arguments.
+func sinhcDifference(x, y float64) float64 {
+	x2, y2 := x*x, y*y
+	if x2 >= 1 || y2 >= 1 {
+		sx, _ := sinhc(x)
+		sy, _ := sinhc(y)
+		return sx - sy
+	}
+	// Sum over n of (x^2n - y^2n)/(2n+1)!, each difference as (x^2 - y^2) times the sum of mixed powers.
+	mixed, power, factor, sum := 1.0, 1.0, 1.0/6, 0.0
+	for n := 1; n <= 9; n++ {
+		sum += mixed * factor
+		power *= y2
+		mixed = mixed*x2 + power
+		factor /= float64((2*n + 2) * (2*n + 3))
+	}
+	return (x2 - y2) * sum
+}
+
+// psi is the tangent angle measure (slope = sinh psi) of a catenary at the middle station.
+func (c Curve) psi() float64 {
+	s, _ := sinhc(c.Curvature * c.length() / 2)
+	return math.Asinh(c.chord() / s)
+}
+
+// Z is the elevation of the curve at a station, m.
+func (c Curve) Z(s float64) float64 {
+	return (c.Z1+c.Z2)/2 + c.chord()*(s-c.middle()) + c.above(s)
+}
+
+// Slope is dz/ds at a station, dimensionless.
+func (c Curve) Slope(s float64) float64 {
+	switch c.Shape() {
+	case Parabola:
+		return c.chord() + c.Curvature*(s-c.middle())
+	case Mixed:
+		return c.slopeMixed(s)
+	default:
+		return math.Sinh(c.Curvature*(s-c.middle()) + c.psi())
+	}
+}
+
+// LowPoint is the station and elevation where the tangent is level, m; it may lie outside the span. ok is false when the
+// curvature is not positive.
+func (c Curve) LowPoint() (station, elevation float64, ok bool) {
+	if !(c.Curvature > 0) {
+		return 0, 0, false
+	}
+	station = c.whereSlope(0)
+	return station, c.Z(station), true
+}
+
+// whereSlope is the station at which the slope has the given value; the curvature must not be zero.
+func (c Curve) whereSlope(t float64) float64 {
+	switch c.Shape() {
+	case Parabola:
+		return c.middle() + (t-c.chord())/c.Curvature
+	case Mixed:
+		return c.whereSlopeMixed(t)
+	default:
+		return c.middle() + (math.Asinh(t)-c.psi())/c.Curvature
+	}
+}
+
+// ArcLength is the length of the curve between two stations, m, negative when sb < sa.
+func (c Curve) ArcLength(sa, sb float64) float64 {
+	switch c.Shape() {
+	case Parabola:
+		ta, tb := c.Slope(sa), c.Slope(sb)
+		return parabolaArc(sb-sa, ta, tb, c.Curvature*(sb-sa))
+	case Mixed:
+		return c.arcMixed(sa, sb)
+	}
+	m, k := c.middle(), c.Curvature
+	ua, ub := k*(sa-m), k*(sb-m)
+	s, _ := sinhc((ub - ua) / 2)
+	return (sb - sa) * s * math.Cosh((ua+ub)/2+c.psi())
+}
+
+// parabolaArc is the integral of sqrt(1 + t^2) over a run in which the slope goes evenly from ta to tb = ta + d, in a form
+// that keeps its digits when d is small.
+func parabolaArc(run, ta, tb, d float64) float64 {
+	ra, rb := math.Hypot(1, ta), math.Hypot(1, tb)
+	lift := ta * (ta + tb) / (ra + rb)
+	inner := ra - lift // asinh(tb) - asinh(ta) = asinh(d inner)
+	x := d * inner
+	part := 1.0
+	if math.Abs(x) > 1e-4 {
+		part = math.Asinh(x) / x
+	} else {
+		part -= x * x / 6
+	}
+	return run / 2 * (rb + lift + inner*part)
+}
+
+// Rebase is the same curve, defined by its heights at two other stations sa < sb.
+func (c Curve) Rebase(sa, sb float64) Curve {
+	return Curve{S1: sa, Z1: c.Z(sa), S2: sb, Z2: c.Z(sb), Curvature: c.Curvature, SelfShare: c.SelfShare}
+}
+
+// Sag is the vertical distance at station s from the chord between stations sa and sb down to the curve, m.
+func (c Curve) Sag(s, sa, sb float64) float64 { return -c.Rebase(sa, sb).above(s) }
+
+// GreatestSag is the station and size, m, of the greatest sag below the chord between stations sa and sb: where the tangent
+// is parallel to the chord.
+func (c Curve) GreatestSag(sa, sb float64) (station, sag float64) {
+	b := c.Rebase(sa, sb)
+	station = b.middle()
+	if c.Curvature != 0 {
+		station = min(max(b.whereSlope(b.chord()), sa), sb)
+	}
+	return station, -b.above(station)
+}
+
+// Gradient fills g with dz/d(Z1, Z2, Curvature) at station s: dimensionless, dimensionless, m2.
+func (c Curve) Gradient(s float64, g *[3]float64) {
+	switch c.Shape() {
+	case Parabola:
+		part := (s - c.S1) / c.length()
+		g[0], g[1], g[2] = 1-part, part, (s-c.S1)*(s-c.S2)/2
+	case Mixed:
+		c.gradientMixed(s, g)
+	default:
+		e := c.prepare()
+		e.at(s, g)
+	}
+}
+
+// catenaryTerms are the parts of a catenary that do not depend on the station, so that a fit computes them once a step.
+type catenaryTerms struct {
+	c                Curve
+	m, l, t, k, h    float64
+	sl, dl           float64 // S(kL/2) and its derivative
+	ratio, cosh      float64 // sinh and cosh of psi
+	ratioByK, coshBy float64 // their derivatives by curvature
+}
+
+func (c Curve) prepare() catenaryTerms {
+	e := catenaryTerms{c: c, m: c.middle(), l: c.length(), t: c.chord(), k: c.Curvature}
+	e.h = e.k * e.l / 2
+	e.sl, e.dl = sinhc(e.h)
+	e.ratio = e.t / e.sl
+	e.cosh = math.Sqrt(1 + e.ratio*e.ratio)
+	e.ratioByK = -e.ratio * e.dl / e.sl * e.l / 2
+	e.coshBy = e.ratio * e.ratioByK / e.cosh
+	return e
+}
+
+// at is the height of the catenary at s; g, when not nil, gets the gradient.
+func (e *catenaryTerms) at(s float64, g *[3]float64) float64 {
+	d1, d2, x := s-e.c.S1, s-e.c.S2, s-e.m
+	u := e.k * x
+	su, du := sinhc(u)
+	sp, dp := sinhc((u + e.h) / 2)
+	sm, dm := sinhc((u - e.h) / 2)
+	bow := e.k / 2 * d1 * d2
+	pq := sp * sm
+	z := (e.c.Z1+e.c.Z2)/2 + e.ratio*x*su + e.cosh*bow*pq
+	if g != nil {
+		byT := x*su/e.sl + e.ratio/(e.cosh*e.sl)*bow*pq
+		g[0], g[1] = 0.5-byT/e.l, 0.5+byT/e.l
+		g[2] = e.ratioByK*x*su + e.ratio*x*du*x + d1*d2/2*e.cosh*pq + bow*(e.coshBy*pq+e.cosh*(dp*d1/2*sm+sp*dm*d2/2))
+	}
+	return z
+}

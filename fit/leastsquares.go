@@ -1,0 +1,372 @@
+package fit
+
+import (
+	"errors"
+	"fmt"
+	"math"
+)
+
+// Problem is a nonlinear least-squares problem: minimise sum r_i(theta)^2.
+type Problem interface {
+	// Size is the number of residuals m and of parameters n, m >= n.
+	Size() (m, n int)
+	// Residuals fills r (length m), each divided by its standard deviation.
+	Residuals(theta, r []float64)
+	// Jacobian fills j, column-major m x n, with dr_i/dtheta_j.
+	Jacobian(theta, j []float64)
+}
+
+// Status says how an iteration ended.
+type Status int
+
+// The ends of an iteration.
+const (
+	Converged  Status = iota // step and gradient are at the level of rounding
+	Stalled                  // no step lowers the sum of squares any more, the gradient is small
+	OutOfSteps               // MaxIterations reached
+	NotFinite                // residuals or derivatives are not finite at the start
+)
+
+// Err is nil for a usable end.
+func (s Status) Err() error {
+	switch s {
+	case Converged, Stalled:
+		return nil
+	case OutOfSteps:
+		return errors.New("fit: the iteration limit was reached before convergence")
+	default:
+		return errors.New("fit: residuals are not finite at the starting values")
+	}
+}
+
+// ErrRank means that the data do not determine all parameters.
+var ErrRank = errors.New("fit: the points do not determine the curve")
+
+// conditionLimit is the condition number of the column-scaled Jacobian beyond which a covariance is refused: half of the
+// digits of float64.
+const conditionLimit = 1e10
+
+// Solution is what Solve found.
+type Solution struct {
+	Theta      []float64
+	Sum        float64 // sum of squared residuals
+	Iterations int
+	Status     Status
+	Condition  float64 // of the column-scaled Jacobian at the solution, in the 1-norm
+}
+
+// Solver holds the work space of Levenberg-Marquardt iterations; reuse it for many fits of like size. The zero value is
+// ready. A Solver must not be used by two goroutines at once.
+type Solver struct {
+	MaxIterations int // 0 = 200
+	f             qr
+	r, trial, qtr []float64
+	theta, next   []float64
+	diag, step    []float64
+	w1, w2, w3    []float64
+	rt, sdiag     []float64 // n x n copy of R for the damped steps
+}
+
+const eps = 0x1p-52
+
+// Solve minimises from start. The method is the trust-region form of Levenberg-Marquardt by More (1978), The
+// Levenberg-Marquardt algorithm: implementation and theory, Lecture Notes in Mathematics 630, 105-116, on a pivoted QR
+// factorisation of the Jacobian, followed by undamped Gauss-Newton steps while they lower the gradient.
+func (s *Solver) Solve(p Problem, start []float64) Solution {
+	m, n := p.Size()
+	s.resize(m, n)
+	copy(s.theta, start)
+	p.Residuals(s.theta, s.r)
+	fnorm := norm(s.r)
+	out := Solution{Status: NotFinite}
+	if math.IsNaN(fnorm) || math.IsInf(fnorm, 0) {
+		return s.finish(out, fnorm)
+	}
+	limit := s.MaxIterations
+	if limit == 0 {
+		limit = 200
+	}
+	out.Status = OutOfSteps
+	delta, par := 0.0, 0.0
+	for out.Iterations < limit {
+		out.Iterations++
+		s.linearise(p)
+		if out.Iterations == 1 {
+			delta = s.scale(true)
+		} else {
+			s.scale(false)
+		}
+		done, norm1 := s.lower(p, fnorm, &delta, &par)
+		fnorm = norm1
+		if done != OutOfSteps {
+			out.Status = done
+			break
+		}
+	}
+	fnorm = s.polish(p, fnorm)
+	return s.finish(out, fnorm)
+}
+
+func (s *Solver) finish(out Solution, fnorm float64) Solution {
+	out.Theta, out.Sum = s.theta, fnorm*fnorm
+	return out
+}
+
+func (s *Solver) resize(m, n int) {
+	s.f.resize(m, n)
+	s.r, s.trial, s.qtr = grow(s.r, m), grow(s.trial, m), grow(s.qtr, m)
+	for _, v := range []*[]float64{&s.theta, &s.next, &s.diag, &s.step, &s.w1, &s.w2, &s.w3, &s.sdiag} {
+		*v = grow(*v, n)
+	}
+	s.rt = grow(s.rt, n*n)
+}
+
+// linearise factorises the Jacobian at theta and rotates the residuals.
+func (s *Solver) linearise(p Problem) {
+	p.Jacobian(s.theta, s.f.a)
+	s.f.factor()
+	copy(s.qtr, s.r)
+	s.f.applyQT(s.qtr)
+}
+
+// scale updates the scaling of the parameters by the column norms and returns the first trust radius.
+func (s *Solver) scale(first bool) float64 {
+	size := 0.0
+	for j, c := range s.f.norm {
+		switch {
+		case first && c == 0:
+			s.diag[j] = 1
+		case first || c > s.diag[j]:
+			s.diag[j] = c
+		}
+		size += s.diag[j] * s.theta[j] * s.diag[j] * s.theta[j]
+	}
+	if size == 0 {
+		return 1
+	}
+	return math.Sqrt(size)
+}
+
+// lower tries damped steps until one lowers the sum of squares. It returns OutOfSteps to go on.
+func (s *Solver) lower(p Problem, fnorm float64, delta, par *float64) (Status, float64) {
+	if fnorm == 0 || s.gradient(fnorm) <= eps {
+		return Converged, fnorm
+	}
+	for {
+		s.damped(*delta, par)
+		pnorm := 0.0
+		for j, d := range s.step {
+			s.next[j] = s.theta[j] - d
+			pnorm += s.diag[j] * d * s.diag[j] * d
+		}
+		pnorm = math.Sqrt(pnorm)
+		p.Residuals(s.next, s.trial)
+		fnorm1 := norm(s.trial)
+		actual := -1.0
+		if 0.1*fnorm1 < fnorm {
+			actual = 1 - (fnorm1/fnorm)*(fnorm1/fnorm)
+		}
+		t1, t2 := s.predicted()/fnorm, math.Sqrt(*par)*pnorm/fnorm
+		predicted, slope := t1*t1+2*t2*t2, -(t1*t1 + t2*t2)
+		ratio := 0.0
+		if predicted != 0 {
+			ratio = actual / predicted
+		}
+		s.radius(ratio, actual, slope, fnorm, fnorm1, pnorm, delta, par)
+		if ratio >= 1e-4 {
+			copy(s.theta, s.next)
+			copy(s.r, s.trial)
+			fnorm = fnorm1
+		}
+		size := 0.0
+		for j, x := range s.theta {
+			size += s.diag[j] * x * s.diag[j] * x
+		}
+		switch size = math.Sqrt(size); {
+		case math.Abs(actual) <= eps && predicted <= eps && ratio <= 2:
+			return Converged, fnorm
+		case *delta <= 4*eps*size:
+			return Stalled, fnorm
+		case ratio >= 1e-4:
+			return OutOfSteps, fnorm
+		}
+	}
+}
+
+// radius adapts the trust radius and the damping to how well the linear model predicted.
+func (s *Solver) radius(ratio, actual, slope, fnorm, fnorm1, pnorm float64, delta, par *float64) {
+	switch {
+	case !(ratio > 0.25):
+		cut := 0.5
+		if actual < 0 {
+			cut = 0.5 * slope / (slope + 0.5*actual)
+		}
+		if !(0.1*fnorm1 < fnorm) || !(cut >= 0.1) {
+			cut = 0.1
+		}
+		*delta = cut * math.Min(*delta, pnorm/0.1)
+		*par /= cut
+	case *par == 0 || ratio >= 0.75:
+		*delta = pnorm / 0.5
+		*par *= 0.5
+	}
+}
+
+// gradient is the largest cosine between the residuals and a column of the Jacobian.
+func (s *Solver) gradient(fnorm float64) float64 {
+	g := 0.0
+	for j := range s.f.n {
+		c := s.f.norm[s.f.pivot[j]]
+		if c == 0 {
+			continue
+		}
+		sum := 0.0
+		for i := 0; i <= j; i++ {
+			sum += s.f.r(i, j) * (s.qtr[i] / fnorm)
+		}
+		g = math.Max(g, math.Abs(sum/c))
+	}
+	return g
+}
+
+// predicted is |R P^T step|, the length of the change of the residuals in the linear model.
+func (s *Solver) predicted() float64 {
+	for i := range s.w3 {
+		s.w3[i] = 0
+	}
+	for j := range s.f.n {
+		d := s.step[s.f.pivot[j]]
+		for i := 0; i <= j; i++ {
+			s.w3[i] += s.f.r(i, j) * d
+		}
+	}
+	return norm(s.w3)
+}
+
+// polish adds Gauss-Newton steps as long as they shorten: near the solution the sum of squares is flat to rounding, while
+// the gradient, and with it the last digits of the parameters, is not.
+func (s *Solver) polish(p Problem, fnorm float64) float64 {
+	last := math.Inf(1)
+	for range 200 { // large residuals make the steps shrink slowly, by a constant factor
+		s.linearise(p)
+		if s.rank() < s.f.n {
+			return fnorm
+		}
+		s.gaussNewton()
+		size := 0.0
+		for j, d := range s.step {
+			s.next[j] = s.theta[j] - d
+			size += s.f.norm[j] * d * s.f.norm[j] * d
+		}
+		p.Residuals(s.next, s.trial)
+		fnorm1 := norm(s.trial)
+		if !(size < 0.98*last) || !(fnorm1 <= fnorm*(1+1e-9)) {
+			return fnorm
+		}
+		copy(s.theta, s.next)
+		copy(s.r, s.trial)
+		fnorm, last = fnorm1, size
+		if size <= eps*eps*fnorm*fnorm {
+			return fnorm
+		}
+	}
+	return fnorm
+}
+
+// rank counts the columns that are not, to rounding, combinations of others.
+func (s *Solver) rank() int {
+	k := 0
+	for j := range s.f.n {
+		if math.Abs(s.f.rdiag[j]) > eps*float64(s.f.m)*math.Abs(s.f.rdiag[0]) {
+			k++
+		}
+	}
+	return k
+}
+
+// gaussNewton sets step to the undamped step.
+func (s *Solver) gaussNewton() {
+	n := s.f.n
+	for j := n - 1; j >= 0; j-- {
+		v := s.qtr[j]
+		for k := j + 1; k < n; k++ {
+			v -= s.f.r(j, k) * s.w1[k]
+		}
+		s.w1[j] = v / s.f.rdiag[j]
+	}
+	for j := range n {
+		s.step[s.f.pivot[j]] = s.w1[j]
+	}
+}
+
+// Covariance fills cov (n x n, row-major) with (J^T J)^-1 at the last solution, from the R factor of the undamped Jacobian,
+// and returns the condition number of the column-scaled Jacobian. It holds for residuals divided by their standard
+// deviations and a model that is nearly linear over them. The error wraps ErrRank when a parameter is not determined.
+func (s *Solver) Covariance(p Problem, cov []float64) (float64, error) {
+	s.linearise(p)
+	n := s.f.n
+	condition := s.condition()
+	if !(condition < conditionLimit) {
+		return condition, fmt.Errorf("%w: condition number %.1e", ErrRank, condition)
+	}
+	inv := s.rt // inverse of R, column by column
+	for j := range n {
+		for i := n - 1; i >= 0; i-- {
+			v := 0.0
+			if i == j {
+				v = 1
+			}
+			for k := i + 1; k <= j; k++ {
+				v -= s.f.r(i, k) * inv[k*n+j]
+			}
+			inv[i*n+j] = v / s.f.rdiag[i]
+			if i > j {
+				inv[i*n+j] = 0
+			}
+		}
+	}
+	for a := range n {
+		for b := range n {
+			sum := 0.0
+			for k := max(a, b); k < n; k++ {
+				sum += inv[a*n+k] * inv[b*n+k]
+			}
+			cov[s.f.pivot[a]*n+s.f.pivot[b]] = sum
+		}
+	}
+	return condition, nil
+}
+
+// condition is the 1-norm condition number of R after its columns are scaled to length one.
+func (s *Solver) condition() float64 {
+	n := s.f.n
+	size, inverse := 0.0, 0.0
+	inv := s.rt
+	for j := range n {
+		c := s.f.norm[s.f.pivot[j]]
+		if c == 0 || s.f.rdiag[j] == 0 {
+			return math.Inf(1)
+		}
+		sum := 0.0
+		for i := 0; i <= j; i++ {
+			sum += math.Abs(s.f.r(i, j)) / c
+		}
+		size = math.Max(size, sum)
+	}
+	for j := range n {
+		sum := 0.0
+		for i := j; i >= 0; i-- {
+			v := 0.0
+			if i == j {
+				v = 1
+			}
+			for k := i + 1; k <= j; k++ {
+				v -= s.f.r(i, k) / s.f.norm[s.f.pivot[k]] * inv[k*n+j]
+			}
+			inv[i*n+j] = v / s.f.rdiag[i] * s.f.norm[s.f.pivot[i]]
+			sum += math.Abs(inv[i*n+j])
+		}
+		inverse = math.Max(inverse, sum)
+	}
+	return size * inverse
+}

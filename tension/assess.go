@@ -1,0 +1,229 @@
+package tension
+
+import (
+	"fmt"
+	"math"
+
+	"tautbook/fit"
+	"tautbook/survey"
+)
+
+// defaultLimit is the fraction of the expected tension by which a cable may be off when the design gives no limit:
+// common practice, no source.
+const defaultLimit = 0.10
+
+// unknownTemperatureU is the standard uncertainty of the cable temperature, degC, when none was recorded; the design
+// temperature stands in for it: common practice, no source.
+const unknownTemperatureU = 15.0
+
+// Case is one cable span to be assessed.
+type Case struct {
+	Points     survey.SpanPoints
+	File       string         // the survey file, for the record
+	Design     *survey.Design // nil when there are no design values for this span
+	Conditions survey.Conditions
+	Fit        fit.Options // accuracy and rejection; the shape follows from the load
+}
+
+// Assess fits the shape that the load asks for and works out forces, the comparison with the design, verdict, findings and
+// budget. It fails only when no curve can be fitted; everything else that is missing is a finding.
+func Assess(c Case) (Assessment, error) {
+	listed := c.listedHere()
+	opts := c.Fit
+	opts.Shape, opts.SelfShare = shapeFor(c.Design, listed)
+	if acc := c.Conditions.Accuracy; acc != nil {
+		opts.SigmaAlong, opts.SigmaUp = acc.Horizontal, acc.Vertical
+	}
+	r, err := fit.Cable(c.Points, opts)
+	if err != nil {
+		return Assessment{}, fmt.Errorf("cable %q, span %q: %w", c.Points.Cable, c.Points.Span, err)
+	}
+	return c.judge(r, listed), nil
+}
+
+// listedHere are the loads on record that concern this span.
+func (c Case) listedHere() (out []survey.ListedLoad) {
+	if c.Conditions.Loads != survey.LoadsListed {
+		return nil
+	}
+	for _, l := range c.Conditions.Listed {
+		if (l.Cable == "" || l.Cable == c.Points.Cable) && (l.Span == "" || l.Span == c.Points.Span) {
+			out = append(out, l)
+		}
+	}
+	return out
+}
+
+// shapeFor is the shape under the load on the day: a catenary when nothing says otherwise.
+func shapeFor(d *survey.Design, listed []survey.ListedLoad) (fit.Shape, float64) {
+	var own, deck float64
+	if d != nil {
+		if d.SelfWeight != nil && d.Load != survey.LoadDeck {
+			own = d.SelfWeight.Value
+		}
+		if d.DeckLoad != nil && d.Load != survey.LoadSelfWeight {
+			deck = d.DeckLoad.Value
+		}
+		for _, l := range listed {
+			if l.Spread == survey.AlongCable {
+				own += l.Load.Value
+			} else {
+				deck += l.Load.Value
+			}
+		}
+	}
+	switch {
+	case deck <= 0:
+		return fit.Catenary, 1
+	case own <= 0:
+		return fit.Parabola, 0
+	default:
+		return fit.Mixed, own / (own + deck)
+	}
+}
+
+// judge is the part of Assess after the fit.
+func (c Case) judge(r *fit.Result, listed []survey.ListedLoad) Assessment {
+	j := &judgement{Case: c, r: r, d: c.Design, record: c.Conditions.Loads}
+	if j.record == "" {
+		j.record = survey.LoadsNotChecked
+	}
+	temperature := c.Conditions.CableTemperature
+	if temperature == nil && c.Design != nil && c.Design.Temperature != nil {
+		j.temperatureAssumed = true
+		temperature = &Quantity{Value: c.Design.Temperature.Value, U: unknownTemperatureU}
+	}
+	j.in = gather(r, c.Design, temperature, listed)
+	j.p = j.in.propagate()
+	j.a = Assessment{Cable: c.Points.Cable, Span: c.Points.Span, SurveyFile: c.File, Structure: c.Conditions.Structure,
+		Temperature: c.Conditions.CableTemperature}
+	if c.Design != nil && c.Design.Structure != "" {
+		j.a.Structure = c.Design.Structure
+	}
+	j.fill()
+	j.compare()
+	j.decide()
+	j.tell()
+	j.a.Budget = j.budget()
+	j.a.Drawing = j.drawing()
+	return j.a
+}
+
+// judgement is one assessment in the making.
+type judgement struct {
+	Case
+	r                  *fit.Result
+	d                  *survey.Design
+	record             survey.LoadStatus
+	temperatureAssumed bool
+	in                 *inputs
+	p                  propagated
+	a                  Assessment
+	ground             ground
+}
+
+// fill sets the figures that rest on shape and load alone.
+func (j *judgement) fill() {
+	p, r := &j.p, j.r
+	f := FitSummary{Shape: r.Curve.Shape(), PointsUsed: len(r.Observations), Rejected: r.Rejected, Suspects: r.Suspects,
+		DegreesOfFreedom: r.DegreesOfFreedom, RMS: r.RMS, VarianceFactor: r.VarianceFactor, AccuracyStated: r.APriori,
+		Widening: r.Widening, PlaneFrom: r.Frame.From, AzimuthDeg: r.Frame.Azimuth * 180 / math.Pi, Alternatives: r.Alternatives,
+		Chord: p.must(outChord), Rise: p.must(outRise), SagMid: p.must(outSagMid), GreatestSag: p.must(outGreatestSag),
+		ArcLength: p.must(outArc), LowPointStation: p.quantity(outLowStation), LowPointElevation: p.quantity(outLowElevation)}
+	f.SagRatio = f.SagMid.Value / f.Chord.Value
+	f.GreatestSagAt, _ = r.Curve.GreatestSag(r.A.Station, r.B.Station)
+	hangs := j.hangs()
+	if hangs {
+		constant := p.quantity(outConstant)
+		switch f.Shape {
+		case fit.Catenary:
+			f.CatenaryConstant = constant
+		case fit.Parabola:
+			f.ParabolaParameter = constant
+		default:
+			f.MixedConstant = constant
+		}
+	} else {
+		f.LowPointStation, f.LowPointElevation = nil, nil
+	}
+	j.a.Fit = f
+	j.a.Load = j.loadSummary()
+	if !p.known(outH) {
+		return
+	}
+	if !hangs {
+		j.a.HorizontalTensionAtLeast = j.atLeast()
+		return
+	}
+	h := p.must(outH)
+	j.a.HorizontalTension = &h
+	j.a.Reactions = []Reaction{
+		j.reaction("A", r.A, outVerticalA, outTensionA, outSlopeA, r.Curve.Z1),
+		j.reaction("B", r.B, outVerticalB, outTensionB, outSlopeB, r.Curve.Z2),
+	}
+}
+
+// hangs reports whether the curvature is known to be positive: its value is above 2 u.
+func (j *judgement) hangs() bool {
+	k := j.p.in.x[inCurvature]
+	return k > 2*math.Sqrt(j.r.Cov[2][2])
+}
+
+// atLeast is the 95 % lower bound of H when the curve is too flat for an estimate: load over the greatest curvature that
+// the survey allows. Nil when there is no load.
+func (j *judgement) atLeast() *float64 {
+	k := quantile(j.in.x[inCurvature], math.Sqrt(j.r.Cov[2][2]), sure, j.in.dof)
+	hang := j.p.y[outHanging]
+	if !(k > 0) || math.IsNaN(hang) {
+		return nil
+	}
+	h := hang / k
+	return &h
+}
+
+func (j *judgement) reaction(name string, e fit.End, v, t, slope int, z float64) Reaction {
+	p := &j.p
+	return Reaction{Support: name, Surveyed: e.Surveyed, Station: e.Station, Elevation: z, Horizontal: p.must(outH),
+		Vertical: p.must(v), Tension: p.must(t), SlopeDeg: p.must(slope)}
+}
+
+func (j *judgement) loadSummary() LoadSummary {
+	s := LoadSummary{Record: j.record}
+	if j.d == nil {
+		return s
+	}
+	s.Kind = j.d.Load
+	if j.in.have[inSelfWeight] && j.d.Load != survey.LoadDeck {
+		s.SelfWeight = j.d.SelfWeight
+	}
+	if j.d.Load != survey.LoadSelfWeight {
+		s.DeckLoad = j.d.DeckLoad
+	}
+	for _, l := range j.in.listed {
+		s.Listed = append(s.Listed, ListedLoad{Load: l.Load, Spread: l.Spread, What: l.What})
+	}
+	if q := j.p.quantity(outHanging); q != nil {
+		s.Hanging = *q
+	}
+	return s
+}
+
+// drawing collects what a picture of the span needs.
+func (j *judgement) drawing() Drawing {
+	r := j.r
+	d := Drawing{Residuals: r.Residuals, Curve: r.Curve, From: r.A.Station, To: r.B.Station}
+	for _, o := range r.Observations {
+		d.Stations = append(d.Stations, o.S)
+		d.Elevations = append(d.Elevations, o.Z)
+		d.IDs = append(d.IDs, o.ID)
+	}
+	for _, s := range r.Rejected {
+		d.Dropped = append(d.Dropped, [2]float64{s.Station, r.Curve.Z(s.Station) + s.Residual})
+	}
+	if e := j.a.Expected; e != nil && j.in.frame.surveyed {
+		c := r.Curve
+		c.Curvature = j.p.y[outHanging] / e.HorizontalTension.Value
+		d.Expected = &c
+	}
+	return d
+}

@@ -1,0 +1,192 @@
+package tension
+
+import (
+	"math"
+
+	"tautbook/survey"
+)
+
+// limits are the ratios of tension today to expected beyond which a cable is slack or overloaded.
+func (j *judgement) limits() (low, high float64, from string) {
+	low, high, from = 1-defaultLimit, 1+defaultLimit, "default, common practice"
+	if j.d == nil {
+		return low, high, from
+	}
+	if j.d.SlackBelow != nil {
+		low = 1 - *j.d.SlackBelow
+	}
+	if j.d.OverloadAbove != nil {
+		high = 1 + *j.d.OverloadAbove
+	}
+	switch {
+	case j.d.SlackBelow != nil && j.d.OverloadAbove != nil:
+		from = "cables file"
+	case j.d.SlackBelow != nil:
+		from = "cables file (slack), default, common practice (overload)"
+	case j.d.OverloadAbove != nil:
+		from = "cables file (overload), default, common practice (slack)"
+	}
+	return low, high, from
+}
+
+// compare sets everything that holds the cable against its design.
+func (j *judgement) compare() {
+	p := &j.p
+	j.strength()
+	if !p.known(outInverse) {
+		return
+	}
+	low, high, from := j.limits()
+	e := &Expected{HorizontalTension: p.must(outHExpected), UnderFiledLoad: p.must(outHFiled), SagMid: p.must(outSagExpected), SlackBelow: low, OverloadAbove: high,
+		LimitsFrom: from, SpanFrom: "design", TemperatureShift: j.in.x[inTemperature] - j.in.x[inDesignTemp], LoadRatio: p.must(outLoadRatio)}
+	if j.in.frame.surveyed {
+		e.SpanFrom = "surveyed supports"
+	}
+	// The inverse ratio is linear in the curvature that the survey measures: its distribution is the one that is normal
+	// or t even for a flat cable, so probabilities are taken from it.
+	inv, u, dof := p.y[outInverse], p.u(outInverse), p.dof(outInverse)
+	e.PSlack = 1 - below(inv, u, 1/low, dof)
+	e.POverload = below(inv, u, 1/high, dof)
+	e.PInside = math.Max(0, 1-e.PSlack-e.POverload)
+	if j.a.HorizontalTension != nil {
+		e.Ratio = p.inverted(outInverse)
+		e.Uncorrected = p.inverted(outInverseNaive)
+	}
+	j.a.Expected = e
+	j.a.ImpliedLoad = &ImpliedLoad{IfTensionAsExpected: p.quantity(outImpliedExpected), IfLengthAsDesigned: p.quantity(outImpliedLength),
+		Filed: p.must(outDesignHanging)}
+	if j.a.HorizontalTension == nil {
+		j.a.ImpliedLoad = nil
+		return
+	}
+	if p.known(outS0Difference) {
+		j.a.UnstressedLength = &LengthSummary{Today: p.must(outS0Today), Design: p.must(outS0Design), Difference: p.must(outS0Difference)}
+	}
+	j.a.AtDesignTemperature = p.quantity(outHReference)
+	j.rivalReading(low, high)
+	j.a.Stiffness = j.stiffness()
+}
+
+// inverted is 1/output with its uncertainty.
+func (p *propagated) inverted(out int) *Quantity {
+	if !p.known(out) || !(p.y[out] > 0) {
+		return nil
+	}
+	v := 1 / p.y[out]
+	return &Quantity{Value: v, U: p.u(out) * v * v}
+}
+
+// strength compares the greatest tension with the permitted one.
+func (j *judgement) strength() {
+	p := &j.p
+	if j.d == nil || j.d.SafetyFactor == nil || !p.known(outUse) || j.a.HorizontalTension == nil {
+		return
+	}
+	sf := *j.d.SafetyFactor
+	scale := func(out int) Quantity { q := p.must(out); return Quantity{Value: q.Value * sf, U: q.U * sf} }
+	s := &Strength{Use: scale(outUse), Permitted: j.in.x[inBreaking] / sf, GreatestT: p.must(outGreatestT), SafetyFactor: sf}
+	s.POver = 1 - below(s.Use.Value, s.Use.U, 1, p.dof(outUse))
+	if p.known(outRivalUse) {
+		use := scale(outRivalUse)
+		over := 1 - below(use.Value, use.U, 1, p.dof(outRivalUse))
+		s.RivalUse, s.RivalPOver = &use, &over
+	}
+	j.a.Strength = s
+}
+
+// rivalReading sets the reading in which the length is as designed and the load is not as on record.
+func (j *judgement) rivalReading(low, high float64) {
+	p := &j.p
+	if !p.known(outHRival) {
+		return
+	}
+	v := &Rival{HorizontalTension: p.must(outHRival), Ratio: p.must(outRivalRatio), LoadFactor: p.must(outRivalFactor),
+		ExtraLoad: p.must(outRivalExtra)}
+	dof := p.dof(outRivalFactor)
+	v.PLoadLess = below(v.LoadFactor.Value, v.LoadFactor.U, low, dof)
+	v.PLoadMore = 1 - below(v.LoadFactor.Value, v.LoadFactor.U, high, dof)
+	switch {
+	case j.record == survey.LoadsAsFiled || j.record == survey.LoadsListed:
+		v.Excluded, v.ExcludedBy = true, "the record of loads"
+	case below(v.HorizontalTension.Value, v.HorizontalTension.U, 0, dof) >= sure:
+		v.Excluded, v.ExcludedBy = true, "the surveyed length: at its designed length the cable would be shorter than without tension"
+	case j.in.have[inBreaking] && p.known(outRivalUse) && below(p.y[outRivalUse], p.u(outRivalUse), 1, p.dof(outRivalUse)) <= 1-sure:
+		v.Excluded, v.ExcludedBy = true, "the surveyed length: at its designed length the cable would carry more than its breaking load"
+	}
+	j.a.Rival = v
+}
+
+// decide puts the evidence together.
+func (j *judgement) decide() {
+	e := evidence{record: j.record, pSlack: math.NaN(), pInside: math.NaN(), pOver: math.NaN(), pLoadOver: math.NaN(),
+		pRivalLess: math.NaN(), pRivalMore: math.NaN(), pStrength: math.NaN(), pRivalUseOver: math.NaN()}
+	if x := j.a.Expected; x != nil {
+		e.compared = true
+		e.pSlack, e.pInside, e.pOver = x.PSlack, x.PInside, x.POverload
+		e.pLoadOver = 1 - below(x.LoadRatio.Value, x.LoadRatio.U, x.OverloadAbove, math.Inf(1))
+	}
+	if v := j.a.Rival; v != nil {
+		e.rivalKnown, e.rivalRefuted = true, v.Excluded
+		e.pRivalLess, e.pRivalMore = v.PLoadLess, v.PLoadMore
+	}
+	if s := j.a.Strength; s != nil {
+		e.pStrength = s.POver
+		if s.RivalPOver != nil {
+			e.pRivalUseOver = *s.RivalPOver
+		}
+	}
+	j.a.Verdict, j.ground = decide(e)
+}
+
+// stiffness works out how shape and tension of today's cable answer to load and temperature, by exact states a little
+// way off, and how much load could hide in the uncertainty of the sag.
+func (j *judgement) stiffness() *Stiffness {
+	x, y := j.in.x, &j.p.y
+	ch, why := j.in.chordToday(x, j.r.Curve)
+	if why != "" || math.IsNaN(y[outS0Today]) {
+		return nil
+	}
+	load := j.in.load(x)
+	dt := x[inTemperature] - x[inDesignTemp]
+	at := func(factor, dt float64) (State, bool) {
+		c := Cable{SelfWeight: load.self * factor, DeckLoad: load.deck * factor, AxialStiffness: x[inAxial], Expansion: x[inExpansion]}
+		st, err := c.AtLength(y[outS0Today], ch, dt)
+		return st, err == nil
+	}
+	now, ok := at(1, dt)
+	more, ok1 := at(1.01, dt)
+	warm, ok2 := at(1, dt+1)
+	if !ok || !ok1 || !ok2 {
+		return nil
+	}
+	s := &Stiffness{Lambda2: now.Lambda2(), SagPerLoad: (more.SagMid()/now.SagMid() - 1) / 0.01, TensionPerLoad: (more.H/now.H - 1) / 0.01,
+		TensionPerDegree: warm.H - now.H}
+	limit := 2 * j.p.uDifference(outSagToday, outSagExpected)
+	s.HiddenLoad = hiddenLoad(func(f float64) (float64, bool) { st, ok := at(f, dt); return st.SagMid() - now.SagMid() - limit, ok }, y[outHanging])
+	s.Meaning = stiffnessMeaning(s)
+	return s
+}
+
+// hiddenLoad is the extra even load, N/m, at which the sag of a cable of fixed length has moved by the limit: excess(f) is
+// that movement minus the limit under f times the load. Nil when even ten times the load does not show.
+func hiddenLoad(excess func(float64) (float64, bool), hanging float64) *float64 {
+	const most = 11.0
+	lo, hi := 1.0, most
+	if e, ok := excess(hi); !ok || e < 0 {
+		return nil
+	}
+	for hi-lo > 1e-6*lo {
+		mid := (lo + hi) / 2
+		e, ok := excess(mid)
+		if !ok {
+			return nil
+		}
+		if e < 0 {
+			lo = mid
+		} else {
+			hi = mid
+		}
+	}
+	extra := (hi - 1) * hanging
+	return &extra
+}

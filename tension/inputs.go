@@ -1,0 +1,165 @@
+package tension
+
+import (
+	"fmt"
+	"math"
+
+	"tautbook/fit"
+	"tautbook/survey"
+)
+
+// The numbers that an assessment rests on, as places in one vector, so that an input that enters the measured and the
+// expected tension moves both at once when its uncertainty is propagated. Listed loads follow after inFixed.
+const (
+	inZA          = iota // elevation of the fitted curve at the chord ends, m
+	inZB                 //
+	inCurvature          // 1/m
+	inStationA           // station of the chord ends, m
+	inStationB           //
+	inSelfWeight         // filed, N/m
+	inDeckLoad           //
+	inTemperature        // of the cable on the day, degC
+	inAxial              // EA, N
+	inExpansion          // 1/degC
+	inTension            // design horizontal tension, N
+	inSag                // design sag, m
+	inSpan               // design span, m
+	inRise               // design rise, m
+	inDesignTemp         // degC
+	inBreaking           // MBL, N
+	inFixed
+)
+
+// inputs are the estimates, their uncertainties and which of them exist.
+type inputs struct {
+	x       []float64
+	have    []bool
+	sources []source
+	listed  []survey.ListedLoad // those that concern this span
+	curve   fit.Curve           // shape family and share; its numbers are overwritten from x
+	frame   spanFrame
+	dof     float64 // degrees of freedom of the survey block, +Inf when the accuracy is stated and holds
+}
+
+// spanFrame says which chord the states use.
+type spanFrame struct {
+	surveyed bool // both supports surveyed: today's chord is measured
+}
+
+// source is one origin of uncertainty: a set of directions in input space, each one standard deviation long.
+type source struct {
+	name       string
+	value, u   string
+	directions [][]step
+	survey     bool // carries the degrees of freedom of the fit
+}
+
+// step is a move of one input.
+type step struct {
+	at int
+	by float64
+}
+
+func (in *inputs) set(at int, q *Quantity, name string, scale Scale) {
+	if q == nil {
+		return
+	}
+	in.x[at], in.have[at] = q.Value, true
+	if q.U > 0 {
+		in.sources = append(in.sources, source{name: name, value: scale.Value(*q), u: scale.About(q.U),
+			directions: [][]step{{{at, q.U}}}})
+	}
+}
+
+// gather lays out the vector for one span.
+func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []survey.ListedLoad) *inputs {
+	n := inFixed + len(listed)
+	in := &inputs{x: make([]float64, n), have: make([]bool, n), listed: listed, curve: r.Curve, dof: math.Inf(1)}
+	in.frame.surveyed = r.A.Surveyed && r.B.Surveyed
+	if !r.APriori || r.ScaledBy != 1 {
+		in.dof = float64(r.DegreesOfFreedom)
+	}
+	in.x[inZA], in.x[inZB], in.x[inCurvature] = r.Curve.Z1, r.Curve.Z2, r.Curve.Curvature
+	in.x[inStationA], in.x[inStationB] = r.A.Station, r.B.Station
+	for i := range inSelfWeight {
+		in.have[i] = true
+	}
+	in.sources = append(in.sources, source{name: "shape of the cable (survey)",
+		value: fmt.Sprintf("%d points", len(r.Observations)), u: "rms " + Millimetre.About(r.RMS),
+		directions: cholesky(r.Cov), survey: true})
+	in.ends(r)
+	in.set(inTemperature, temperature, "cable temperature on the day", DegreeCelsius)
+	if d == nil {
+		return in
+	}
+	if d.Load != survey.LoadDeck {
+		in.set(inSelfWeight, d.SelfWeight, "self weight on file", NewtonPerMetre)
+	}
+	if d.Load != survey.LoadSelfWeight {
+		in.set(inDeckLoad, d.DeckLoad, "deck load on file", NewtonPerMetre)
+	}
+	in.set(inAxial, d.AxialStiffness, "axial stiffness", Meganewton)
+	in.set(inExpansion, d.Expansion, "expansion", Scale{"1e-6/°C", 1e-6})
+	if d.Tension != nil {
+		in.set(inTension, d.Tension, "design tension", ForceScale(d.Tension.Value))
+	} else {
+		in.set(inSag, d.Sag, "design sag", Metre)
+	}
+	in.set(inSpan, d.SpanLength, "design span", Metre)
+	in.set(inRise, d.Rise, "design rise", Metre)
+	in.set(inDesignTemp, d.Temperature, "design temperature", DegreeCelsius)
+	in.set(inBreaking, d.BreakingLoad, "breaking load", Kilonewton)
+	for i, l := range listed {
+		load := l.Load
+		in.set(inFixed+i, &load, "load seen: "+l.What, NewtonPerMetre)
+	}
+	return in
+}
+
+// ends adds the uncertainty of the surveyed supports.
+func (in *inputs) ends(r *fit.Result) {
+	u := math.Hypot(r.A.UStation, r.B.UStation)
+	s := source{name: "supports (survey)", value: Metre.Value(Quantity{Value: r.B.Station - r.A.Station, U: u}), u: Millimetre.About(u)}
+	if r.A.Surveyed && r.A.UStation > 0 {
+		s.directions = append(s.directions, []step{{inStationA, r.A.UStation}})
+	}
+	if r.B.Surveyed && r.B.UStation > 0 {
+		s.directions = append(s.directions, []step{{inStationB, r.B.UStation}})
+	}
+	if len(s.directions) > 0 {
+		in.sources = append(in.sources, s)
+	}
+}
+
+// cholesky splits the covariance of (Z_A, Z_B, curvature) into three independent one-sigma moves.
+func cholesky(c [3][3]float64) [][]step {
+	var l [3][3]float64
+	for i := range 3 {
+		for j := range i + 1 {
+			sum := c[i][j]
+			for k := range j {
+				sum -= l[i][k] * l[j][k]
+			}
+			switch {
+			case i == j:
+				l[i][i] = math.Sqrt(math.Max(sum, 0))
+			case l[j][j] > 0:
+				l[i][j] = sum / l[j][j]
+			}
+		}
+	}
+	var out [][]step
+	at := [3]int{inZA, inZB, inCurvature}
+	for j := range 3 {
+		var d []step
+		for i := j; i < 3; i++ {
+			if l[i][j] != 0 {
+				d = append(d, step{at[i], l[i][j]})
+			}
+		}
+		if d != nil {
+			out = append(out, d)
+		}
+	}
+	return out
+}

@@ -1,0 +1,102 @@
+package tension
+
+import "math"
+
+// probe is the length of the step, in standard deviations, of the central differences that propagate uncertainty: small
+// enough that curvature of the chain does not matter (its error grows with the square), large enough that rounding of
+// the state solver does not either.
+const probe = 0.1
+
+// propagated are the outputs with the effect of every source on each of them (JCGM 100:2008, 5.1.3 and 5.2, with the
+// correlated survey block split into independent directions).
+type propagated struct {
+	y      outputs
+	lacks  []lack
+	effect [][]outputs // per source, per direction: change of each output for one standard deviation
+	in     *inputs
+}
+
+func (in *inputs) propagate() propagated {
+	p := propagated{in: in, effect: make([][]outputs, len(in.sources))}
+	p.y, p.lacks = in.evaluate(in.x)
+	x := make([]float64, len(in.x))
+	for i, s := range in.sources {
+		p.effect[i] = make([]outputs, len(s.directions))
+		for j, d := range s.directions {
+			up := in.moved(x, d, probe)
+			down := in.moved(x, d, -probe)
+			for k := range up {
+				p.effect[i][j][k] = (up[k] - down[k]) / (2 * probe)
+			}
+		}
+	}
+	return p
+}
+
+func (in *inputs) moved(x []float64, d []step, by float64) outputs {
+	copy(x, in.x)
+	for _, s := range d {
+		x[s.at] += by * s.by
+	}
+	y, _ := in.evaluate(x)
+	return y
+}
+
+// known reports whether an output and its uncertainty could be worked out.
+func (p *propagated) known(out int) bool {
+	return !math.IsNaN(p.y[out]) && !math.IsInf(p.y[out], 0) && !math.IsNaN(p.u(out))
+}
+
+// u is the combined standard uncertainty of an output.
+func (p *propagated) u(out int) float64 {
+	sum := 0.0
+	for i := range p.effect {
+		sum += p.variance(i, out)
+	}
+	return math.Sqrt(sum)
+}
+
+// variance is what one source contributes to the variance of an output.
+func (p *propagated) variance(source, out int) float64 {
+	sum := 0.0
+	for _, d := range p.effect[source] {
+		sum += d[out] * d[out]
+	}
+	return sum
+}
+
+// quantity is an output with its uncertainty; nil when it is not known.
+func (p *propagated) quantity(out int) *Quantity {
+	if !p.known(out) {
+		return nil
+	}
+	return &Quantity{Value: p.y[out], U: p.u(out)}
+}
+
+// must is quantity for outputs that always exist.
+func (p *propagated) must(out int) Quantity { return Quantity{Value: p.y[out], U: p.u(out)} }
+
+// uDifference is the standard uncertainty of output a minus output b, with their correlation.
+func (p *propagated) uDifference(a, b int) float64 {
+	sum := 0.0
+	for i := range p.effect {
+		for _, d := range p.effect[i] {
+			e := d[a] - d[b]
+			sum += e * e
+		}
+	}
+	return math.Sqrt(sum)
+}
+
+// dof is the effective number of degrees of freedom of an output (Welch-Satterthwaite, JCGM 100:2008, G.4.1): only the
+// survey block is estimated from few data, the other inputs are taken as fully known distributions.
+func (p *propagated) dof(out int) float64 {
+	total := p.u(out)
+	for i, s := range p.in.sources {
+		if s.survey && total > 0 {
+			part := p.variance(i, out) / (total * total)
+			return p.in.dof / (part * part)
+		}
+	}
+	return math.Inf(1)
+}

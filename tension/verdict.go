@@ -1,0 +1,67 @@
+package tension
+
+import (
+	"tautbook/survey"
+)
+
+// sure is the probability from which a statement counts as decided. The rule (decide only when the probability of
+// conformity, or of non-conformity, is high enough) is that of JCGM 106:2012, 8.3; 95 % is DESIGN's choice.
+const sure = 0.95
+
+// ground says which rule of decide gave the verdict.
+type ground string
+
+const (
+	groundStrength      ground = "strength"       // greatest tension above the permitted one
+	groundRivalStrength ground = "rival strength" // the same, if the length is as designed
+	groundLoad          ground = "load"           // load on record above the design load
+	groundTension       ground = "tension"        // tension ratio beyond a limit, rival reading excluded
+	groundTwoReadings   ground = "two readings"   // ratio beyond a limit, rival reading open
+	groundImplied       ground = "implied load"   // ratio inside, but the load that the length implies is not
+	groundInside        ground = "inside"
+	groundCoarse        ground = "coarse"
+	groundNone          ground = "none"
+)
+
+// evidence is what the verdict rests on. Probabilities are NaN when they could not be worked out; NaN is never sure.
+type evidence struct {
+	compared                 bool // there is an expected tension
+	pSlack, pInside, pOver   float64
+	record                   survey.LoadStatus
+	pLoadOver                float64 // load on record above design load and limit
+	rivalKnown               bool
+	rivalRefuted             bool // the surveyed length itself rules the rival reading out
+	pRivalLess, pRivalMore   float64
+	pStrength, pRivalUseOver float64
+}
+
+// decide is DESIGN's verdict rule. Two points go beyond its text, both to the safe side. While nobody looked at the loads no
+// cable is called slack, even when the length rules out the simple rival reading: slip and an unlisted load can go
+// together, and then the tension is not low. And a cable whose tension reads as designed but whose length implies a load
+// beyond the limit is off design, not as designed.
+func decide(e evidence) (Verdict, ground) {
+	looked := e.record == survey.LoadsAsFiled || e.record == survey.LoadsListed
+	open := !looked && !e.rivalRefuted
+	switch {
+	case e.pStrength >= sure:
+		return Overload, groundStrength
+	case looked && e.pLoadOver >= sure:
+		return Overload, groundLoad
+	case open && e.pRivalUseOver >= sure:
+		return Overload, groundRivalStrength
+	case !e.compared:
+		return NoDesign, groundNone
+	case looked && e.pSlack >= sure:
+		return Slack, groundTension
+	case !open && e.pOver >= sure:
+		return Overload, groundTension
+	case e.pSlack >= sure || e.pOver >= sure:
+		return OffDesign, groundTwoReadings
+	case open && e.rivalKnown && (e.pRivalLess >= sure || e.pRivalMore >= sure):
+		return OffDesign, groundImplied
+	case e.pInside >= sure:
+		return AsDesigned, groundInside
+	default:
+		return Undecided, groundCoarse
+	}
+}
