@@ -83,7 +83,11 @@ func (c Curve) gradientMixed(s float64, g *[3]float64) {
 		g[0], g[1], g[2] = 1-part, part, (s-c.S1)*(s-c.S2)/2*f
 		return
 	}
-	psi := m.at(c, s)
+	m.gradient(c, s, m.at(c, s), g)
+}
+
+// gradient is gradientMixed for known tangents.
+func (m mixedCurve) gradient(c Curve, s, psi float64, g *[3]float64) {
 	t1, t2, t := math.Sinh(m.psi1), math.Sinh(m.psi2), math.Sinh(psi)
 	part := (t - t1) / (t2 - t1)
 	g[0], g[1] = 1-part, part

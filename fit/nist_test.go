@@ -151,7 +151,11 @@ func TestNISTNonlinear(t *testing.T) {
 			if start == "" {
 				continue
 			}
-			if !(worst >= 8) || !(worstU >= 6) {
+			fewestU := 6.0
+			if s.head["name"] == "Lanczos1" {
+				fewestU = 2.5 // its residuals are of order 1e-13 on data of order 1: rounding of float64 leaves three digits of their sum
+			}
+			if !(worst >= 8) || !(worstU >= fewestU) {
 				t.Errorf("%s: %.1f digits of parameters, %.1f of standard deviations", name, worst, worstU)
 			}
 		}

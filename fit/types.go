@@ -53,14 +53,14 @@ type End struct {
 
 // Options steer a fit. The zero value fits a catenary with unknown accuracy and drops nothing.
 type Options struct {
-	Shape         Shape
-	SelfShare     float64 // for Mixed only: w / (w + q)
-	SigmaAlong    float64 // a-priori standard deviation along the station, m, for points without covariance; 0 = unknown
-	SigmaUp       float64 // a-priori standard deviation of elevation, m; 0 = unknown
-	RejectBeyond  float64 // drop points whose |w| exceeds this, one at a time, refitting; 0 = list suspects, drop nothing
-	SuspectBeyond float64 // list points whose |w| exceeds this; 0 = the level of Alpha
-	Alpha         float64 // significance of the single-point test, two-sided; 0 = 0.001 (Baarda 1968)
-	MaxIterations int     // 0 = 100
+	Shape          Shape   // "" = Catenary
+	SelfShare      float64 // for Mixed only: w / (w + q)
+	SigmaAlong     float64 // a-priori standard deviation along the station, m, for points without covariance; 0 = none
+	SigmaUp        float64 // a-priori standard deviation of elevation, m; 0 = unknown
+	RejectBeyond   float64 // drop points as unlikely as this many standard deviations of a normal error; 0 = drop nothing
+	Alpha          float64 // significance from which a point is listed as suspect, two-sided; 0 = 0.001 (Baarda 1968)
+	MaxIterations  int     // 0 = 200
+	NoAlternatives bool    // do not fit the other shapes
 }
 
 // Suspect is one point that the single-point test speaks against.
@@ -83,7 +83,7 @@ type Result struct {
 
 	Observations []Observation // those used, in order of input
 	Residuals    []float64     // vertical residual of each, measured minus fitted at the same station, m
-	W            []float64     // normalised residual of each (w-test, or tau when the accuracy is estimated)
+	W            []float64     // test statistic of each: see SingleTest
 	Rejected     []Suspect     // dropped
 	Suspects     []Suspect     // listed, still used
 

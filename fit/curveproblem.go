@@ -1,0 +1,92 @@
+package fit
+
+import "math"
+
+// curveProblem is the fit of one curve to points with errors in both coordinates: each residual is the distance of a point
+// from the curve in units of its standard deviation across the curve, signed, at the foot point where that distance is
+// least (orthogonal distance regression: Boggs, Byrd and Schnabel 1987, SIAM J. Sci. Stat. Comput. 8, 1052-1078). With
+// errors in height alone it is vertical least squares. Heights are held relative to z0 so that none of their digits are lost.
+type curveProblem struct {
+	obs  []Observation
+	base Curve // stations and shape; heights and curvature come from theta
+	z0   float64
+}
+
+func (p *curveProblem) Size() (m, n int) { return len(p.obs), 3 }
+
+func (p *curveProblem) curve(theta []float64) Curve {
+	c := p.base
+	c.Z1, c.Z2, c.Curvature = theta[0], theta[1], theta[2]
+	return c
+}
+
+// foot is the point of the curve nearest to the observation in the metric of its covariance: its distance in standard
+// deviations and the standard deviation across the curve there; g gets the gradient of the height at the foot.
+func (e *evaluator) foot(o *Observation, z0 float64, g *[3]float64) (r, sigma float64) {
+	dz := o.Z - z0
+	if o.VarS == 0 {
+		z, _, _ := e.at(o.S, g)
+		sigma = math.Sqrt(o.VarZ)
+		return (dz - z) / sigma, sigma
+	}
+	// Stationarity along the curve: (1, f') W d = 0 with W the inverse covariance and d = (S - t, Z - f(t)).
+	t := o.S
+	det := o.VarS*o.VarZ - o.CovSZ*o.CovSZ
+	for range 20 {
+		z, slope, bend := e.at(t, nil)
+		ds, dh := o.S-t, dz-z
+		ws, wz := (o.VarZ*ds-o.CovSZ*dh)/det, (o.VarS*dh-o.CovSZ*ds)/det
+		along := (o.VarZ - 2*o.CovSZ*slope + o.VarS*slope*slope) / det
+		step := (ws + slope*wz) / (along - bend*wz)
+		t += step
+		if math.Abs(step) <= 1e-13*(math.Abs(t)+1) || !(math.Abs(step) < math.Inf(1)) {
+			break
+		}
+	}
+	z, slope, _ := e.at(t, g)
+	sigma = math.Sqrt(o.VarZ - 2*o.CovSZ*slope + o.VarS*slope*slope)
+	return (dz - z - slope*(o.S-t)) / sigma, sigma
+}
+
+func (p *curveProblem) Residuals(theta, r []float64) {
+	e := p.curve(theta).evaluator()
+	for i := range p.obs {
+		r[i], _ = e.foot(&p.obs[i], p.z0, nil)
+	}
+}
+
+// Jacobian: at the foot the derivative by the foot's own station vanishes, so that of the distance is exactly that of the
+// height there over the standard deviation across the curve.
+func (p *curveProblem) Jacobian(theta, j []float64) {
+	e := p.curve(theta).evaluator()
+	m := len(p.obs)
+	var g [3]float64
+	for i := range p.obs {
+		_, sigma := e.foot(&p.obs[i], p.z0, &g)
+		j[i], j[m+i], j[2*m+i] = -g[0]/sigma, -g[1]/sigma, -g[2]/sigma
+	}
+}
+
+// start fits a parabola by linear least squares; its curvature is that of the curve at the chord's slope.
+func (p *curveProblem) start(theta []float64) {
+	s1, l := p.base.S1, p.base.length()
+	// Orthogonal moments of u in [-1, 1]: sums for the normal equations of 1, u, u^2.
+	var n, a1, a2, a3, a4, b0, b1, b2 float64
+	for _, o := range p.obs {
+		u := 2*(o.S-s1)/l - 1
+		z := o.Z - p.z0
+		u2 := u * u
+		n, a1, a2, a3, a4 = n+1, a1+u, a2+u2, a3+u2*u, a4+u2*u2
+		b0, b1, b2 = b0+z, b1+z*u, b2+z*u2
+	}
+	// Gauss elimination of the 3 x 3 normal equations; the points have at least three stations.
+	m1, m2, m0 := a1/n, a2/n, b0/n
+	c11, c12, c22 := a2-a1*m1, a3-a1*m2, a4-a2*m2
+	d1, d2 := b1-a1*m0, b2-a2*m0
+	q := (d2 - c12/c11*d1) / (c22 - c12/c11*c12)
+	t := (d1 - c12*q) / c11
+	c := m0 - m1*t - m2*q
+	theta[0], theta[1] = c-t+q, c+t+q
+	chord := (theta[1] - theta[0]) / l
+	theta[2] = 8 * q / (l * l) / p.base.bend(chord)
+}

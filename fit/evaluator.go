@@ -1,0 +1,53 @@
+package fit
+
+import "math"
+
+// evaluator gives heights, slopes, bends and gradients of one curve at many stations; what does not depend on the station is
+// worked out once.
+type evaluator struct {
+	c   Curve
+	cat catenaryTerms
+	mix mixedCurve
+	ok  bool // mix is usable
+}
+
+func (c Curve) evaluator() evaluator {
+	e := evaluator{c: c}
+	switch c.Shape() {
+	case Catenary:
+		e.cat = c.prepare()
+	case Mixed:
+		e.mix, e.ok = c.mixed()
+	}
+	return e
+}
+
+// at is height, slope and second derivative at station s; g, when not nil, gets the gradient of the height.
+func (e *evaluator) at(s float64, g *[3]float64) (z, slope, bend float64) {
+	c := &e.c
+	switch {
+	case c.SelfShare == 1:
+		u := e.cat.k * (s - e.cat.m)
+		su, _ := sinhc(u)
+		sinh := u * su
+		slope = e.cat.ratio*math.Sqrt(1+sinh*sinh) + e.cat.cosh*sinh
+		return e.cat.at(s, g), slope, c.Curvature * math.Sqrt(1+slope*slope)
+	case c.SelfShare == 0:
+		if g != nil {
+			c.Gradient(s, g)
+		}
+		return c.Z(s), c.Slope(s), c.Curvature
+	case !e.ok:
+		if g != nil {
+			c.gradientMixed(s, g)
+		}
+		return c.Z(s), c.slopeMixed(s), c.Curvature * c.bend(c.chord())
+	}
+	psi := e.mix.at(*c, s)
+	slope = math.Sinh(psi)
+	z = c.Z1 + c.chord()*(s-c.S1) + e.mix.eq.Below(e.mix.psi1, psi, c.chord())
+	if g != nil {
+		e.mix.gradient(*c, s, psi, g)
+	}
+	return z, slope, c.Curvature * c.bend(slope)
+}
