@@ -152,7 +152,7 @@ func (r *Result) solve(w *workspace, share float64, o Options) error {
 	if err := sol.Status.Err(); err != nil {
 		return err
 	}
-	condition, err := w.solver.Covariance(&w.problem, w.cov[:])
+	condition, err := w.solver.Covariance(w.cov[:])
 	r.ConditionNumber = condition
 	if err != nil {
 		return err

@@ -48,21 +48,21 @@ func (e *evaluator) foot(o *Observation, z0 float64, g *[3]float64) (r, sigma fl
 	return (dz - z - slope*(o.S-t)) / sigma, sigma
 }
 
-func (p *curveProblem) Residuals(theta, r []float64) {
-	e := p.curve(theta).evaluator()
-	for i := range p.obs {
-		r[i], _ = e.foot(&p.obs[i], p.z0, nil)
-	}
-}
-
-// Jacobian: at the foot the derivative by the foot's own station vanishes, so that of the distance is exactly that of the
+// Evaluate: at the foot the derivative by the foot's own station vanishes, so that of the distance is exactly that of the
 // height there over the standard deviation across the curve.
-func (p *curveProblem) Jacobian(theta, j []float64) {
+func (p *curveProblem) Evaluate(theta, r, j []float64) {
 	e := p.curve(theta).evaluator()
+	if j == nil {
+		for i := range p.obs {
+			r[i], _ = e.foot(&p.obs[i], p.z0, nil)
+		}
+		return
+	}
 	m := len(p.obs)
 	var g [3]float64
+	var sigma float64
 	for i := range p.obs {
-		_, sigma := e.foot(&p.obs[i], p.z0, &g)
+		r[i], sigma = e.foot(&p.obs[i], p.z0, &g)
 		j[i], j[m+i], j[2*m+i] = -g[0]/sigma, -g[1]/sigma, -g[2]/sigma
 	}
 }

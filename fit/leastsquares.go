@@ -10,10 +10,9 @@ import (
 type Problem interface {
 	// Size is the number of residuals m and of parameters n, m >= n.
 	Size() (m, n int)
-	// Residuals fills r (length m), each divided by its standard deviation.
-	Residuals(theta, r []float64)
-	// Jacobian fills j, column-major m x n, with dr_i/dtheta_j.
-	Jacobian(theta, j []float64)
+	// Evaluate fills r (length m) with the residuals, each divided by its standard deviation, and j, column-major m x n,
+	// with dr_i/dtheta_j unless it is nil.
+	Evaluate(theta, r, j []float64)
 }
 
 // Status says how an iteration ended.
@@ -69,16 +68,22 @@ type Solver struct {
 
 const eps = 0x1p-52
 
-// Solve minimises from start. The method is the trust-region form of Levenberg-Marquardt by More (1978), The
+// Solve minimises from start. Gauss-Newton steps are tried first and kept when they contract to the solution, as they do for a
+// cable from its starting rule. Else the method is the trust-region form of Levenberg-Marquardt by More (1978), The
 // Levenberg-Marquardt algorithm: implementation and theory, Lecture Notes in Mathematics 630, 105-116, on a pivoted QR
-// factorisation of the Jacobian, followed by undamped Gauss-Newton steps while they lower the gradient.
+// factorisation of the Jacobian, finished by Gauss-Newton steps.
 func (s *Solver) Solve(p Problem, start []float64) Solution {
 	m, n := p.Size()
 	s.resize(m, n)
-	copy(s.theta, start)
-	p.Residuals(s.theta, s.r)
-	fnorm := norm(s.r)
 	out := Solution{Status: NotFinite}
+	copy(s.theta, start)
+	if steps, fnorm, ok := s.contract(p, 0.1); ok {
+		out.Status, out.Iterations = Converged, steps
+		return s.finish(out, fnorm)
+	}
+	copy(s.theta, start)
+	p.Evaluate(s.theta, s.r, nil)
+	fnorm := norm(s.r)
 	if math.IsNaN(fnorm) || math.IsInf(fnorm, 0) {
 		return s.finish(out, fnorm)
 	}
@@ -91,10 +96,9 @@ func (s *Solver) Solve(p Problem, start []float64) Solution {
 	for out.Iterations < limit {
 		out.Iterations++
 		s.linearise(p)
+		first := s.scale(out.Iterations == 1)
 		if out.Iterations == 1 {
-			delta = s.scale(true)
-		} else {
-			s.scale(false)
+			delta = first
 		}
 		done, norm1 := s.lower(p, fnorm, &delta, &par)
 		fnorm = norm1
@@ -103,7 +107,7 @@ func (s *Solver) Solve(p Problem, start []float64) Solution {
 			break
 		}
 	}
-	fnorm = s.polish(p, fnorm)
+	_, fnorm, _ = s.contract(p, 0.98)
 	return s.finish(out, fnorm)
 }
 
@@ -121,9 +125,9 @@ func (s *Solver) resize(m, n int) {
 	s.rt = grow(s.rt, n*n)
 }
 
-// linearise factorises the Jacobian at theta and rotates the residuals.
+// linearise evaluates at theta, factorises the Jacobian and rotates the residuals.
 func (s *Solver) linearise(p Problem) {
-	p.Jacobian(s.theta, s.f.a)
+	p.Evaluate(s.theta, s.r, s.f.a)
 	s.f.factor()
 	copy(s.qtr, s.r)
 	s.f.applyQT(s.qtr)
@@ -160,7 +164,7 @@ func (s *Solver) lower(p Problem, fnorm float64, delta, par *float64) (Status, f
 			pnorm += s.diag[j] * d * s.diag[j] * d
 		}
 		pnorm = math.Sqrt(pnorm)
-		p.Residuals(s.next, s.trial)
+		p.Evaluate(s.next, s.trial, nil)
 		fnorm1 := norm(s.trial)
 		actual := -1.0
 		if 0.1*fnorm1 < fnorm {
@@ -243,34 +247,51 @@ func (s *Solver) predicted() float64 {
 	return norm(s.w3)
 }
 
-// polish adds Gauss-Newton steps as long as they shorten: near the solution the sum of squares is flat to rounding, while
-// the gradient, and with it the last digits of the parameters, is not.
-func (s *Solver) polish(p Problem, fnorm float64) float64 {
+// contract takes undamped Gauss-Newton steps from theta as long as each is shorter than the last by the given factor. Near the
+// solution the sum of squares is flat to rounding while the steps, and with them the last digits of the parameters, are
+// not. ok means that the steps shrank to the level of rounding; theta is then the solution and the factorisation that of
+// the Jacobian there. fnorm is the norm of the residuals at theta.
+func (s *Solver) contract(p Problem, factor float64) (steps int, fnorm float64, ok bool) {
 	last := math.Inf(1)
-	for range 200 { // large residuals make the steps shrink slowly, by a constant factor
+	copy(s.next, s.theta)
+	for steps < 300 {
+		steps++
 		s.linearise(p)
-		if s.rank() < s.f.n {
-			return fnorm
+		fnorm = norm(s.r)
+		if !(fnorm < math.Inf(1)) || s.rank() < s.f.n {
+			break
 		}
 		s.gaussNewton()
-		size := 0.0
+		size, level := s.stepSize(fnorm)
+		if size <= level {
+			return steps, fnorm, true
+		}
+		if !(size < factor*last) {
+			ok = size <= 1e6*level // the steps have become noise
+			break
+		}
+		last = size
+		copy(s.next, s.theta) // the best so far
 		for j, d := range s.step {
-			s.next[j] = s.theta[j] - d
-			size += s.f.norm[j] * d * s.f.norm[j] * d
-		}
-		p.Residuals(s.next, s.trial)
-		fnorm1 := norm(s.trial)
-		if !(size < 0.98*last) || !(fnorm1 <= fnorm*(1+1e-9)) {
-			return fnorm
-		}
-		copy(s.theta, s.next)
-		copy(s.r, s.trial)
-		fnorm, last = fnorm1, size
-		if size <= eps*eps*fnorm*fnorm {
-			return fnorm
+			s.theta[j] -= d
 		}
 	}
-	return fnorm
+	if !ok {
+		copy(s.theta, s.next)
+		s.linearise(p)
+	}
+	return steps, norm(s.r), ok
+}
+
+// stepSize is the length of the step in units of the residuals that it moves, and the length below which a step is rounding:
+// in the residuals, or in the parameters themselves.
+func (s *Solver) stepSize(fnorm float64) (size, level float64) {
+	whole := 0.0
+	for j, d := range s.step {
+		size += s.f.norm[j] * d * s.f.norm[j] * d
+		whole += s.f.norm[j] * s.theta[j] * s.f.norm[j] * s.theta[j]
+	}
+	return math.Sqrt(size), eps * (math.Sqrt(whole) + fnorm)
 }
 
 // rank counts the columns that are not, to rounding, combinations of others.
@@ -299,11 +320,10 @@ func (s *Solver) gaussNewton() {
 	}
 }
 
-// Covariance fills cov (n x n, row-major) with (J^T J)^-1 at the last solution, from the R factor of the undamped Jacobian,
+// Covariance fills cov (n x n, row-major) with (J^T J)^-1 at the solution of the last Solve, from the R factor of the undamped Jacobian,
 // and returns the condition number of the column-scaled Jacobian. It holds for residuals divided by their standard
 // deviations and a model that is nearly linear over them. The error wraps ErrRank when a parameter is not determined.
-func (s *Solver) Covariance(p Problem, cov []float64) (float64, error) {
-	s.linearise(p)
+func (s *Solver) Covariance(cov []float64) (float64, error) {
 	n := s.f.n
 	condition := s.condition()
 	if !(condition < conditionLimit) {
