@@ -68,7 +68,7 @@ type Survey struct {
 	Encoding   string       // for example "UTF-8"
 	Separator  string       // "comma", "semicolon", "tab", "blanks"
 	Decimal    string       // "point" or "comma"
-	Header     []HeaderUse  // how each column was understood, in file order
+	Header     []HeaderUse  // how each column was understood, in file order; names are "" in a headerless file
 	LengthUnit string       // unit of the coordinates as written, for example "m" or "ft"
 	PointsRead int          // data rows
 	Spans      []SpanPoints // in order of first appearance
@@ -134,7 +134,10 @@ type Conditions struct {
 	Instrument       string
 	Accuracy         *Accuracy
 	Crew             string
-	Notes            []string
+	Notes            []string // other "# key: value" lines, as written
+
+	unit string          // of coordinates, from the file
+	set  map[string]bool // keys that were given
 }
 
 // LoadKind says which load shapes a cable.

@@ -1,0 +1,215 @@
+package survey
+
+import (
+	"fmt"
+	"io"
+	"math"
+	"strings"
+)
+
+// collect reads all points and sorts them.
+func (p *PointReader) collect() (*Survey, error) {
+	sv := &Survey{File: p.opts.Name, Flat: p.flat, LengthUnit: p.unitName, Encoding: p.src.encoding, Separator: separatorNames[p.dialect.separator],
+		Decimal: map[byte]string{'.': "point", ',': "comma"}[p.dialect.mark]}
+	for i, c := range p.columns {
+		u := HeaderUse{Column: i + 1, Name: c.name, Field: fieldNames[c.field], Unit: c.unit}
+		sv.Header = append(sv.Header, u)
+	}
+	if p.opts.Structure == "" {
+		p.opts.Structure = p.conditions.Structure
+	}
+	p.checkStructure()
+	s := sorter{survey: sv, resolver: newResolver(p.opts, p.hasCodes), reader: p, spans: map[[2]string]int{}, ids: map[string]Point{}}
+	for {
+		pt, err := p.Next()
+		if err == io.EOF {
+			break
+		}
+		if err != nil {
+			return nil, fmt.Errorf("%s: cannot read: %w", p.opts.Name, err)
+		}
+		s.place(pt, p.code)
+	}
+	if err := p.conditions.check(); err != nil {
+		p.problems.add(Problem{File: p.opts.Name, Column: "loads", Expected: trimExpected(err)})
+	}
+	if problem, ok := s.resolver.problems[""]; ok {
+		s.problem(0, "", problem.Found, problem.Expected, problem.Mend)
+	}
+	if p.rows == 0 && len(p.problems.Problems) == 0 {
+		p.problems.add(Problem{File: p.opts.Name, Expected: "rows of points below the header", Mend: "the file has a header only"})
+	}
+	if err := p.problems.orNil(); err != nil {
+		return nil, err
+	}
+	sum, err := p.src.hashed()
+	if err != nil {
+		return nil, fmt.Errorf("%s: cannot read: %w", p.opts.Name, err)
+	}
+	sv.SHA256, sv.PointsRead, sv.Conditions = sum, p.rows, p.conditions
+	s.finish()
+	return sv, nil
+}
+
+// checkStructure narrows the known spans to the structure of the survey.
+func (p *PointReader) checkStructure() {
+	all := p.opts.Known
+	p.opts.Known = OfStructure(all, p.opts.Structure)
+	if len(all) > 0 && len(p.opts.Known) == 0 {
+		p.problems.add(Problem{File: p.opts.Name, Column: "structure", Found: p.opts.Structure, Expected: fmt.Sprintf("a structure of the cables file, such as %s", quote(all[0].Structure)),
+			Mend: "write it the same in both files, or say --structure"})
+	}
+	seen := map[[2]string]string{}
+	for _, d := range p.opts.Known {
+		key := [2]string{strings.ToLower(d.Cable), strings.ToLower(d.Span)}
+		if other, twice := seen[key]; twice && !strings.EqualFold(other, d.Structure) {
+			p.problems.add(Problem{File: p.opts.Name, Column: "structure", Expected: fmt.Sprintf("the structure of the survey: the cables file has cable %s in %s and in %s", quote(d.Cable), quote(other), quote(d.Structure)),
+				Mend: "add a line \"# structure: NAME\" at the top, or say --structure"})
+			return
+		}
+		seen[key] = d.Structure
+	}
+}
+
+func trimExpected(err error) string {
+	text := err.Error()
+	if len(text) > 9 && text[:9] == "expected " {
+		return text[9:]
+	}
+	return text
+}
+
+// sorter puts points where they belong. Every row ends in exactly one place.
+type sorter struct {
+	survey   *Survey
+	resolver *resolver
+	reader   *PointReader
+	spans    map[[2]string]int
+	ids      map[string]Point
+	twice    int
+}
+
+func (s *sorter) problem(line int, column, found, expected, mend string) {
+	s.reader.problems.add(Problem{File: s.survey.File, Line: line, Column: column, Found: found, Expected: expected, Mend: mend})
+}
+
+func (s *sorter) place(pt Point, code []byte) {
+	use := s.resolver.use(code)
+	pt.Code = use.Code
+	if s.repeated(pt) {
+		use.Points--
+		s.survey.Ignored = append(s.survey.Ignored, pt)
+		return
+	}
+	switch use.Role {
+	case Control:
+		s.survey.Control = append(s.survey.Control, pt)
+	case Ground:
+		s.survey.Ground = append(s.survey.Ground, pt)
+	case Ignored:
+		if problem, ok := s.resolver.problems[use.Code]; ok {
+			s.problem(pt.Line, "code", problem.Found, problem.Expected, problem.Mend)
+			delete(s.resolver.problems, use.Code)
+		}
+		s.survey.Ignored = append(s.survey.Ignored, pt)
+	default:
+		s.onSpan(pt, use)
+	}
+}
+
+// repeated finds a second row with the same id: refused when the coordinates differ, used once when they do not.
+func (s *sorter) repeated(pt Point) bool {
+	if pt.ID == "" {
+		return false
+	}
+	first, again := s.ids[pt.ID]
+	if !again {
+		s.ids[pt.ID] = pt
+		return false
+	}
+	if first.E != pt.E || first.N != pt.N || first.Z != pt.Z || first.Code != pt.Code {
+		s.problem(pt.Line, "id", pt.ID, fmt.Sprintf("an id of its own: line %d has the same one with other values", first.Line), "rename one of the two")
+		return true
+	}
+	s.twice++
+	s.survey.Notices = append(s.survey.Notices, Notice{File: s.survey.File, Line: pt.Line, Column: "id",
+		Text: fmt.Sprintf("point %s repeats line %d to the digit: used once", quote(pt.ID), first.Line)})
+	return true
+}
+
+func (s *sorter) onSpan(pt Point, use *CodeUse) {
+	key := [2]string{use.Cable, use.Span}
+	i, ok := s.spans[key]
+	if !ok {
+		i = len(s.survey.Spans)
+		s.spans[key] = i
+		s.survey.Spans = append(s.survey.Spans, SpanPoints{Cable: use.Cable, Span: use.Span})
+	}
+	sp := &s.survey.Spans[i]
+	end := map[Role]**Point{SupportA: &sp.A, SupportB: &sp.B}[use.Role]
+	switch {
+	case end == nil:
+		sp.Points = append(sp.Points, pt)
+	case *end != nil:
+		s.problem(pt.Line, "code", pt.Code, fmt.Sprintf("one %s of cable %s: line %d is one already", use.Role, quote(use.Cable), (*end).Line),
+			"give one of the two another code, or say --code")
+	default:
+		*end = &pt
+	}
+}
+
+// finish writes down what was assumed and what looks odd.
+func (s *sorter) finish() {
+	sv := s.survey
+	for _, u := range s.resolver.order {
+		sv.Codes = append(sv.Codes, *u)
+	}
+	sv.Guesses = s.reader.guesses
+	if !s.reader.hasCodes && len(sv.Codes) > 0 && sv.Codes[0].How != "--cable" {
+		sv.Guesses = append(sv.Guesses, Guess{What: "cable", Taken: sv.Codes[0].Cable, Why: "the file has no codes", SetBy: "--cable"})
+	}
+	sv.Notices = append(s.reader.notices, sv.Notices...)
+	for _, n := range s.resolver.notices {
+		sv.Notices = append(sv.Notices, Notice{File: sv.File, Text: n})
+	}
+	if n := count(sv.Ignored, func(p Point) bool { return p.Code == "" }); n > 0 && s.reader.hasCodes {
+		sv.Notices = append(sv.Notices, Notice{File: sv.File, Text: fmt.Sprintf("%d points have no code and are set aside", n)})
+	}
+	for _, sp := range sv.Spans {
+		s.odd(sp)
+	}
+}
+
+func count(points []Point, keep func(Point) bool) (n int) {
+	for _, p := range points {
+		if keep(p) {
+			n++
+		}
+	}
+	return n
+}
+
+// odd tells a chord that does not fit the design span, by a factor of feet to metres above all.
+func (s *sorter) odd(sp SpanPoints) {
+	if sp.A == nil || sp.B == nil {
+		return
+	}
+	chord := math.Hypot(sp.A.E-sp.B.E, sp.A.N-sp.B.N)
+	for _, d := range s.resolver.known {
+		if d.Cable != sp.Cable || d.Span != sp.Span || d.SpanLength == nil {
+			continue
+		}
+		ratio := chord / d.SpanLength.Value
+		add := func(text string) {
+			s.survey.Notices = append(s.survey.Notices, Notice{File: s.survey.File, Text: fmt.Sprintf("cable %s: the surveyed supports are %.3f m apart, the design span is %.3f m: %s", quote(sp.Cable), chord, d.SpanLength.Value, text)})
+		}
+		switch {
+		case math.Abs(ratio*foot-1) < 0.02:
+			add("the file may be in feet: say --unit ft or us-ft")
+		case math.Abs(ratio/foot-1) < 0.02:
+			add("the file may be in metres: check --unit and the units in the header")
+		case math.Abs(ratio-1) > 0.01:
+			add("check the codes, the units and the cables file")
+		}
+	}
+}

@@ -1,0 +1,145 @@
+package survey
+
+import (
+	"math"
+	"strconv"
+)
+
+// numberFault says why a text is not a number of a survey; "" when it is one.
+type numberFault string
+
+const (
+	faultEmpty     numberFault = "empty cell"
+	faultNotNumber numberFault = "not a number"
+	faultNotFinite numberFault = "not a finite number"
+	faultComma     numberFault = "comma"
+	faultPoint     numberFault = "point"
+	faultGrouped   numberFault = "grouped"
+)
+
+var powers = [...]float64{1, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22}
+
+// parseNumber reads a plain decimal number: sign, digits, one decimal mark, optional exponent. Everything else that a
+// general parser takes (NaN, Inf, hexadecimal, underscores, grouping) is refused by name. Numbers of up to 15 digits are
+// exact by one division (Clinger 1990, How to read floating point numbers accurately); longer ones go to strconv.
+func parseNumber(cell []byte, mark byte) (float64, numberFault) {
+	i, n := 0, len(cell)
+	if n == 0 {
+		return 0, faultEmpty
+	}
+	negative := cell[0] == '-'
+	if negative || cell[0] == '+' {
+		i++
+	}
+	var mantissa uint64
+	digits, decimals, seen := 0, -1, 0
+	for ; i < n; i++ {
+		c := cell[i]
+		switch {
+		case c >= '0' && c <= '9':
+			seen++
+			if mantissa > 0 || c != '0' {
+				digits++
+			}
+			if digits <= 18 {
+				mantissa = mantissa*10 + uint64(c-'0')
+			}
+			if decimals >= 0 {
+				decimals++
+			}
+			continue
+		case c == mark && decimals < 0:
+			decimals = 0
+			continue
+		}
+		break
+	}
+	if i < n || seen == 0 || digits > 15 || decimals > 22 {
+		return slowNumber(cell, mark)
+	}
+	v := float64(mantissa)
+	if decimals > 0 {
+		v /= powers[decimals]
+	}
+	if negative {
+		v = -v
+	}
+	return v, ""
+}
+
+// slowNumber handles exponents and many digits, and finds the name of the fault.
+func slowNumber(cell []byte, mark byte) (float64, numberFault) {
+	text := make([]byte, 0, len(cell))
+	marks, commas, points, digits := 0, 0, 0, 0
+	for i, c := range cell {
+		switch {
+		case c >= '0' && c <= '9':
+			digits++
+		case c == ',' || c == '.':
+			if c == ',' {
+				commas++
+			} else {
+				points++
+			}
+			if c == mark {
+				marks++
+				c = '.'
+			}
+		case c == '+' || c == '-':
+			if i > 0 && cell[i-1] != 'e' && cell[i-1] != 'E' {
+				return 0, faultNotNumber
+			}
+		case c == 'e' || c == 'E':
+		default:
+			return 0, wordFault(cell)
+		}
+		text = append(text, c)
+	}
+	switch {
+	case commas > 0 && points > 0, commas > 1, points > 1:
+		return 0, faultGrouped
+	case mark == '.' && commas == 1:
+		return 0, faultComma
+	case mark == ',' && points == 1:
+		return 0, faultPoint
+	case digits == 0 || marks > 1:
+		return 0, faultNotNumber
+	}
+	v, err := strconv.ParseFloat(string(text), 64)
+	switch {
+	case err != nil && math.IsInf(v, 0):
+		return 0, faultNotFinite
+	case err != nil:
+		return 0, faultNotNumber
+	}
+	return v, ""
+}
+
+// wordFault tells NaN and Inf, which other parsers take, from plain text.
+func wordFault(cell []byte) numberFault {
+	if v, err := strconv.ParseFloat(string(cell), 64); err == nil && (math.IsNaN(v) || math.IsInf(v, 0)) {
+		return faultNotFinite
+	}
+	return faultNotNumber
+}
+
+// describe gives expectation and remedy for a fault in a cell.
+func (f numberFault) describe(cell string, mark byte) (expected, mend string) {
+	expected = "a number with a decimal point"
+	if mark == ',' {
+		expected = "a number with a decimal comma"
+	}
+	switch f {
+	case faultEmpty:
+		return "a number", "fill the cell or take the row out"
+	case faultComma:
+		return expected, "write a point for the comma, or say --decimal comma if the whole file has decimal commas"
+	case faultPoint:
+		return expected, "write a comma for the point, or say --decimal point if the whole file has decimal points"
+	case faultGrouped:
+		return expected, "write it without grouping marks"
+	case faultNotFinite:
+		return "a finite number", "take the row out or measure the point again"
+	}
+	return expected, ""
+}
