@@ -45,13 +45,12 @@ func InPlane(obs []Observation, frame Frame, a, b End, o Options) (*Result, erro
 	if err != nil {
 		return nil, err
 	}
-	if err := r.solve(w, share, o); err != nil {
-		return nil, err
+	err = r.solve(w, share, o)
+	if o.RejectBeyond > 0 && (err == nil || len(obs) > 5) {
+		err = r.reject(w, share, o, err)
 	}
-	if o.RejectBeyond > 0 {
-		if err := r.reject(w, share, o); err != nil {
-			return nil, err
-		}
+	if err != nil {
+		return nil, err
 	}
 	r.judge(w, o)
 	if !o.NoAlternatives {

@@ -87,6 +87,39 @@ func (p *curveProblem) start(theta []float64) {
 	t := (d1 - c12*q) / c11
 	c := m0 - m1*t - m2*q
 	theta[0], theta[1] = c-t+q, c+t+q
-	chord := (theta[1] - theta[0]) / l
-	theta[2] = 8 * q / (l * l) / p.base.bend(chord)
+	theta[2] = p.base.curvatureOf(8*q/(l*l), (theta[1]-theta[0])/l)
+}
+
+// deep is the curvature times length above which the slope varies so much that a start from the slope of the chord is too
+// far off: a sag of about a tenth of the length.
+const deep = 0.7
+
+// curvatureOf is the curvature of the curve over the base whose least-squares parabola has second derivative second, for a
+// chord of slope t. Evenly spread points weigh the second derivative of a curve by (1 - u^2)^2, u in [-1, 1] along the
+// base; for a nearly straight curve it is that at the slope of the chord. The slopes of a deep curve of any shape are taken
+// from the catenary, which is near enough to start from.
+func (c Curve) curvatureOf(second, t float64) float64 {
+	half := c.length() / 2
+	high := second / c.bend(t)
+	if math.Abs(high)*half*2 < deep || c.SelfShare == 0 {
+		return high
+	}
+	mean := func(k float64) float64 {
+		s, _ := sinhc(k * half)
+		psi := math.Asinh(t / s)
+		sum := 0.0
+		for _, n := range [...]struct{ u, w float64 }{{-0.8, 0.1296}, {-0.4, 0.7056}, {0, 1}, {0.4, 0.7056}, {0.8, 0.1296}} {
+			sum += n.w / 2.6704 * c.bend(math.Sinh(k*half*n.u+psi))
+		}
+		return sum
+	}
+	low := 0.0
+	for range 12 {
+		if mid := (low + high) / 2; math.Abs(mid*mean(mid)) < math.Abs(second) {
+			low = mid
+		} else {
+			high = mid
+		}
+	}
+	return low
 }

@@ -148,7 +148,7 @@ func TestInclinedSpansOfTextbooks(t *testing.T) {
 		r.is("y_mid_m", c.Z(c.S2/2))
 		r.done()
 	}
-	r, c, s, z := of("O10")
+	r, c, _, z := of("O10")
 	r.is("y_min_m", z)
 	r.is("y_mid_m", c.Z(c.S2/2))
 	r.done()
@@ -157,7 +157,7 @@ func TestInclinedSpansOfTextbooks(t *testing.T) {
 	r.is("drop_high_m", c.Z2-z)
 	r.done()
 
-	r, c, s, _ = of("O15")
+	r, c, s, _ := of("O15")
 	r.is("x_low_m", s)
 	r.is("x_from_high_m", c.S2-s)
 	r.done()

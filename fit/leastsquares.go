@@ -252,15 +252,17 @@ func (s *Solver) predicted() float64 {
 // not. ok means that the steps shrank to the level of rounding; theta is then the solution and the factorisation that of
 // the Jacobian there. fnorm is the norm of the residuals at theta.
 func (s *Solver) contract(p Problem, factor float64) (steps int, fnorm float64, ok bool) {
-	last := math.Inf(1)
+	last, least := math.Inf(1), math.Inf(1)
 	copy(s.next, s.theta)
 	for steps < 300 {
 		steps++
 		s.linearise(p)
 		fnorm = norm(s.r)
-		if !(fnorm < math.Inf(1)) || s.rank() < s.f.n {
+		// A first step may go astray and contract to another stationary point: it would raise the sum of squares.
+		if !(fnorm < math.Inf(1)) || fnorm > least*(1+1e-9) || s.rank() < s.f.n {
 			break
 		}
+		least = fnorm
 		s.gaussNewton()
 		size, level := s.stepSize(fnorm)
 		if size <= level {

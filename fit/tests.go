@@ -15,6 +15,8 @@ import (
 type SingleTest struct {
 	W   float64 // statistic, signed
 	Dof float64 // degrees of freedom of its Student distribution, +Inf for normal
+
+	unchecked bool // the curve follows this point: the others say nothing of it
 }
 
 // p is the two-sided probability of a statistic at least this large.
@@ -47,19 +49,20 @@ func (r *Result) singleTests(w *workspace) []SingleTest {
 		v, sigma := e.foot(&r.Observations[i], w.problem.z0, &g)
 		left := 1 - r.Propagate(g)*r.Propagate(g)/(sigma*sigma) // share of the point's variance left in its residual
 		if left < 1e-6 {
-			out[i] = SingleTest{0, math.Inf(1)} // the curve follows this point: nothing can be said of it
+			out[i] = SingleTest{Dof: math.Inf(1), unchecked: true}
 			continue
 		}
 		v2 := v * v / left
 		rest := 1.0
 		out[i].Dof = math.Inf(1)
 		if f > 1 {
-			without := math.Max(0, sum-v2) / (f - 1)
+			// The rest may be rounding only, or less where the curve bends: the point then stands out, it is not clean.
+			without := math.Max(sum-v2, 1e-12*sum) / (f - 1)
 			if !r.APriori || without > 1 {
 				rest, out[i].Dof = without, f-1
 			}
 		} else if !r.APriori {
-			out[i] = SingleTest{0, math.Inf(1)} // one redundant point cannot tell which of all is wrong
+			out[i] = SingleTest{Dof: math.Inf(1)} // one redundant point cannot tell which of all is wrong
 			continue
 		}
 		out[i].W = v / math.Sqrt(left*rest)
@@ -72,10 +75,14 @@ func (r *Result) singleTests(w *workspace) []SingleTest {
 
 // reject drops the most unlikely point and fits again until none is beyond the limit or a third of the points is gone; then
 // points that fit the final curve after all come back.
-func (r *Result) reject(w *workspace, share float64, o Options) error {
+// solved is the error of the fit to all points: a gross error may have spoilt it.
+func (r *Result) reject(w *workspace, share float64, o Options, solved error) error {
 	alpha := 2 * distuv.UnitNormal.Survival(o.RejectBeyond)
 	most := len(r.Observations) / 3
-	var dropped []Observation
+	dropped, err := r.dropGross(w, share, o, alpha, most, solved)
+	if err != nil {
+		return err
+	}
 	for len(dropped) < most && r.DegreesOfFreedom > 1 {
 		tests := r.singleTests(w)
 		worst := 0
@@ -99,6 +106,59 @@ func (r *Result) reject(w *workspace, share float64, o Options) error {
 	return r.bringBack(w, share, o, dropped)
 }
 
+// gross is how far beyond RejectBeyond an error in height must be to be dropped before the distances are looked at.
+const gross = 10
+
+// dropGross drops errors so large that the nearest curve bends to them: the foot of such a point lies on a steep part of the
+// curve, its distance is small, and the single-point test on distances cannot see it. A parabola in heights alone cannot
+// follow one point so; the scatter of the heights themselves, and how far the cable is from a parabola, is the measure. It does nothing when
+// the fit is sound; solved is the error of that fit.
+func (r *Result) dropGross(w *workspace, share float64, o Options, alpha float64, most int, solved error) (dropped []Observation, err error) {
+	if solved == nil && r.sound(w, o) {
+		return nil, nil
+	}
+	h := Result{A: r.A, B: r.B, Observations: slices.Clone(r.Observations)}
+	for i := range h.Observations {
+		h.Observations[i].VarS, h.Observations[i].CovSZ = 0, 0
+	}
+	for len(dropped) < most {
+		if h.solve(w, 0, o) != nil || h.DegreesOfFreedom < 2 {
+			break
+		}
+		tests := h.singleTests(w)
+		worst := 0
+		for i, t := range tests {
+			if math.Abs(t.W) > math.Abs(tests[worst].W) {
+				worst = i
+			}
+		}
+		rest := slices.Delete(slices.Clone(r.Observations), worst, worst+1)
+		if count, _, _ := stations(rest); math.Abs(tests[worst].W) < gross*o.RejectBeyond || !(tests[worst].p() < alpha) || count < 4 {
+			break
+		}
+		v := r.Observations[worst]
+		dropped = append(dropped, v)
+		s := h.suspect(v, tests[worst], gross*o.RejectBeyond, fmt.Sprintf("gross error in height: w = %.3g", tests[worst].W))
+		r.Rejected = append(r.Rejected, s)
+		r.Observations = rest
+		h.Observations = slices.Delete(h.Observations, worst, worst+1)
+	}
+	return dropped, r.solve(w, share, o)
+}
+
+// sound reports whether the fit keeps a stated accuracy nearly enough that no error in it can be gross.
+func (r *Result) sound(w *workspace, o Options) bool {
+	if !r.APriori || r.VarianceFactor > gross*gross {
+		return false
+	}
+	for _, t := range r.singleTests(w) {
+		if t.unchecked || math.Abs(t.W) > gross*o.RejectBeyond {
+			return false
+		}
+	}
+	return true
+}
+
 // equivalent is the number of standard deviations of a normal error that is as unlikely.
 func equivalent(t SingleTest) float64 {
 	if p := t.p(); p > 1e-300 && !math.IsInf(t.Dof, 1) {
@@ -113,7 +173,7 @@ func (r *Result) bringBack(w *workspace, share float64, o Options, dropped []Obs
 	scale := r.scale()
 	for i, v := range dropped {
 		residual, sd := r.prediction(v, w.problem.z0, scale)
-		t := SingleTest{residual / sd, math.Inf(1)}
+		t := SingleTest{W: residual / sd, Dof: math.Inf(1)}
 		if !r.APriori {
 			t.Dof = float64(r.DegreesOfFreedom)
 		}
