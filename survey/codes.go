@@ -112,7 +112,7 @@ func (r *resolver) resolve(code string) *CodeUse {
 	}
 	switch {
 	case r.cable != "":
-		return &CodeUse{Role: role, Cable: r.spelled(r.cable), Span: r.span, How: "--cable"}
+		return &CodeUse{Role: role, Cable: r.spelled(r.cable), Span: r.span, How: "--cable, or the cable line of the file"}
 	case !r.hasCodes:
 		return r.without()
 	case len(tokens) == 0:
@@ -136,7 +136,7 @@ func (r *resolver) without() *CodeUse {
 		u.Cable, u.Span = r.known[0].Cable, r.known[0].Span
 		u.How = "the file has no codes and the cables file one span; --cable changes it"
 	} else if len(r.known) > 1 {
-		r.problems[""] = Problem{Expected: "the cable that the points are on", Mend: "the file has no codes and the cables file " + fmt.Sprint(len(r.known)) + " spans: say --cable ID"}
+		r.problems[""] = Problem{Expected: "the cable that the points are on", Mend: "the file has no codes and the cables file " + fmt.Sprint(len(r.known)) + " spans: say --cable ID, or add a line \"# cable: ID\" at the top"}
 	}
 	return u
 }

@@ -18,6 +18,9 @@ func (p *PointReader) collect() (*Survey, error) {
 	if p.opts.Structure == "" {
 		p.opts.Structure = p.conditions.Structure
 	}
+	if p.opts.Cable == "" {
+		p.opts.Cable, p.opts.Span = p.conditions.cable, p.conditions.span
+	}
 	p.checkStructure()
 	s := sorter{survey: sv, resolver: newResolver(p.opts, p.hasCodes), reader: p, spans: map[[2]string]int{}, ids: map[string]Point{}}
 	for {
@@ -165,7 +168,7 @@ func (s *sorter) finish() {
 		sv.Codes = append(sv.Codes, *u)
 	}
 	sv.Guesses = s.reader.guesses
-	if !s.reader.hasCodes && len(sv.Codes) > 0 && sv.Codes[0].How != "--cable" {
+	if !s.reader.hasCodes && len(sv.Codes) > 0 && s.reader.opts.Cable == "" {
 		sv.Guesses = append(sv.Guesses, Guess{What: "cable", Taken: sv.Codes[0].Cable, Why: "the file has no codes", SetBy: "--cable"})
 	}
 	sv.Notices = append(s.reader.notices, sv.Notices...)

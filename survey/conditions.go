@@ -8,7 +8,7 @@ import (
 
 // conditionKeys are the keys that a "# key: value" line of a survey file may have.
 var conditionKeys = map[string]bool{"structure": true, "date": true, "temperature": true, "cable temperature": true, "wind": true, "loads": true, "load": true,
-	"instrument": true, "accuracy": true, "crew": true, "unit": true, "units": true, "note": true}
+	"instrument": true, "accuracy": true, "crew": true, "unit": true, "units": true, "cable": true, "span": true, "note": true}
 
 // Set gives one condition by its key, as it stands in a survey file or a flag:
 //
@@ -19,6 +19,7 @@ var conditionKeys = map[string]bool{"structure": true, "date": true, "temperatur
 //	load          CABLE[/SPAN]; 180 +- 10 N/m; along cable | along deck; what it is   (may be given several times)
 //	accuracy      standard deviation of a point: 3 mm, or horizontal 3 mm, vertical 2 mm
 //	unit          of coordinates
+//	cable, span   that all points of the file are on
 //
 // A key given twice with different values is refused, and so is a list of loads beside "as filed" or "not checked".
 func (c *Conditions) Set(key, value string) error {
@@ -46,6 +47,10 @@ func (c *Conditions) Set(key, value string) error {
 		return words(&c.Instrument, value, again, key)
 	case "crew":
 		return words(&c.Crew, value, again, key)
+	case "cable":
+		return words(&c.cable, value, again, key)
+	case "span":
+		return words(&c.span, value, again, key)
 	case "unit", "units":
 		if _, ok := findUnit(value, Length); !ok {
 			return fmt.Errorf("expected a unit of length (%s), found %s", spellings[Length], quote(value))
@@ -62,7 +67,7 @@ func (c *Conditions) Set(key, value string) error {
 	case "load":
 		return c.addLoad(value)
 	}
-	return fmt.Errorf("expected one of structure, date, temperature, wind, loads, load, instrument, accuracy, crew, unit or note, found %s", quote(key))
+	return fmt.Errorf("expected one of structure, date, temperature, wind, loads, load, instrument, accuracy, crew, unit, cable, span or note, found %s", quote(key))
 }
 
 func words(into *string, value string, again bool, key string) error {

@@ -136,8 +136,9 @@ type Conditions struct {
 	Crew             string
 	Notes            []string // other "# key: value" lines, as written
 
-	unit string          // of coordinates, from the file
-	set  map[string]bool // keys that were given
+	unit        string          // of coordinates, from the file
+	cable, span string          // of all points, from the file
+	set         map[string]bool // keys that were given
 }
 
 // LoadKind says which load shapes a cable.

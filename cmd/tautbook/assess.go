@@ -1,0 +1,230 @@
+package main
+
+import (
+	"errors"
+	"fmt"
+	"io"
+	"runtime"
+	"sync"
+
+	"github.com/spf13/cobra"
+
+	"tautbook/fieldsheets"
+	"tautbook/fit"
+	"tautbook/survey"
+	"tautbook/tension"
+)
+
+// assessOptions are the inputs of one assess run.
+type assessOptions struct {
+	readingFlags
+	conditionFlags
+	selfWeight, deckLoad string
+	rejectBeyond         float64
+	format, out          string
+	html, json, csv      string
+	exitByVerdict        bool
+	streams              streams
+}
+
+const assessHelp = `Fits the hanging curve through the points of each cable span, works out today's tension and end reactions, holds them
+against the design at the day's temperature and load, and prints the condition summary.
+
+Design values come from cables.csv; without it there are shapes but no forces, unless --self-weight or --deck-load gives a
+load. Conditions of the visit stand as "# key: value" lines at the top of the survey file or are given by flag.
+
+Points whose normalised residual is beyond --reject-beyond are left out, one at a time, and listed; 0 leaves out none.`
+
+func newAssess(s streams) *cobra.Command {
+	o := &assessOptions{streams: s}
+	cmd := &cobra.Command{
+		Use:   "assess SURVEY...",
+		Short: "Tension, verdict and condition summary from survey files",
+		Long:  assessHelp,
+		Example: `  tautbook assess main-left.csv
+  tautbook assess --cables cables.csv --temperature "17.5 +- 1.5 degC" --loads "as filed" --html summary.html main-left.csv
+  tautbook assess --format json wire.csv --self-weight "50 N/m"`,
+		Args: atLeastOne,
+		RunE: func(cmd *cobra.Command, files []string) error { return o.run(cmd, files) },
+	}
+	o.readingFlags.bind(cmd)
+	o.conditionFlags.bind(cmd)
+	fl := cmd.Flags()
+	fl.StringVar(&o.selfWeight, "self-weight", "", "self weight of every cable that has no design values, for example \"50 +- 1 N/m\"")
+	fl.StringVar(&o.deckLoad, "deck-load", "", "deck load of every cable that has no design values, per horizontal metre")
+	fl.Float64Var(&o.rejectBeyond, "reject-beyond", 6, "leave out points whose normalised residual is beyond this; 0 leaves out none")
+	fl.StringVar(&o.format, "format", "text", "what goes to standard output: text, json, csv or html")
+	fl.StringVar(&o.out, "out", "", "write the result to this file instead of standard output")
+	fl.StringVar(&o.html, "html", "", "also write the condition summary as one HTML file")
+	fl.StringVar(&o.json, "json", "", "also write the result as JSON")
+	fl.StringVar(&o.csv, "csv", "", "also write the result as CSV, one line a cable")
+	fl.BoolVar(&o.exitByVerdict, "exit-by-verdict", false, "exit 3 or 4 when a cable is not as designed (see tautbook --help)")
+	return cmd
+}
+
+func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
+	write, err := writerFor(o.format, o.streams)
+	if err != nil {
+		return err
+	}
+	if !(o.rejectBeyond >= 0) {
+		return usageError{fmt.Errorf("--reject-beyond is %g, expected 0 or more", o.rejectBeyond)}
+	}
+	in, err := o.read(files, *o.values["structure"], o.streams)
+	if err != nil {
+		return err
+	}
+	if err := o.apply(cmd, in.surveys); err != nil {
+		return err
+	}
+	plain, err := o.plainLoad()
+	if err != nil {
+		return err
+	}
+	cases := casesOf(in, plain, fit.Options{RejectBeyond: o.rejectBeyond})
+	cables, err := assessAll(cases)
+	if err != nil {
+		return err
+	}
+	report := newReport(in, cables, o.streams)
+	if err := o.write(write, report); err != nil {
+		return err
+	}
+	return o.exitCode(cables)
+}
+
+// plainLoad is the load of cables without design values, nil when no flag gives one.
+func (o *assessOptions) plainLoad() (*survey.Design, error) {
+	if o.selfWeight == "" && o.deckLoad == "" {
+		return nil, nil
+	}
+	d := &survey.Design{Load: survey.LoadBoth}
+	parse := func(flag, text string, into **survey.Quantity) error {
+		if text == "" {
+			return nil
+		}
+		q, err := survey.ParseQuantity(text, survey.ForcePerLength)
+		if err != nil {
+			return usageError{fmt.Errorf("--%s: %w", flag, err)}
+		}
+		if q.Value <= 0 {
+			return usageError{fmt.Errorf("--%s is %g N/m, expected more than 0", flag, q.Value)}
+		}
+		*into = &q
+		return nil
+	}
+	if err := parse("self-weight", o.selfWeight, &d.SelfWeight); err != nil {
+		return nil, err
+	}
+	if err := parse("deck-load", o.deckLoad, &d.DeckLoad); err != nil {
+		return nil, err
+	}
+	switch {
+	case d.DeckLoad == nil:
+		d.Load = survey.LoadSelfWeight
+	case d.SelfWeight == nil:
+		d.Load = survey.LoadDeck
+	}
+	return d, nil
+}
+
+// casesOf pairs every surveyed span with its design values.
+func casesOf(in input, plain *survey.Design, opts fit.Options) (cases []tension.Case) {
+	for _, sv := range in.surveys {
+		for _, sp := range sv.Spans {
+			d := survey.DesignOf(in.designs, sv.Conditions.Structure, sp.Cable, sp.Span)
+			if d == nil {
+				d = plain
+			}
+			cases = append(cases, tension.Case{Points: sp, File: sv.File, Design: d, Conditions: sv.Conditions, Fit: opts})
+		}
+	}
+	return cases
+}
+
+// assessAll assesses the spans on all cores, in order. Every span that fails is named.
+func assessAll(cases []tension.Case) ([]tension.Assessment, error) {
+	if len(cases) == 0 {
+		return nil, errors.New("no point of the survey is on a cable: see \"tautbook check\" for how the codes were understood")
+	}
+	out := make([]tension.Assessment, len(cases))
+	errs := make([]error, len(cases))
+	var group sync.WaitGroup
+	next := make(chan int)
+	for range min(runtime.GOMAXPROCS(0), len(cases)) {
+		group.Go(func() {
+			for i := range next {
+				if out[i], errs[i] = tension.Assess(cases[i]); errs[i] != nil {
+					errs[i] = fmt.Errorf("%s: %w", cases[i].File, errs[i])
+				}
+			}
+		})
+	}
+	for i := range cases {
+		next <- i
+	}
+	close(next)
+	group.Wait()
+	return out, errors.Join(errs...)
+}
+
+func newReport(in input, cables []tension.Assessment, s streams) fieldsheets.Report {
+	return fieldsheets.NewReport(fieldsheets.Tool{Name: "tautbook", Version: version()}, s.now(),
+		fieldsheets.Input{Surveys: in.surveys, CablesFile: in.cables, CablesNotices: in.notices}, cables)
+}
+
+// writerFor is the printer of a format.
+func writerFor(format string, s streams) (func(io.Writer, fieldsheets.Report) error, error) {
+	switch format {
+	case "text":
+		return func(w io.Writer, r fieldsheets.Report) error {
+			return fieldsheets.WriteText(w, r, fieldsheets.TextOptions{Width: 80, Color: s.color})
+		}, nil
+	case "json":
+		return fieldsheets.WriteJSON, nil
+	case "csv":
+		return fieldsheets.WriteCSV, nil
+	case "html":
+		return fieldsheets.WriteHTML, nil
+	}
+	return nil, usageError{fmt.Errorf("--format is %q, expected text, json, csv or html", format)}
+}
+
+// write prints the result and every extra file that was asked for.
+func (o *assessOptions) write(print func(io.Writer, fieldsheets.Report) error, r fieldsheets.Report) error {
+	for _, extra := range []struct {
+		path  string
+		print func(io.Writer, fieldsheets.Report) error
+	}{{o.html, fieldsheets.WriteHTML}, {o.json, fieldsheets.WriteJSON}, {o.csv, fieldsheets.WriteCSV}} {
+		if extra.path == "" {
+			continue
+		}
+		if err := writeFile(extra.path, func(w io.Writer) error { return extra.print(w, r) }); err != nil {
+			return err
+		}
+	}
+	if o.out != "" {
+		return writeFile(o.out, func(w io.Writer) error { return print(w, r) })
+	}
+	return print(o.streams.out, r)
+}
+
+// exitCode turns verdicts into an exit code when that was asked for.
+func (o *assessOptions) exitCode(cables []tension.Assessment) error {
+	if !o.exitByVerdict {
+		return nil
+	}
+	code := exitDone
+	for _, c := range cables {
+		switch c.Verdict {
+		case tension.Slack, tension.Overload, tension.OffDesign:
+			return codeError(exitOff)
+		case tension.Undecided, tension.NoDesign:
+			code = exitUndecided
+		}
+	}
+	if code == exitDone {
+		return nil
+	}
+	return codeError(code)
+}

@@ -1,0 +1,154 @@
+package fieldsheets
+
+import (
+	"slices"
+	"time"
+
+	"tautbook/survey"
+	"tautbook/tension"
+)
+
+// Report is one visit as it is handed over: what was read, how it was understood, and what it says about every cable.
+// Printers do not change it.
+type Report struct {
+	Tool     Tool                 `json:"tool"`
+	Printed  time.Time            `json:"printed"`
+	Visit    Visit                `json:"visit"`
+	Survey   Survey               `json:"survey"`
+	Cables   []tension.Assessment `json:"cables"`
+	Cautions []string             `json:"cautions"`
+}
+
+// Tool names the program that made a report.
+type Tool struct {
+	Name    string `json:"name"`
+	Version string `json:"version"`
+}
+
+// Visit holds the conditions that all survey files of the report share; a condition that differs between files is
+// "differs by file" here and stands with each file.
+type Visit struct {
+	Structure  string `json:"structure"`
+	Date       string `json:"date"`
+	Wind       string `json:"wind"`
+	Loads      string `json:"loads"`
+	Instrument string `json:"instrument"`
+	Crew       string `json:"crew"`
+}
+
+// Survey is everything that was read.
+type Survey struct {
+	PointsRead int             `json:"points_read"`
+	PointsUsed int             `json:"points_used"`
+	CablesFile string          `json:"cables_file"` // "" when there was none
+	Notices    []survey.Notice `json:"notices"`     // of the cables file
+	Files      []SurveyFile    `json:"files"`
+}
+
+// SurveyFile says how one file was understood.
+type SurveyFile struct {
+	File       string             `json:"file"`
+	SHA256     string             `json:"sha256"`
+	Encoding   string             `json:"encoding"`
+	Separator  string             `json:"separator"`
+	Decimal    string             `json:"decimal"`
+	LengthUnit string             `json:"length_unit"`
+	PointsRead int                `json:"points_read"`
+	PointsUsed int                `json:"points_used"`
+	Conditions Conditions         `json:"conditions"`
+	Columns    []survey.HeaderUse `json:"columns"`
+	Codes      []survey.CodeUse   `json:"codes"`
+	Guesses    []survey.Guess     `json:"guesses"`
+	Notices    []survey.Notice    `json:"notices"`
+}
+
+// Conditions are those of one file.
+type Conditions struct {
+	Structure   string            `json:"structure"`
+	Date        string            `json:"date"`
+	Temperature *survey.Quantity  `json:"cable_temperature_degC"`
+	Wind        string            `json:"wind"`
+	Loads       survey.LoadStatus `json:"loads"`
+	Instrument  string            `json:"instrument"`
+	AccuracyH   *float64          `json:"accuracy_horizontal_m"`
+	AccuracyV   *float64          `json:"accuracy_vertical_m"`
+	Crew        string            `json:"crew"`
+	Notes       []string          `json:"notes"`
+}
+
+// Input is what a report is made of beside the assessments.
+type Input struct {
+	Surveys       []*survey.Survey
+	CablesFile    string          // "" when there was none
+	CablesNotices []survey.Notice // what its reader said
+}
+
+// NewReport puts a report together; printed is the time that stands on the sheet.
+func NewReport(tool Tool, printed time.Time, in Input, cables []tension.Assessment) Report {
+	r := Report{Tool: tool, Printed: printed, Cables: cables, Cautions: slices.Clone(cautions)}
+	r.Survey = Survey{CablesFile: in.CablesFile, Notices: noNil(in.CablesNotices), Files: []SurveyFile{}}
+	if r.Cables == nil {
+		r.Cables = []tension.Assessment{}
+	}
+	for _, sv := range in.Surveys {
+		f := NewSurveyFile(sv)
+		for _, c := range cables {
+			if c.SurveyFile == sv.File {
+				f.PointsUsed += c.Fit.PointsUsed
+			}
+		}
+		r.Survey.PointsRead += f.PointsRead
+		r.Survey.PointsUsed += f.PointsUsed
+		r.Survey.Files = append(r.Survey.Files, f)
+	}
+	r.Visit = visitOf(r.Survey.Files)
+	return r
+}
+
+// NewSurveyFile says how a survey was understood.
+func NewSurveyFile(sv *survey.Survey) SurveyFile {
+	c := sv.Conditions
+	f := SurveyFile{File: sv.File, SHA256: sv.SHA256, Encoding: sv.Encoding, Separator: sv.Separator, Decimal: sv.Decimal, LengthUnit: sv.LengthUnit,
+		PointsRead: sv.PointsRead, Columns: noNil(sv.Header), Codes: noNil(sv.Codes), Guesses: noNil(sv.Guesses), Notices: noNil(sv.Notices),
+		Conditions: Conditions{Structure: c.Structure, Temperature: c.CableTemperature, Wind: c.Wind, Loads: c.Loads, Instrument: c.Instrument,
+			Crew: c.Crew, Notes: noNil(c.Notes)}}
+	if !c.Date.IsZero() {
+		f.Conditions.Date = c.Date.Format(time.DateOnly)
+	}
+	if f.Conditions.Loads == "" {
+		f.Conditions.Loads = survey.LoadsNotChecked
+	}
+	if c.Accuracy != nil {
+		h, v := c.Accuracy.Horizontal, c.Accuracy.Vertical
+		f.Conditions.AccuracyH, f.Conditions.AccuracyV = &h, &v
+	}
+	return f
+}
+
+// noNil makes an absent list an empty one, so that JSON has [] and not null.
+func noNil[T any](list []T) []T {
+	if list == nil {
+		return []T{}
+	}
+	return list
+}
+
+const differs = "differs by file"
+
+func visitOf(files []SurveyFile) (v Visit) {
+	for i, f := range files {
+		c := f.Conditions
+		for _, m := range []struct {
+			into *string
+			from string
+		}{{&v.Structure, c.Structure}, {&v.Date, c.Date}, {&v.Wind, c.Wind}, {&v.Loads, string(c.Loads)}, {&v.Instrument, c.Instrument}, {&v.Crew, c.Crew}} {
+			switch {
+			case i == 0:
+				*m.into = m.from
+			case *m.into != m.from:
+				*m.into = differs
+			}
+		}
+	}
+	return v
+}

@@ -1,0 +1,180 @@
+package fieldsheets
+
+import (
+	"bytes"
+	"fmt"
+	"io"
+	"strings"
+
+	"tautbook/survey"
+)
+
+// WriteUnderstanding says how surveys were understood, and nothing that was computed from them: encoding, columns, units,
+// codes and what they map to, guesses with the flag that changes each, and what looks odd.
+func WriteUnderstanding(w io.Writer, files []SurveyFile, spans []SpanCount, o TextOptions) error {
+	p := &textPrinter{width: max(o.Width, 60), color: o.Color}
+	if o.Width == 0 {
+		p.width = 80
+	}
+	for _, f := range files {
+		p.file(f)
+		p.conditions(f.Conditions)
+		for _, s := range spans {
+			if s.File == f.File {
+				p.wrapped("  span     ", s.String())
+			}
+		}
+	}
+	_, err := w.Write(bytes.TrimLeft(p.out.Bytes(), "\n"))
+	return err
+}
+
+// SpanCount is what a file holds of one span, for WriteUnderstanding.
+type SpanCount struct {
+	File, Cable, Span string
+	Points            int
+	A, B              bool
+	Extent            [3]float64 // of easting, northing, elevation, m
+	Design            bool       // the cables file has it
+}
+
+// SpanCounts lists the spans of a survey.
+func SpanCounts(sv *survey.Survey, designs []survey.Design) (out []SpanCount) {
+	for _, sp := range sv.Spans {
+		c := SpanCount{File: sv.File, Cable: sp.Cable, Span: sp.Span, Points: len(sp.Points), A: sp.A != nil, B: sp.B != nil,
+			Design: survey.DesignOf(designs, sv.Conditions.Structure, sp.Cable, sp.Span) != nil}
+		lo, hi := [3]float64{}, [3]float64{}
+		for i, q := range sp.Points {
+			for k, v := range [3]float64{q.E, q.N, q.Z} {
+				if i == 0 {
+					lo[k], hi[k] = v, v
+				}
+				lo[k], hi[k] = min(lo[k], v), max(hi[k], v)
+			}
+		}
+		for k := range c.Extent {
+			c.Extent[k] = hi[k] - lo[k]
+		}
+		out = append(out, c)
+	}
+	return out
+}
+
+// String is one line about the span.
+func (s SpanCount) String() string {
+	supports := "no supports surveyed"
+	switch {
+	case s.A && s.B:
+		supports = "supports A and B"
+	case s.A:
+		supports = "support A only"
+	case s.B:
+		supports = "support B only"
+	}
+	design := "not in the cables file"
+	if s.Design {
+		design = "in the cables file"
+	}
+	label := s.Cable
+	if s.Span != "" {
+		label += "/" + s.Span
+	}
+	return fmt.Sprintf("%s: %d points over %.1f m east, %.1f m north, %.1f m in height; %s; %s", clean(label), s.Points, s.Extent[0], s.Extent[1], s.Extent[2], supports, design)
+}
+
+// understanding is the same for the end of a summary.
+func (p *textPrinter) understanding(r Report) {
+	p.title("How the survey was understood")
+	if r.Survey.CablesFile != "" {
+		p.wrapped("", "Design values: "+clean(r.Survey.CablesFile))
+	}
+	for _, n := range r.Survey.Notices {
+		p.wrapped("  odd      ", noticeText(n))
+	}
+	for _, f := range r.Survey.Files {
+		p.file(f)
+	}
+	p.line("\nMade by %s %s, printed %s.", r.Tool.Name, r.Tool.Version, r.Printed.Format("2006-01-02 15:04"))
+}
+
+func (p *textPrinter) file(f SurveyFile) {
+	p.line("\n%s", clean(f.File))
+	p.line("  SHA-256  %s", f.SHA256)
+	used := ""
+	if f.PointsUsed > 0 {
+		used = fmt.Sprintf(", %d used", f.PointsUsed)
+	}
+	p.wrapped("  text     ", fmt.Sprintf("%s, cells parted by %s, decimal %s; lengths in %s; %d points read%s", f.Encoding, f.Separator, f.Decimal, f.LengthUnit, f.PointsRead, used))
+	var columns []string
+	for _, c := range f.Columns {
+		label := clean(c.Name)
+		if label == "" {
+			label = fmt.Sprint(c.Column)
+		}
+		columns = append(columns, label+" = "+c.Field)
+	}
+	p.wrapped("  columns  ", strings.Join(columns, "; "))
+	for _, c := range f.Codes {
+		p.wrapped("  code     ", codeText(c))
+	}
+	for _, g := range f.Guesses {
+		p.wrapped("  guessed  ", guessText(g))
+	}
+	for _, n := range f.Notices {
+		p.wrapped("  odd      ", noticeText(n))
+	}
+}
+
+func codeText(c survey.CodeUse) string {
+	code := clean(c.Code)
+	if code == "" {
+		code = "(none)"
+	}
+	target := string(c.Role)
+	if c.Cable != "" {
+		target += " of "
+		if c.Role == survey.OnCable {
+			target = ""
+		}
+		target += clean(c.Cable)
+		if c.Span != "" {
+			target += "/" + clean(c.Span)
+		}
+	}
+	return fmt.Sprintf("%s -> %s, %d points (%s)", code, target, c.Points, c.How)
+}
+
+func guessText(g survey.Guess) string {
+	return fmt.Sprintf("%s: %s, because %s; set it by %s", g.What, clean(g.Taken), clean(g.Why), g.SetBy)
+}
+
+func noticeText(n survey.Notice) string {
+	if n.Line > 0 {
+		return fmt.Sprintf("line %d: %s", n.Line, clean(n.Text))
+	}
+	return clean(n.Text)
+}
+
+func (p *textPrinter) conditions(c Conditions) {
+	temperature := "not given"
+	if c.Temperature != nil {
+		temperature = degrees(*c.Temperature)
+	}
+	accuracy := "not given: it will be estimated from the residuals"
+	if c.AccuracyH != nil && c.AccuracyV != nil {
+		accuracy = fmt.Sprintf("%.3g mm horizontal, %.3g mm vertical", 1000**c.AccuracyH, 1000**c.AccuracyV)
+	}
+	p.wrapped("  visit    ", fmt.Sprintf("structure %s; date %s; cable temperature %s; loads %s; accuracy %s", orWords(c.Structure), orWords(c.Date), temperature, c.Loads, accuracy))
+	for _, n := range c.Notes {
+		p.wrapped("  note     ", clean(n))
+	}
+}
+
+func orWords(s string) string {
+	if s == "" {
+		return "not given"
+	}
+	return clean(s)
+}
+
+func degrees(q survey.Quantity) string { return fmt.Sprintf("%.4g °C, u %.2g °C", q.Value, q.U) }
