@@ -81,7 +81,7 @@ func forces(a *tension.Assessment) group {
 		}
 		g.Rows = append(g.Rows,
 			row{"Tension at " + where, force(r.Tension) + ", slope " + tension.Degree.Figure(r.SlopeDeg)},
-			row{"Vertical reaction there", force(r.Vertical) + upOrDown(r.Vertical.Value)})
+			row{"Vertical reaction there", force(r.Vertical) + upOrDown(r)})
 	}
 	return g
 }
@@ -93,8 +93,8 @@ func noTension(a *tension.Assessment) string {
 	return ": the curve is too flat for this survey"
 }
 
-func upOrDown(v float64) string {
-	if v < 0 {
+func upOrDown(r tension.Reaction) string {
+	if r.Vertical.Value < 0 && r.Surveyed {
 		return " (the support holds the cable down)"
 	}
 	return ""
@@ -112,7 +112,7 @@ func comparison(a *tension.Assessment) group {
 		row{"Ratio today / expected", or(e.Ratio, tension.Plain.Figure, unknown)},
 		row{"Limits", fmt.Sprintf("slack below %.2f, overload above %.2f (%s)", e.SlackBelow, e.OverloadAbove, e.LimitsFrom)},
 		row{"Probabilities", fmt.Sprintf("slack %s, inside the limits %s, overload %s", tension.Probability(e.PSlack), tension.Probability(e.PInside), tension.Probability(e.POverload))},
-		row{"Sag expected / measured", tension.Metre.Figure(e.SagMid) + " / " + tension.Metre.Figure(a.Fit.SagMid)},
+		row{"Sag expected / measured", length(e.SagMid) + " / " + length(e.MeasuredSagMid)},
 		row{"Brought to the day from", fmt.Sprintf("design temperature %+.1f °C, span from %s", e.TemperatureShift, e.SpanFrom)})
 	if e.LoadRatio.Value != 1 {
 		g.Rows = append(g.Rows, row{"Load on record / design load", tension.Percent.Figure(e.LoadRatio)},

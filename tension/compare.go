@@ -37,7 +37,7 @@ func (j *judgement) compare() {
 		return
 	}
 	low, high, from := j.limits()
-	e := &Expected{HorizontalTension: p.must(outHExpected), UnderFiledLoad: p.must(outHFiled), SagMid: p.must(outSagExpected), SlackBelow: low, OverloadAbove: high,
+	e := &Expected{HorizontalTension: p.must(outHExpected), UnderFiledLoad: p.must(outHFiled), MeasuredSagMid: p.must(outSagToday), SagMid: p.must(outSagExpected), SlackBelow: low, OverloadAbove: high,
 		LimitsFrom: from, SpanFrom: "design", TemperatureShift: j.in.x[inTemperature] - j.in.x[inDesignTemp], LoadRatio: p.must(outLoadRatio)}
 	if j.in.frame.surveyed {
 		e.SpanFrom = "surveyed supports"

@@ -58,8 +58,8 @@ func (p published) weight() float64 {
 
 var rigid = math.Inf(1)
 
-func hung(w float64) Cable { return Cable{SelfWeight: w, AxialStiffness: rigid} }
-func decked(q float64) Cable  { return Cable{DeckLoad: q, AxialStiffness: rigid} }
+func hung(w float64) Cable   { return Cable{SelfWeight: w, AxialStiffness: rigid} }
+func decked(q float64) Cable { return Cable{DeckLoad: q, AxialStiffness: rigid} }
 
 func must(t *testing.T) func(State, error) State {
 	return func(s State, err error) State {

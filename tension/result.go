@@ -143,6 +143,7 @@ type Expected struct {
 	TemperatureShift  float64   `json:"temperature_shift_degC"`
 	Uncorrected       *Quantity `json:"ratio_to_design_tension"`               // tension today / design tension, not brought to the day; nil when HorizontalTension is
 	UnderFiledLoad    Quantity  `json:"horizontal_tension_under_filed_load_N"` // without the loads seen on the day
+	MeasuredSagMid    Quantity  `json:"measured_sag_mid_m"`                    // of the measured curve over the same chord as SagMid
 	LoadRatio         Quantity  `json:"load_ratio"`                            // load on record / design load
 }
 
