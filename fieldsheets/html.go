@@ -100,10 +100,10 @@ func together(s string) string {
 func viewOf(i int, a *tension.Assessment) cableView {
 	id := fmt.Sprintf("c%d", i+1)
 	v := cableView{ID: id, Name: clean(name(a)), Verdict: string(a.Verdict), Class: strings.ReplaceAll(string(a.Verdict), " ", "-"),
-		Owner: together(ownerLine(a)), Reason: together(a.Reason), Next: together(a.NextStep), Groups: groups(a)}
+		Owner: together(ownerLine(a)), Reason: together(cleanSentence(a.Reason)), Next: together(cleanSentence(a.NextStep)), Groups: groups(a)}
 	for _, g := range v.Groups {
 		for i := range g.Rows {
-			g.Rows[i].Value = together(g.Rows[i].Value)
+			g.Rows[i].Value = together(cleanSentence(g.Rows[i].Value))
 		}
 	}
 	for _, f := range sorted(a.Findings) {

@@ -162,17 +162,17 @@ func (p *textPrinter) overview(r Report) {
 
 func (p *textPrinter) cable(a *tension.Assessment) {
 	p.title(clean(name(a)) + ": " + strings.ToUpper(string(a.Verdict)))
-	p.wrapped("", a.Reason)
-	p.wrapped("Next: ", a.NextStep)
+	p.wrapped("", cleanSentence(a.Reason))
+	p.wrapped("Next: ", cleanSentence(a.NextStep))
 	for _, f := range sorted(a.Findings) {
 		if f.Level != tension.Note {
-			p.wrapped(fmt.Sprintf("%-6s", strings.ToUpper(string(f.Level))), f.Text)
+			p.wrapped(fmt.Sprintf("%-6s", strings.ToUpper(string(f.Level))), cleanSentence(f.Text))
 		}
 	}
 	for _, g := range groups(a) {
 		p.line("\n  %s", g.Title)
 		for _, r := range g.Rows {
-			p.wrapped(fmt.Sprintf("    %-28s ", r.Label), r.Value)
+			p.wrapped(fmt.Sprintf("    %-28s ", r.Label), cleanSentence(r.Value))
 		}
 	}
 	p.budget(a)
@@ -183,7 +183,7 @@ func (p *textPrinter) cable(a *tension.Assessment) {
 				p.line("\n  Notes")
 				first = false
 			}
-			p.wrapped("    - ", f.Text)
+			p.wrapped("    - ", cleanSentence(f.Text))
 		}
 	}
 }

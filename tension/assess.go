@@ -125,9 +125,9 @@ type judgement struct {
 // fill sets the figures that rest on shape and load alone.
 func (j *judgement) fill() {
 	p, r := &j.p, j.r
-	f := FitSummary{Shape: r.Curve.Shape(), PointsUsed: len(r.Observations), Rejected: r.Rejected, Suspects: r.Suspects,
+	f := FitSummary{Shape: r.Curve.Shape(), PointsUsed: len(r.Observations), Rejected: list(r.Rejected), Suspects: list(r.Suspects),
 		DegreesOfFreedom: r.DegreesOfFreedom, RMS: r.RMS, VarianceFactor: r.VarianceFactor, AccuracyStated: r.APriori,
-		Widening: r.Widening, PlaneFrom: r.Frame.From, AzimuthDeg: r.Frame.Azimuth * 180 / math.Pi, Alternatives: r.Alternatives,
+		Widening: r.Widening, PlaneFrom: r.Frame.From, AzimuthDeg: r.Frame.Azimuth * 180 / math.Pi, Alternatives: list(r.Alternatives),
 		Chord: p.must(outChord), Rise: p.must(outRise), SagMid: p.must(outSagMid), GreatestSag: p.must(outGreatestSag),
 		ArcLength: p.must(outArc), LowPointStation: p.quantity(outLowStation), LowPointElevation: p.quantity(outLowElevation)}
 	f.SagRatio = f.SagMid.Value / f.Chord.Value
@@ -146,7 +146,7 @@ func (j *judgement) fill() {
 	} else {
 		f.LowPointStation, f.LowPointElevation = nil, nil
 	}
-	j.a.Fit = f
+	j.a.Fit, j.a.Reactions = f, []Reaction{}
 	j.a.Load = j.loadSummary()
 	if !p.known(outH) {
 		return
@@ -161,6 +161,14 @@ func (j *judgement) fill() {
 		j.reaction("A", r.A, outVerticalA, outTensionA, outSlopeA, r.Curve.Z1),
 		j.reaction("B", r.B, outVerticalB, outTensionB, outSlopeB, r.Curve.Z2),
 	}
+}
+
+// list is never nil, so that it prints as an empty list.
+func list[T any](l []T) []T {
+	if l == nil {
+		return []T{}
+	}
+	return l
 }
 
 // hangs reports whether the curvature is known to be positive: its value is above 2 u.

@@ -1,0 +1,93 @@
+package fieldsheets
+
+import (
+	"math/rand/v2"
+	"strconv"
+	"time"
+
+	"tautbook/fit"
+	"tautbook/survey"
+	"tautbook/tension"
+)
+
+// The assessments of these tests are invented; they cover every verdict and every figure that can be absent.
+
+func q(v, u float64) *tension.Quantity { return &tension.Quantity{Value: v, U: u} }
+
+func drawn() tension.Drawing {
+	c := fit.Curve{S1: 0, Z1: 420, S2: 96, Z2: 421.8, Curvature: 0.00177, SelfShare: 1}
+	e := c
+	e.Curvature = 0.0022
+	d := tension.Drawing{Curve: c, Expected: &e, From: 0, To: 96, Dropped: [][2]float64{{40, 419.2}}}
+	rng := rand.New(rand.NewPCG(4, 4))
+	for i := range 21 {
+		s := 1 + 94*float64(i)/20
+		r := 0.003 * rng.NormFloat64()
+		d.Stations, d.Elevations, d.Residuals = append(d.Stations, s), append(d.Elevations, c.Z(s)+r), append(d.Residuals, r)
+		d.IDs = append(d.IDs, strconv.Itoa(i+1))
+	}
+	return d
+}
+
+// full is an assessment with every figure.
+func full(cable string, v tension.Verdict) tension.Assessment {
+	h := tension.Quantity{Value: 17160, U: 255}
+	return tension.Assessment{Structure: "Invented footbridge", Cable: cable, SurveyFile: "points.csv", Temperature: q(18, 1.5),
+		Fit: tension.FitSummary{Shape: fit.Catenary, PointsUsed: 21, Rejected: []fit.Suspect{{ID: "7", Line: 9, Station: 40, Residual: -0.31, W: -40, Critical: 6, Reason: "w = -40"}}, Suspects: []fit.Suspect{},
+			DegreesOfFreedom: 18, RMS: 0.0028, VarianceFactor: 1.1, AccuracyStated: true, Widening: 1, PlaneFrom: "supports", AzimuthDeg: 62,
+			Chord: *q(96, 0.003), Rise: *q(1.8, 0.002), CatenaryConstant: q(564.2, 0.8), LowPointStation: q(37.4, 0.03), LowPointElevation: q(418.76, 0.002),
+			SagMid: *q(2.0432, 0.0021), GreatestSag: *q(2.0433, 0.0021), GreatestSagAt: 48.01, ArcLength: *q(96.13, 0.003), SagRatio: 0.02128,
+			Alternatives: []fit.Alternative{{Shape: fit.Parabola, Constant: 563.9, RMS: 0.0029, DeltaAICc: 1.2, TensionOff: -0.0006}}},
+		Load:              tension.LoadSummary{Kind: survey.LoadSelfWeight, SelfWeight: q(38, 0.4), Hanging: *q(37.9, 0.4), Record: survey.LoadsNotChecked},
+		HorizontalTension: &h,
+		Reactions: []tension.Reaction{{Support: "A", Surveyed: true, Station: 0, Elevation: 420, Horizontal: h, Vertical: *q(1503, 22), Tension: *q(17230, 260), SlopeDeg: *q(-5.005, 0.005)},
+			{Support: "B", Surveyed: true, Station: 96, Elevation: 421.8, Horizontal: h, Vertical: *q(2148, 32), Tension: *q(17290, 260), SlopeDeg: *q(7.135, 0.005)}},
+		ImpliedLoad:         &tension.ImpliedLoad{IfTensionAsExpected: q(47.4, 0.6), IfLengthAsDesigned: q(68.5, 2), Filed: *q(37.9, 0.4)},
+		UnstressedLength:    &tension.LengthSummary{Today: *q(96.07, 0.01), Design: *q(95.975, 0.005), Difference: *q(0.095, 0.007)},
+		AtDesignTemperature: q(17500, 260),
+		Expected: &tension.Expected{HorizontalTension: *q(21480, 265), UnderFiledLoad: *q(21480, 265), MeasuredSagMid: *q(2.5507, 0.0021), LoadRatio: *q(1, 0), SagMid: *q(2.037, 0.039),
+			Ratio: q(0.799, 0.015), PSlack: 0.9999, PInside: 0.0001, SlackBelow: 0.9, OverloadAbove: 1.1, LimitsFrom: "cables file", SpanFrom: "surveyed supports", TemperatureShift: 8, Uncorrected: q(0.78, 0.01)},
+		Rival:     &tension.Rival{HorizontalTension: *q(31000, 900), Ratio: *q(1.442, 0.032), LoadFactor: *q(1.81, 0.07), ExtraLoad: *q(30.7, 2.6), PLoadMore: 0.9999},
+		Stiffness: &tension.Stiffness{Lambda2: 18.9, SagPerLoad: 0.39, TensionPerLoad: 0.61, TensionPerDegree: -65, Meaning: "meaning"},
+		Strength:  &tension.Strength{Use: *q(0.432, 0.006), Permitted: 40000, GreatestT: *q(17290, 260), RivalUse: q(0.78, 0.02), RivalPOver: new(float64), SafetyFactor: 4},
+		Verdict:   v, Reason: "The reason in a sentence with 17.16 ± 0.51 kN.", NextStep: "The next step in a sentence.",
+		Findings: []tension.Finding{{ID: "note", Level: tension.Note, Text: "Something to know."}, {ID: "act", Level: tension.Act, Text: "Something to do."}, {ID: "look", Level: tension.Look, Text: "Something to look at."}},
+		Budget:   []tension.BudgetLine{{Input: "self weight on file", Value: "38.00 N/m", U: "0.40 N/m", OnH: 180, OnR: 0.009, Share: 0.7}, {Input: "shape of the cable (survey)", Value: "21 points", U: "rms 2.8 mm", OnH: 20, OnR: 0.001, Share: 0.3}},
+		Drawing:  drawn()}
+}
+
+// bare is an assessment from which everything is absent that can be.
+func bare(cable string, v tension.Verdict) tension.Assessment {
+	a := full(cable, v)
+	a.Temperature, a.HorizontalTension, a.Reactions, a.ImpliedLoad, a.UnstressedLength, a.AtDesignTemperature = nil, nil, []tension.Reaction{}, nil, nil, nil
+	a.Expected, a.Rival, a.Stiffness, a.Strength, a.Budget, a.Findings = nil, nil, nil, nil, []tension.BudgetLine{}, []tension.Finding{}
+	a.Fit.CatenaryConstant, a.Fit.LowPointStation, a.Fit.LowPointElevation, a.Fit.Rejected, a.Fit.Alternatives = nil, nil, nil, []fit.Suspect{}, []fit.Alternative{}
+	a.Load = tension.LoadSummary{Record: survey.LoadsNotChecked}
+	a.Drawing.Expected, a.Drawing.Dropped = nil, nil
+	return a
+}
+
+func sampleSurvey() *survey.Survey {
+	return &survey.Survey{File: "points.csv", SHA256: "00ff", Encoding: "utf-8", Separator: "comma", Decimal: "point", LengthUnit: "m", PointsRead: 23,
+		Header:  []survey.HeaderUse{{Column: 1, Name: "id", Field: "id"}, {Column: 2, Name: "x", Field: "easting"}},
+		Codes:   []survey.CodeUse{{Code: "c1", Role: survey.OnCable, Cable: "c1", Points: 21, How: "id in the cables file"}, {Code: "BM", Role: survey.Control, Points: 2, How: "usual word for control"}},
+		Guesses: []survey.Guess{{What: "separator", Taken: "comma", Why: "it fits", SetBy: "--separator"}}, Notices: []survey.Notice{{File: "points.csv", Line: 4, Text: "odd"}},
+		Conditions: survey.Conditions{Structure: "Invented footbridge", Date: time.Date(2026, 6, 11, 0, 0, 0, 0, time.UTC), CableTemperature: q(18, 1.5), Wind: "light",
+			Accuracy: &survey.Accuracy{Horizontal: 0.003, Vertical: 0.002}, Instrument: "total station", Notes: []string{"invented data"}}}
+}
+
+func sampleReport() Report {
+	flat := bare("flat", tension.Undecided)
+	flat.HorizontalTensionAtLeast = new(float64)
+	*flat.HorizontalTensionAtLeast = 5200
+	flat.Expected = full("", tension.Slack).Expected
+	flat.Expected.Ratio, flat.Expected.Uncorrected = nil, nil
+	loaded := full("loaded", tension.Overload)
+	loaded.Load.Listed = []tension.ListedLoad{{Load: *q(30, 1), Spread: survey.AlongCable, What: "service pipe"}}
+	loaded.Load.Record = survey.LoadsListed
+	loaded.Expected.LoadRatio = *q(1.79, 0.05)
+	loaded.Rival.Excluded, loaded.Rival.ExcludedBy = true, "the record of loads"
+	cables := []tension.Assessment{full("c1", tension.AsDesigned), full("c2", tension.Slack), full("c3", tension.OffDesign), loaded, flat, bare("c6", tension.NoDesign)}
+	return NewReport(Tool{Name: "tautbook", Version: "test"}, time.Date(2026, 6, 12, 8, 30, 0, 0, time.UTC),
+		Input{Surveys: []*survey.Survey{sampleSurvey()}, CablesFile: "cables.csv", CablesNotices: []survey.Notice{{File: "cables.csv", Line: 1, Text: "column not used"}}}, cables)
+}
