@@ -77,7 +77,7 @@ func forces(a *tension.Assessment) group {
 	for _, r := range a.Reactions {
 		where := "support " + r.Support
 		if !r.Surveyed {
-			where = "outermost point at end " + r.Support
+			where = "end " + r.Support + " (outermost)"
 		}
 		g.Rows = append(g.Rows,
 			row{"Tension at " + where, force(r.Tension) + ", slope " + tension.Degree.Figure(r.SlopeDeg)},

@@ -8,6 +8,7 @@ import (
 	"io"
 	"slices"
 	"strings"
+	"sync"
 
 	"tautbook/tension"
 )
@@ -18,7 +19,10 @@ var summaryTemplate string
 //go:embed templates/summary.css
 var summaryStyle string
 
-var summaryPage = template.Must(template.New("summary").Parse(summaryTemplate))
+// summaryPage is parsed when it is first printed, not at every start of the program.
+var summaryPage = sync.OnceValue(func() *template.Template {
+	return template.Must(template.New("summary").Parse(summaryTemplate))
+})
 
 // page is the report in the words and pictures of the HTML sheet.
 type page struct {
@@ -77,7 +81,7 @@ func WriteHTML(w io.Writer, r Report) error {
 		p.Files = append(p.Files, fileViewOf(f))
 	}
 	var out bytes.Buffer
-	if err := summaryPage.Execute(&out, p); err != nil {
+	if err := summaryPage().Execute(&out, p); err != nil {
 		return fmt.Errorf("cannot print the summary: %w", err)
 	}
 	_, err := w.Write(out.Bytes())

@@ -18,7 +18,7 @@ func WriteUnderstanding(w io.Writer, files []SurveyFile, spans []SpanCount, o Te
 	}
 	for _, f := range files {
 		p.file(f)
-		p.conditions(f.Conditions)
+		p.conditions(f)
 		for _, s := range spans {
 			if s.File == f.File {
 				p.wrapped("  span     ", s.String())
@@ -141,26 +141,36 @@ func codeText(c survey.CodeUse) string {
 			target += "/" + clean(c.Span)
 		}
 	}
-	return fmt.Sprintf("%s -> %s, %d points (%s)", code, target, c.Points, c.How)
+	points := "points"
+	if c.Points == 1 {
+		points = "point"
+	}
+	return fmt.Sprintf("%s -> %s, %d %s (%s)", code, target, c.Points, points, c.How)
 }
 
 func guessText(g survey.Guess) string {
-	return fmt.Sprintf("%s: %s, because %s; set it by %s", g.What, clean(g.Taken), clean(g.Why), g.SetBy)
+	return fmt.Sprintf("%s: %s, because %s; set it by %s", g.What, clean(g.Taken), cleanSentence(g.Why), g.SetBy)
 }
 
 func noticeText(n survey.Notice) string {
 	if n.Line > 0 {
-		return fmt.Sprintf("line %d: %s", n.Line, clean(n.Text))
+		return fmt.Sprintf("line %d: %s", n.Line, cleanSentence(n.Text))
 	}
-	return clean(n.Text)
+	return cleanSentence(n.Text)
 }
 
-func (p *textPrinter) conditions(c Conditions) {
+func (p *textPrinter) conditions(f SurveyFile) {
+	c := f.Conditions
 	temperature := "not given"
 	if c.Temperature != nil {
 		temperature = degrees(*c.Temperature)
 	}
 	accuracy := "not given: it will be estimated from the residuals"
+	for _, col := range f.Columns {
+		if strings.HasPrefix(col.Field, "u_") {
+			accuracy = "with each point"
+		}
+	}
 	if c.AccuracyH != nil && c.AccuracyV != nil {
 		accuracy = fmt.Sprintf("%.3g mm horizontal, %.3g mm vertical", 1000**c.AccuracyH, 1000**c.AccuracyV)
 	}

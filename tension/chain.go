@@ -172,7 +172,7 @@ func (in *inputs) design(y *outputs, x []float64) (*State, []lack) {
 	var missing []lack
 	need := func(ok bool, column string) {
 		if !ok {
-			missing = append(missing, lack{"expected tension", column + " is missing"})
+			missing = append(missing, lack{"expected tension", "missing " + column})
 		}
 	}
 	need(in.have[inTension] || in.have[inSag], "design_tension (or design_sag)")

@@ -60,15 +60,21 @@ func Decimals(value, expanded float64) int {
 // Figure prints a value with its expanded uncertainty U = 2 u (k = 2), U to two significant digits and the value to the
 // same place: "23.41 ± 0.31 kN". Without uncertainty it prints the value to four significant digits.
 func (s Scale) Figure(q Quantity) string {
-	if q.U == 0 {
+	if exact(q) {
 		return s.Value(q)
 	}
 	d := Decimals(q.Value/s.Per, q.Expanded()/s.Per)
 	return s.suffix(fmt.Sprintf("%s ± %s", fixed(q.Value/s.Per, d), fixed(q.Expanded()/s.Per, d)))
 }
 
+// exact reports whether an uncertainty is none, or no more than the rounding of a propagation.
+func exact(q Quantity) bool { return q.U <= 1e-10*math.Abs(q.Value) }
+
 // Value prints the value alone, to the place that its uncertainty allows, with the unit.
 func (s Scale) Value(q Quantity) string {
+	if exact(q) {
+		q.U = 0
+	}
 	return s.suffix(fixed(q.Value/s.Per, Decimals(q.Value/s.Per, q.Expanded()/s.Per)))
 }
 

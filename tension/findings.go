@@ -272,8 +272,16 @@ func (j *judgement) tellMissing() {
 		j.add("no-design", Look, "No line of the cables file is for this span: shape only, no forces and no verdict.")
 		return
 	}
+	why := map[string][]string{}
+	var order []string
 	for _, l := range j.p.lacks {
-		j.add("missing", Look, "No %s: %s.", l.what, l.why)
+		if why[l.what] == nil {
+			order = append(order, l.what)
+		}
+		why[l.what] = append(why[l.what], l.why)
+	}
+	for _, what := range order {
+		j.add("missing", Look, "No %s: %s.", what, strings.Join(why[what], "; "))
 	}
 	if j.d.BreakingLoad == nil || j.d.SafetyFactor == nil {
 		j.add("no-strength", Note, "Strength was not checked: breaking_load or safety_factor is missing.")

@@ -1,5 +1,5 @@
 // Command generate writes the demonstration site from known states of invented cables, so that every number in the demo
-// has a truth behind it. Run it in cmd/tautbook/demo: go run ./generate
+// has a truth behind it. Run it in cmd/tautbook: go run ./demo/generate demo
 package main
 
 import (
@@ -8,6 +8,7 @@ import (
 	"math"
 	"math/rand/v2"
 	"os"
+	"path/filepath"
 	"strings"
 
 	"tautbook/tension"
@@ -96,6 +97,9 @@ var (
 
 func main() {
 	log.SetFlags(0)
+	if len(os.Args) != 2 {
+		log.Fatal("usage: go run ./demo/generate DIR")
+	}
 	rng := rand.New(rand.NewPCG(20260611, 7))
 	write("main-left.csv", mainLeftFile(rng))
 	write("main-right.txt", mainRightFile(rng))
@@ -107,7 +111,7 @@ func main() {
 }
 
 func write(name, text string) {
-	if err := os.WriteFile(name, []byte(text), 0o644); err != nil {
+	if err := os.WriteFile(filepath.Join(os.Args[1], name), []byte(text), 0o644); err != nil {
 		log.Fatal(err)
 	}
 }
