@@ -29,16 +29,28 @@ type Case struct {
 // budget. It fails only when no curve can be fitted; everything else that is missing is a finding.
 func Assess(c Case) (Assessment, error) {
 	listed := c.listedHere()
+	r, err := c.fit(listed)
+	if err != nil {
+		return Assessment{}, fmt.Errorf("cable %q, span %q: %w", c.Points.Cable, c.Points.Span, err)
+	}
+	j := c.judgement(r, listed)
+	j.fill()
+	j.compare()
+	j.decide()
+	j.tell()
+	j.a.Budget = j.budget()
+	j.a.Drawing = j.drawing()
+	return j.a, nil
+}
+
+// fit puts the curve of the load on the day through the points.
+func (c Case) fit(listed []survey.ListedLoad) (*fit.Result, error) {
 	opts := c.Fit
 	opts.Shape, opts.SelfShare = shapeFor(c.Design, listed)
 	if acc := c.Conditions.Accuracy; acc != nil {
 		opts.SigmaAlong, opts.SigmaUp = acc.Horizontal, acc.Vertical
 	}
-	r, err := fit.Cable(c.Points, opts)
-	if err != nil {
-		return Assessment{}, fmt.Errorf("cable %q, span %q: %w", c.Points.Cable, c.Points.Span, err)
-	}
-	return c.judge(r, listed), nil
+	return fit.Cable(c.Points, opts)
 }
 
 // listedHere are the loads on record that concern this span.
@@ -82,8 +94,8 @@ func shapeFor(d *survey.Design, listed []survey.ListedLoad) (fit.Shape, float64)
 	}
 }
 
-// judge is the part of Assess after the fit.
-func (c Case) judge(r *fit.Result, listed []survey.ListedLoad) Assessment {
+// judgement lays out the inputs and works out every figure with its uncertainty.
+func (c Case) judgement(r *fit.Result, listed []survey.ListedLoad) *judgement {
 	j := &judgement{Case: c, r: r, d: c.Design, record: c.Conditions.Loads}
 	if j.record == "" {
 		j.record = survey.LoadsNotChecked
@@ -100,13 +112,7 @@ func (c Case) judge(r *fit.Result, listed []survey.ListedLoad) Assessment {
 	if c.Design != nil && c.Design.Structure != "" {
 		j.a.Structure = c.Design.Structure
 	}
-	j.fill()
-	j.compare()
-	j.decide()
-	j.tell()
-	j.a.Budget = j.budget()
-	j.a.Drawing = j.drawing()
-	return j.a
+	return j
 }
 
 // judgement is one assessment in the making.

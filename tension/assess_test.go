@@ -7,15 +7,6 @@ import (
 	"tautbook/survey"
 )
 
-func finding(a Assessment, id string) string {
-	for _, f := range a.Findings {
-		if f.ID == id {
-			return f.Text
-		}
-	}
-	return ""
-}
-
 // The story of one cable: more sag is slack only when the loads were looked at and are as filed; an unlisted load with the
 // same sag is off design until it is listed, and then it is overload.
 func TestVerdictFollowsTheRecordOfLoads(t *testing.T) {
@@ -42,13 +33,6 @@ func TestVerdictFollowsTheRecordOfLoads(t *testing.T) {
 		a := c.site.assess(t, rand.New(rand.NewPCG(3, 1)), c.cond)
 		if a.Verdict != c.want {
 			t.Errorf("%s: %s (%s), want %s", c.name, a.Verdict, a.Reason, c.want)
-		}
-		t.Logf("%s: %s\n  %s\n  %s", c.name, a.Verdict, a.Reason, a.NextStep)
-		for _, f := range a.Findings {
-			t.Logf("   [%s %s] %s", f.Level, f.ID, f.Text)
-		}
-		for _, b := range a.Budget {
-			t.Logf("   %-30s %-16s %-12s %6.0f N %.4f %.0f %%", b.Input, b.Value, b.U, b.OnH, b.OnR, 100*b.Share)
 		}
 	}
 }

@@ -17,6 +17,7 @@ type site struct {
 	extra   float64 // load beside the filed one, as a factor of it
 	weigh   float64 // true load / filed load (weight on file in error), 1 = right
 	stiff   float64 // true EA / filed EA
+	widen   float64 // true expansion / filed one
 	day     float64 // true temperature, degC
 	points  int
 	sigma   float64 // of a point, m
@@ -31,11 +32,45 @@ func footbridge() site {
 	return site{design: survey.Design{Cable: "hand", Load: survey.LoadSelfWeight, SelfWeight: q(38, 0.4), SpanLength: q(96, 0), Rise: q(1.8, 0),
 		Tension: q(21900, 0), Temperature: q(10, 0), AxialStiffness: q(14e6, 4e5), Expansion: q(12e-6, 5e-7), BreakingLoad: q(160e3, 0),
 		SafetyFactor: &sf, SlackBelow: &lim, OverloadAbove: &lim},
-		chord: Chord{96, 1.8}, weigh: 1, stiff: 1, day: 18, points: 21, sigma: 0.003, support: 0.002}
+		chord: Chord{96, 1.8}, weigh: 1, stiff: 1, widen: 1, day: 18, points: 21, sigma: 0.003, support: 0.002}
+}
+
+// mainCable is a deep cable under a deck: its shape hardly answers to load.
+func mainCable() site {
+	sf, slack, over := 3.0, 0.05, 0.10
+	return site{design: survey.Design{Cable: "hand", Load: survey.LoadDeck, DeckLoad: q(1450, 15), SpanLength: q(96, 0), Rise: q(1.8, 0),
+		Tension: q(208800, 0), Temperature: q(10, 0), AxialStiffness: q(95e6, 4e6), Expansion: q(12e-6, 5e-7), BreakingLoad: q(1050e3, 0),
+		SafetyFactor: &sf, SlackBelow: &slack, OverloadAbove: &over},
+		chord: Chord{96, 1.8}, weigh: 1, stiff: 1, widen: 1, day: 17, points: 25, sigma: 0.003, support: 0.003}
+}
+
+// guy is a taut inclined cable: load shows in the sag, hardly in the tension.
+func guy() site {
+	sf, lim := 3.0, 0.10
+	return site{design: survey.Design{Cable: "hand", Load: survey.LoadSelfWeight, SelfWeight: q(37, 0.3), SpanLength: q(38, 0), Rise: q(24, 0),
+		Tension: q(90000, 0), Temperature: q(10, 0), AxialStiffness: q(75e6, 2e6), Expansion: q(12e-6, 3e-7), BreakingLoad: q(580e3, 0),
+		SafetyFactor: &sf, SlackBelow: &lim, OverloadAbove: &lim},
+		chord: Chord{38, 24}, weigh: 1, stiff: 1, widen: 1, day: 22, points: 25, sigma: 0.0015, support: 0.0008}
+}
+
+// drawn makes the truth differ from the file by as much as the file's uncertainties say.
+func (s site) drawn(rng *rand.Rand) site {
+	off := func(v *survey.Quantity) float64 {
+		if v == nil {
+			return 1
+		}
+		return 1 + v.U/v.Value*rng.NormFloat64()
+	}
+	load := s.design.SelfWeight
+	if load == nil {
+		load = s.design.DeckLoad
+	}
+	s.weigh, s.stiff, s.widen = off(load), off(s.design.AxialStiffness), off(s.design.Expansion)
+	return s
 }
 
 func (s site) cable(load float64) Cable {
-	c := Cable{AxialStiffness: s.design.AxialStiffness.Value * s.stiff, Expansion: s.design.Expansion.Value}
+	c := Cable{AxialStiffness: s.design.AxialStiffness.Value * s.stiff, Expansion: s.design.Expansion.Value * s.widen}
 	if s.design.SelfWeight != nil {
 		c.SelfWeight = s.design.SelfWeight.Value * s.weigh * load
 	}
