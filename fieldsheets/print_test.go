@@ -74,7 +74,8 @@ func TestPrintingTwiceGivesTheSameAndChangesNothing(t *testing.T) {
 	r := sampleReport()
 	before := printed(t, "json", r)
 	for format := range printers {
-		if printed(t, format, r) != printed(t, format, r) {
+		first := printed(t, format, r)
+		if second := printed(t, format, r); first != second {
 			t.Errorf("%s differs from print to print", format)
 		}
 	}

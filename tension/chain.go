@@ -219,7 +219,7 @@ func (in *inputs) chordToday(x []float64, c fit.Curve) (Chord, string) {
 
 // today fills the state of the designer's cable on the day, the comparison, and today's cable at the design temperature.
 func (in *inputs) today(y *outputs, x []float64, day Cable, ch Chord, dt float64) error {
-	exp, err := day.AtLength(y[outS0Design], ch, dt)
+	exp, err := day.atLengthFrom(in.near[outHExpected], y[outS0Design], ch, dt)
 	if err != nil {
 		return fmt.Errorf("the designed cable has no state on the day: %w", err)
 	}
@@ -228,7 +228,7 @@ func (in *inputs) today(y *outputs, x []float64, day Cable, ch Chord, dt float64
 	if len(in.listed) > 0 {
 		alone := day
 		alone.SelfWeight, alone.DeckLoad = filed.self, filed.deck
-		if st, err := alone.AtLength(y[outS0Design], ch, dt); err == nil {
+		if st, err := alone.atLengthFrom(in.near[outHFiled], y[outS0Design], ch, dt); err == nil {
 			y[outHFiled] = st.H
 		}
 	}
@@ -251,7 +251,7 @@ func (in *inputs) today(y *outputs, x []float64, day Cable, ch Chord, dt float64
 	y[outS0Today] = now.Unstressed
 	y[outS0Difference] = now.Unstressed - y[outS0Design]
 	y[outGreatestT] = math.Max(y[outGreatestT], now.GreatestTension())
-	if ref, err := day.AtLength(now.Unstressed, ch, 0); err == nil {
+	if ref, err := day.atLengthFrom(in.near[outHReference], now.Unstressed, ch, 0); err == nil {
 		y[outHReference] = ref.H
 	}
 	return nil
@@ -287,7 +287,11 @@ func (in *inputs) rival(y *outputs, x []float64, c fit.Curve, day Cable, ch Chor
 		}
 		return e.Between(a, b).S, nil
 	}
-	h, err := lengthTension(length, y[outS0Design], x[inAxial]/per, y[outHExpected])
+	guess := y[outHExpected]
+	if near := in.near[outHRival]; near != 0 && !math.IsNaN(near) {
+		guess = near
+	}
+	h, err := lengthTension(length, y[outS0Design], x[inAxial]/per, guess)
 	if err != nil {
 		return
 	}

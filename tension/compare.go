@@ -172,19 +172,36 @@ func (j *judgement) stiffness() *Stiffness {
 func hiddenLoad(excess func(float64) (float64, bool), hanging float64) *float64 {
 	const most = 11.0
 	lo, hi := 1.0, most
-	if e, ok := excess(hi); !ok || e < 0 {
+	eLo, _ := excess(lo)
+	eHi, ok := excess(hi)
+	if !ok || eHi < 0 {
 		return nil
 	}
-	for hi-lo > 1e-6*lo {
-		mid := (lo + hi) / 2
-		e, ok := excess(mid)
-		if !ok {
-			return nil
+	// Regula falsi with halved weights (Illinois; Dowell and Jarratt 1971, BIT 11, 168-174).
+	for side := 0; hi-lo > 1e-4*(hi-1); {
+		mid := (lo*eHi - hi*eLo) / (eHi - eLo)
+		if !(mid > lo && mid < hi) {
+			mid = (lo + hi) / 2
 		}
-		if e < 0 {
-			lo = mid
-		} else {
-			hi = mid
+		e, ok := excess(mid)
+		switch {
+		case !ok:
+			return nil
+		case e < 0:
+			lo, eLo = mid, e
+			if side < 0 {
+				eHi /= 2
+			}
+			side = -1
+		default:
+			hi, eHi = mid, e
+			if side > 0 {
+				eLo /= 2
+			}
+			side = 1
+		}
+		if math.Abs(e) < 1e-6*math.Abs(eHi-eLo) {
+			lo, hi = mid, mid
 		}
 	}
 	extra := (hi - 1) * hanging

@@ -38,6 +38,7 @@ type inputs struct {
 	listed  []survey.ListedLoad // those that concern this span
 	curve   fit.Curve           // shape family and share; its numbers are overwritten from x
 	frame   spanFrame
+	near    outputs // figures at the estimates: first guesses for the states nearby; zero = none
 	dof     float64 // degrees of freedom of the survey block, +Inf when the accuracy is stated and holds
 }
 

@@ -19,6 +19,7 @@ type propagated struct {
 func (in *inputs) propagate() propagated {
 	p := propagated{in: in, effect: make([][]outputs, len(in.sources))}
 	p.y, p.lacks = in.evaluate(in.x)
+	in.near = p.y
 	x := make([]float64, len(in.x))
 	for i, s := range in.sources {
 		p.effect[i] = make([]outputs, len(s.directions))

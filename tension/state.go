@@ -55,7 +55,14 @@ func (c Cable) AtLength(s0 float64, ch Chord, dt float64) (State, error) {
 	if !(s0 > 0) || math.IsInf(s0, 0) {
 		return State{}, fmt.Errorf("%w: unstressed length %g m", errBadInputs, s0)
 	}
-	h := c.startTension(s0, ch, dt)
+	return c.atLengthFrom(0, s0, ch, dt)
+}
+
+// atLengthFrom is AtLength from a first guess of the tension, which a near state gives; not a positive number means none.
+func (c Cable) atLengthFrom(h, s0 float64, ch Chord, dt float64) (State, error) {
+	if !(h > 0) || math.IsInf(h, 0) {
+		h = c.startTension(s0, ch, dt)
+	}
 	if math.IsNaN(h) {
 		return State{}, fmt.Errorf("%w: %.6g m against %.6g m", ErrTooShort, s0*(1+c.Expansion*dt), math.Hypot(ch.Length, ch.Rise))
 	}

@@ -29,7 +29,7 @@ type Lengths struct{ S, X, Y float64 }
 // Rate is the derivative of Lengths by psi.
 func (e Equation) Rate(psi float64) Lengths {
 	ex := math.Exp(psi)
-	c, sh := (ex+1/ex)/2, math.Sinh(psi)
+	c, sh := (ex+1/ex)/2, (ex-1/ex)/2
 	dx := e.G * (1/c + e.Eta)
 	ds := c / (e.KW + e.KQ*dx)
 	return Lengths{ds, ds * dx, ds * dx * sh}
@@ -130,6 +130,9 @@ func (e Equation) Span(run, rise, a, b float64) (float64, float64, error) {
 			cut = 2 / big
 		}
 		a, b = a+cut*da, b+cut*db
+		if math.Abs(da)+math.Abs(db) <= 1e-9*math.Abs(b-a) { // the next step would be its square: rounding
+			return a, b, nil
+		}
 		if miss <= 1e-15*size || (miss <= 1e-11*size && miss >= last/4) {
 			return a, b, nil
 		}

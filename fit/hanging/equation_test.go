@@ -1,0 +1,77 @@
+package hanging
+
+import (
+	"errors"
+	"math"
+	"testing"
+
+	"pgregory.net/rapid"
+)
+
+func equations(t *rapid.T) Equation {
+	k := math.Pow(10, rapid.Float64Range(-5, -1.5).Draw(t, "log curvature"))
+	share := rapid.Float64Range(0, 1).Draw(t, "share")
+	return Equation{KW: k * share, KQ: k * (1 - share), Eta: rapid.Float64Range(0, 3e-3).Draw(t, "strain"), G: rapid.Float64Range(0.999, 1.001).Draw(t, "warmth")}
+}
+
+// Lengths add up over parts, rates are their derivatives, and what Span finds spans.
+func TestLengthsRatesAndSpan(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		e := equations(t)
+		run := rapid.Float64Range(1, 300).Draw(t, "run")
+		rise := run * rapid.Float64Range(-1.7, 1.7).Draw(t, "incline")
+		a, b := e.Start(run, rise)
+		a, b, err := e.Span(run, rise, a, b)
+		if err != nil {
+			t.Fatal(err)
+		}
+		l := e.Between(a, b)
+		size := math.Hypot(run, rise)
+		if math.Abs(l.X-run) > 1e-12*size || math.Abs(l.Y-rise) > 1e-12*size {
+			t.Fatalf("spans %.15g, %.15g instead of %.15g, %.15g", l.X, l.Y, run, rise)
+		}
+		if g := e.G * (1 + e.Eta); l.S > math.Hypot(run, rise)*math.Cosh(math.Max(math.Abs(a), math.Abs(b))) || l.S*g*math.Cosh(b) < size/math.Cosh(b)/2 {
+			t.Fatalf("length %g over %g", l.S, size)
+		}
+		mid := a + rapid.Float64Range(0.05, 0.95).Draw(t, "part")*(b-a)
+		p, q := e.Between(a, mid), e.Between(mid, b)
+		for _, d := range []float64{p.S + q.S - l.S, p.X + q.X - l.X, p.Y + q.Y - l.Y} {
+			if math.Abs(d) > 1e-12*l.S {
+				t.Fatalf("parts miss the whole by %g", d)
+			}
+		}
+		if psi := e.Reach(a, (a+b)/2, p.X); math.Abs(psi-mid) > 1e-9*(1+math.Abs(mid))+1e-11/(b-a) {
+			t.Fatalf("reach %g, want %g", psi, mid)
+		}
+		h := 1e-5 * (b - a)
+		step := e.Between(mid-h, mid+h)
+		rate := e.Rate(mid)
+		if math.Abs(step.X/(2*h)-rate.X) > 1e-6*rate.X || math.Abs(step.S/(2*h)-rate.S) > 1e-6*rate.S {
+			t.Fatalf("rate %+v, by differences %g, %g", rate, step.S/(2*h), step.X/(2*h))
+		}
+	})
+}
+
+// ByLogTension against a difference over the tension, loads and stiffness kept.
+func TestByLogTension(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		e := equations(t)
+		at := func(f float64) Equation { return Equation{KW: e.KW / f, KQ: e.KQ / f, Eta: e.Eta * f, G: e.G} }
+		const h = 1e-5
+		up, down := at(1+h).Between(-0.3, 0.4), at(1-h).Between(-0.3, 0.4)
+		d := e.ByLogTension(-0.3, 0.4)
+		for _, c := range [][2]float64{{d.S, (up.S - down.S) / (2 * h)}, {d.X, (up.X - down.X) / (2 * h)}, {d.Y, (up.Y - down.Y) / (2 * h)}} {
+			if math.Abs(c[0]-c[1]) > 1e-7*math.Abs(d.S) {
+				t.Fatalf("%g, by differences %g", c[0], c[1])
+			}
+		}
+	})
+}
+
+func TestSpanThatCannotBe(t *testing.T) {
+	for _, run := range []float64{math.NaN(), math.Inf(1)} {
+		if _, _, err := (Equation{KW: 0.01, G: 1}).Span(run, 0, -0.1, 0.1); !errors.Is(err, ErrNoShape) {
+			t.Errorf("run %g: %v", run, err)
+		}
+	}
+}
