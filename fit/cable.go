@@ -29,6 +29,8 @@ type workspace struct {
 	solver  Solver
 	problem curveProblem
 	cov     [9]float64
+
+	quantiles quantiles
 }
 
 // InPlane is Cable for points that are already in the plane of the span; a and b are the ends of the chord. The observations
@@ -112,19 +114,19 @@ func (o Observation) name() string {
 // stations counts the distinct stations, up to four, and gives their range.
 func stations(obs []Observation) (count int, lo, hi float64) {
 	lo, hi = math.Inf(1), math.Inf(-1)
-	for _, o := range obs {
-		lo, hi = math.Min(lo, o.S), math.Max(hi, o.S)
+	for i := range obs {
+		lo, hi = min(lo, obs[i].S), max(hi, obs[i].S)
 	}
 	var seen [4]float64
 	near := 1e-6 * (hi - lo)
 next:
-	for _, o := range obs {
+	for i := range obs {
 		for _, s := range seen[:count] {
-			if math.Abs(o.S-s) <= near {
+			if math.Abs(obs[i].S-s) <= near {
 				continue next
 			}
 		}
-		seen[count] = o.S
+		seen[count] = obs[i].S
 		if count++; count == len(seen) {
 			break
 		}
@@ -139,9 +141,10 @@ func (r *Result) solve(w *workspace, share float64, o Options) error {
 		return fmt.Errorf("fit: %d points at different stations; a curve needs 3 and a fourth to check it", count)
 	}
 	z0 := 0.0
-	for _, v := range r.Observations {
-		z0 += v.Z / float64(len(r.Observations))
+	for i := range r.Observations {
+		z0 += r.Observations[i].Z
 	}
+	z0 /= float64(len(r.Observations))
 	w.problem = curveProblem{obs: r.Observations, base: Curve{S1: lo, S2: hi, SelfShare: share}, z0: z0}
 	var start [3]float64
 	w.problem.start(start[:])

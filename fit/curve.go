@@ -2,17 +2,6 @@ package fit
 
 import "math"
 
-// sinhc is sinh(x)/x and its derivative, smooth through zero. The series are exact to rounding for |x| < 1.
-func sinhc(x float64) (s, d float64) {
-	if x2 := x * x; x2 < 1 {
-		s = 1 + x2/6*(1+x2/20*(1+x2/42*(1+x2/72*(1+x2/110*(1+x2/156*(1+x2/210*(1+x2/272)))))))
-		d = x / 3 * (1 + x2/10*(1+x2/28*(1+x2/54*(1+x2/88*(1+x2/130*(1+x2/180*(1+x2/238)))))))
-		return s, d
-	}
-	s = math.Sinh(x) / x
-	return s, (math.Cosh(x) - s) / x
-}
-
 // Shape is the family that the curve belongs to.
 func (c Curve) Shape() Shape {
 	switch c.SelfShare {
@@ -50,9 +39,9 @@ func (c Curve) above(s float64) float64 {
 	}
 	m, t := c.middle(), c.chord()
 	u, l := k*(s-m), k*c.length()/2
-	sl, _ := sinhc(l)
-	sp, _ := sinhc((u + l) / 2)
-	sm, _ := sinhc((u - l) / 2)
+	sl := sinhc(l)
+	sp := sinhc((u + l) / 2)
+	sm := sinhc((u - l) / 2)
 	// S(u) - S(l), whose relative error matters for a steep taut cable: (u^2-l^2) times a smooth quotient.
 	ratio := t / sl
 	return t*(s-m)*sinhcDifference(u, l)/sl + math.Sqrt(1+ratio*ratio)*bow*sp*sm
@@ -62,8 +51,8 @@ func (c Curve) above(s float64) float64 {
 func sinhcDifference(x, y float64) float64 {
 	x2, y2 := x*x, y*y
 	if x2 >= 1 || y2 >= 1 {
-		sx, _ := sinhc(x)
-		sy, _ := sinhc(y)
+		sx := sinhc(x)
+		sy := sinhc(y)
 		return sx - sy
 	}
 	// Sum over n of (x^2n - y^2n)/(2n+1)!, each difference as (x^2 - y^2) times the sum of mixed powers.
@@ -79,7 +68,7 @@ func sinhcDifference(x, y float64) float64 {
 
 // psi is the tangent angle measure (slope = sinh psi) of a catenary at the middle station.
 func (c Curve) psi() float64 {
-	s, _ := sinhc(c.Curvature * c.length() / 2)
+	s := sinhc(c.Curvature * c.length() / 2)
 	return math.Asinh(c.chord() / s)
 }
 
@@ -133,7 +122,7 @@ func (c Curve) ArcLength(sa, sb float64) float64 {
 	}
 	m, k := c.middle(), c.Curvature
 	ua, ub := k*(sa-m), k*(sb-m)
-	s, _ := sinhc((ub - ua) / 2)
+	s := sinhc((ub - ua) / 2)
 	return (sb - sa) * s * math.Cosh((ua+ub)/2+c.psi())
 }
 
@@ -184,42 +173,4 @@ func (c Curve) Gradient(s float64, g *[3]float64) {
 		e := c.prepare()
 		e.at(s, g)
 	}
-}
-
-// catenaryTerms are the parts of a catenary that do not depend on the station, so that a fit computes them once a step.
-type catenaryTerms struct {
-	c                Curve
-	m, l, t, k, h    float64
-	sl, dl           float64 // S(kL/2) and its derivative
-	ratio, cosh      float64 // sinh and cosh of psi
-	ratioByK, coshBy float64 // their derivatives by curvature
-}
-
-func (c Curve) prepare() catenaryTerms {
-	e := catenaryTerms{c: c, m: c.middle(), l: c.length(), t: c.chord(), k: c.Curvature}
-	e.h = e.k * e.l / 2
-	e.sl, e.dl = sinhc(e.h)
-	e.ratio = e.t / e.sl
-	e.cosh = math.Sqrt(1 + e.ratio*e.ratio)
-	e.ratioByK = -e.ratio * e.dl / e.sl * e.l / 2
-	e.coshBy = e.ratio * e.ratioByK / e.cosh
-	return e
-}
-
-// at is the height of the catenary at s; g, when not nil, gets the gradient.
-func (e *catenaryTerms) at(s float64, g *[3]float64) float64 {
-	d1, d2, x := s-e.c.S1, s-e.c.S2, s-e.m
-	u := e.k * x
-	su, du := sinhc(u)
-	sp, dp := sinhc((u + e.h) / 2)
-	sm, dm := sinhc((u - e.h) / 2)
-	bow := e.k / 2 * d1 * d2
-	pq := sp * sm
-	z := (e.c.Z1+e.c.Z2)/2 + e.ratio*x*su + e.cosh*bow*pq
-	if g != nil {
-		byT := x*su/e.sl + e.ratio/(e.cosh*e.sl)*bow*pq
-		g[0], g[1] = 0.5-byT/e.l, 0.5+byT/e.l
-		g[2] = e.ratioByK*x*su + e.ratio*x*du*x + d1*d2/2*e.cosh*pq + bow*(e.coshBy*pq+e.cosh*(dp*d1/2*sm+sp*dm*d2/2))
-	}
-	return z
 }

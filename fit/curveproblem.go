@@ -29,17 +29,29 @@ func (e *evaluator) foot(o *Observation, z0 float64, g *[3]float64) (r, sigma fl
 		sigma = math.Sqrt(o.VarZ)
 		return (dz - z) / sigma, sigma
 	}
-	// Stationarity along the curve: (1, f') W d = 0 with W the inverse covariance and d = (S - t, Z - f(t)).
-	t := o.S
-	det := o.VarS*o.VarZ - o.CovSZ*o.CovSZ
-	for range 20 {
+	// Stationarity along the curve: (1, f') W d = 0 with W the inverse covariance and d = (S - t, Z - f(t)). Newton's method
+	// where the distance is convex along the curve, else, for a point beyond the centre of curvature, a Gauss-Newton step,
+	// which goes down as well; a step that lengthens the distance is halved.
+	t, step := o.S, 0.0
+	least := math.Inf(1)
+	for range 50 {
 		z, slope, bend := e.at(t, nil)
 		ds, dh := o.S-t, dz-z
-		ws, wz := (o.VarZ*ds-o.CovSZ*dh)/det, (o.VarS*dh-o.CovSZ*ds)/det
-		along := (o.VarZ - 2*o.CovSZ*slope + o.VarS*slope*slope) / det
-		step := (ws + slope*wz) / (along - bend*wz)
-		t += step
-		if math.Abs(step) <= 1e-13*(math.Abs(t)+1) || !(math.Abs(step) < math.Inf(1)) {
+		ws, wz := o.VarZ*ds-o.CovSZ*dh, o.VarS*dh-o.CovSZ*ds // W d times the determinant of the covariance
+		if far := ds*ws + dh*wz; far <= least*(1+1e-9) {
+			least = far
+			along := o.VarZ - 2*o.CovSZ*slope + o.VarS*slope*slope
+			down := along - bend*wz
+			if down < along/10 {
+				down = along
+			}
+			step = (ws + slope*wz) / down
+			t += step
+		} else {
+			step /= 2
+			t -= step
+		}
+		if math.Abs(step) <= 1e-13*(math.Abs(t)+1) {
 			break
 		}
 	}
@@ -63,7 +75,8 @@ func (p *curveProblem) Evaluate(theta, r, j []float64) {
 	var sigma float64
 	for i := range p.obs {
 		r[i], sigma = e.foot(&p.obs[i], p.z0, &g)
-		j[i], j[m+i], j[2*m+i] = -g[0]/sigma, -g[1]/sigma, -g[2]/sigma
+		weight := -1 / sigma
+		j[i], j[m+i], j[2*m+i] = weight*g[0], weight*g[1], weight*g[2]
 	}
 }
 
@@ -105,7 +118,7 @@ func (c Curve) curvatureOf(second, t float64) float64 {
 		return high
 	}
 	mean := func(k float64) float64 {
-		s, _ := sinhc(k * half)
+		s := sinhc(k * half)
 		psi := math.Asinh(t / s)
 		sum := 0.0
 		for _, n := range [...]struct{ u, w float64 }{{-0.8, 0.1296}, {-0.4, 0.7056}, {0, 1}, {0.4, 0.7056}, {0.8, 0.1296}} {

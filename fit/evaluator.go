@@ -27,11 +27,7 @@ func (e *evaluator) at(s float64, g *[3]float64) (z, slope, bend float64) {
 	c := &e.c
 	switch {
 	case c.SelfShare == 1:
-		u := e.cat.k * (s - e.cat.m)
-		su, _ := sinhc(u)
-		sinh := u * su
-		slope = e.cat.ratio*math.Sqrt(1+sinh*sinh) + e.cat.cosh*sinh
-		return e.cat.at(s, g), slope, c.Curvature * math.Sqrt(1+slope*slope)
+		return e.cat.at(s, g)
 	case c.SelfShare == 0:
 		if g != nil {
 			c.Gradient(s, g)

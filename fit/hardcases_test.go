@@ -108,3 +108,52 @@ func TestBlunderAmongExactPoints(t *testing.T) {
 		}
 	}
 }
+
+// Points that come back after the final fit stand where they stood in the input.
+func TestDroppedPointsComeBackInOrder(t *testing.T) {
+	obs := noisy(rand.New(rand.NewPCG(3, 1)), Curve{S2: 100, Z2: 20, Curvature: 0.005, SelfShare: 1}, 15, 0.003, true)
+	var w workspace
+	r := Result{B: End{Station: 100}, Observations: append([]Observation(nil), obs...), APriori: true, Widening: 1}
+	x := rejection{Result: &r, w: &w, share: 1, o: Options{RejectBeyond: 5}, alpha: 1e-6, all: obs}
+	for i := range obs {
+		x.left = append(x.left, i)
+	}
+	for _, i := range []int{9, 2} { // both are good points
+		x.drop(i, Suspect{ID: obs[i].ID})
+	}
+	if err := r.solve(&w, 1, x.o); err != nil {
+		t.Fatal(err)
+	}
+	if err := x.bringBack(); err != nil {
+		t.Fatal(err)
+	}
+	if len(r.Rejected) != 0 || len(r.Observations) != len(obs) {
+		t.Fatalf("%d observations, rejected %+v", len(r.Observations), r.Rejected)
+	}
+	for i, o := range r.Observations {
+		if o.ID != obs[i].ID {
+			t.Errorf("place %d holds point %s", i, o.ID)
+		}
+	}
+}
+
+// Residuals that are finite where the derivatives are not once kept the search for a radius going for ever.
+func TestDerivativesThatAreNotFiniteEndTheSearch(t *testing.T) {
+	var s Solver
+	if sol := s.Solve(notFinite{}, []float64{1, 1}); sol.Status.Err() == nil {
+		t.Errorf("status %v", sol.Status)
+	}
+}
+
+type notFinite struct{}
+
+func (notFinite) Size() (int, int) { return 3, 2 }
+
+func (notFinite) Evaluate(theta, r, j []float64) {
+	for i := range r {
+		r[i] = float64(i) + theta[0]
+	}
+	for i := range j {
+		j[i] = math.NaN()
+	}
+}

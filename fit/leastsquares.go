@@ -23,7 +23,7 @@ const (
 	Converged  Status = iota // step and gradient are at the level of rounding
 	Stalled                  // no step lowers the sum of squares any more, the gradient is small
 	OutOfSteps               // MaxIterations reached
-	NotFinite                // residuals or derivatives are not finite at the start
+	NotFinite                // residuals or derivatives are not finite
 )
 
 // Err is nil for a usable end.
@@ -34,7 +34,7 @@ func (s Status) Err() error {
 	case OutOfSteps:
 		return errors.New("fit: the iteration limit was reached before convergence")
 	default:
-		return errors.New("fit: residuals are not finite at the starting values")
+		return errors.New("fit: residuals or their derivatives are not finite")
 	}
 }
 
@@ -77,7 +77,7 @@ func (s *Solver) Solve(p Problem, start []float64) Solution {
 	s.resize(m, n)
 	out := Solution{Status: NotFinite}
 	copy(s.theta, start)
-	if steps, fnorm, ok := s.contract(p, 0.1); ok {
+	if steps, fnorm, ok := s.contract(p, 0.1, 0); ok {
 		out.Status, out.Iterations = Converged, steps
 		return s.finish(out, fnorm)
 	}
@@ -107,7 +107,7 @@ func (s *Solver) Solve(p Problem, start []float64) Solution {
 			break
 		}
 	}
-	_, fnorm, _ = s.contract(p, 0.98)
+	_, fnorm, _ = s.contract(p, 0.98, 10)
 	return s.finish(out, fnorm)
 }
 
@@ -164,6 +164,9 @@ func (s *Solver) lower(p Problem, fnorm float64, delta, par *float64) (Status, f
 			pnorm += s.diag[j] * d * s.diag[j] * d
 		}
 		pnorm = math.Sqrt(pnorm)
+		if !(pnorm < math.Inf(1)) { // derivatives that are not finite: no radius would ever be small enough
+			return NotFinite, fnorm
+		}
 		p.Evaluate(s.next, s.trial, nil)
 		fnorm1 := norm(s.trial)
 		actual := -1.0
@@ -247,12 +250,14 @@ func (s *Solver) predicted() float64 {
 	return norm(s.w3)
 }
 
-// contract takes undamped Gauss-Newton steps from theta as long as each is shorter than the last by the given factor. Near the
-// solution the sum of squares is flat to rounding while the steps, and with them the last digits of the parameters, are
-// not. ok means that the steps shrank to the level of rounding; theta is then the solution and the factorisation that of
-// the Jacobian there. fnorm is the norm of the residuals at theta.
-func (s *Solver) contract(p Problem, factor float64) (steps int, fnorm float64, ok bool) {
-	last, least := math.Inf(1), math.Inf(1)
+// contract takes undamped Gauss-Newton steps from theta while each is shorter than the shortest before it by the given factor;
+// patience is how many in a row may fail that, since with large residuals a step can be short by accident. Near the solution
+// the sum of squares is flat to rounding while the steps, and with them the last digits of the parameters, are not. ok means
+// that the steps shrank to the level of rounding; theta is then the solution and the factorisation that of the Jacobian
+// there. fnorm is the norm of the residuals at theta.
+func (s *Solver) contract(p Problem, factor float64, patience int) (steps int, fnorm float64, ok bool) {
+	shortest, last, before, least := math.Inf(1), math.Inf(1), math.Inf(1), math.Inf(1)
+	fails := 0
 	copy(s.next, s.theta)
 	for steps < 300 {
 		steps++
@@ -262,23 +267,37 @@ func (s *Solver) contract(p Problem, factor float64) (steps int, fnorm float64, 
 		if !(fnorm < math.Inf(1)) || fnorm > least*(1+1e-9) || s.rank() < s.f.n {
 			break
 		}
-		least = fnorm
+		least = min(least, fnorm)
 		s.gaussNewton()
 		size, level := s.stepSize(fnorm)
 		if size <= level {
 			return steps, fnorm, true
 		}
-		if !(size < factor*last) {
-			ok = size <= 1e6*level // the steps have become noise
+		fails++
+		if size < factor*shortest {
+			fails = 0
+		}
+		if size < shortest {
+			shortest = size
+			copy(s.next, s.theta)
+		}
+		if fails > patience {
+			ok = shortest <= 1e6*level // the steps have become noise
 			break
 		}
-		last = size
-		copy(s.next, s.theta) // the best so far
 		for j, d := range s.step {
 			s.theta[j] -= d
 		}
+		// The next step would be rounding, by the worse of the last two contractions, and this one is far below the scatter:
+		// residuals and Jacobian need not be worked out again; what the step takes from the residuals is at a right angle to
+		// what is left.
+		rate := max(size/last, before)
+		if size*rate <= level && rate < 1e-3 && size <= 1e-6*fnorm/math.Sqrt(float64(s.f.m)) {
+			return steps, math.Sqrt(fnorm*fnorm - size*size), true
+		}
+		last, before = size, size/last
 	}
-	if !ok {
+	if !ok || fails > 0 {
 		copy(s.theta, s.next)
 		s.linearise(p)
 	}
@@ -296,11 +315,12 @@ func (s *Solver) stepSize(fnorm float64) (size, level float64) {
 	return math.Sqrt(size), eps * (math.Sqrt(whole) + fnorm)
 }
 
-// rank counts the columns that are not, to rounding, combinations of others.
+// rank counts the columns that are not, to rounding, combinations of others; each is measured by its own length, so that the
+// units of the parameters do not matter.
 func (s *Solver) rank() int {
 	k := 0
 	for j := range s.f.n {
-		if math.Abs(s.f.rdiag[j]) > eps*float64(s.f.m)*math.Abs(s.f.rdiag[0]) {
+		if math.Abs(s.f.rdiag[j]) > eps*float64(s.f.m)*s.f.norm[s.f.pivot[j]] {
 			k++
 		}
 	}

@@ -145,14 +145,14 @@ func TestNISTNonlinear(t *testing.T) {
 				}
 			}
 			t.Logf("%-18s %4d iterations, %4.1f digits, u %4.1f digits, condition %.1e %v", name, sol.Iterations, worst, worstU, condition, covErr)
-			if start == "" {
-				continue
-			}
-			fewestU := 6.0
-			if s.head["name"] == "Lanczos1" {
+			fewest, fewestU := 8.0, 6.0
+			switch s.head["name"] {
+			case "Lanczos1":
 				fewestU = 2.5 // its residuals are of order 1e-13 on data of order 1: rounding of float64 leaves three digits of their sum
+			case "Wampler5", "Filip":
+				fewest = 6 // terms of the polynomial cancel to a millionth and less of their size
 			}
-			if !(worst >= 8) || !(worstU >= fewestU) {
+			if !(worst >= fewest) || !(worstU >= fewestU) {
 				t.Errorf("%s: %.1f digits of parameters, %.1f of standard deviations", name, worst, worstU)
 			}
 		}

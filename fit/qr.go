@@ -51,7 +51,7 @@ func (f *qr) factor() {
 			for i := range cj {
 				cj[i], cb[i] = cb[i], cj[i]
 			}
-			f.rest[big] = f.rest[j]
+			f.rest[j], f.rest[big] = f.rest[big], f.rest[j]
 			f.pivot[j], f.pivot[big] = f.pivot[big], f.pivot[j]
 		}
 		f.reflect(j)
@@ -61,7 +61,7 @@ func (f *qr) factor() {
 // reflect makes the reflector of column j and applies it to the columns after it.
 func (f *qr) reflect(j int) {
 	c := f.column(j)[j:]
-	size := norm(c)
+	size := f.rest[j]
 	if size == 0 {
 		f.rdiag[j] = 0
 		return
@@ -69,16 +69,22 @@ func (f *qr) reflect(j int) {
 	if c[0] < 0 {
 		size = -size
 	}
-	for i := range c {
-		c[i] /= size
+	if inverse := 1 / size; math.Abs(inverse) < math.MaxFloat64 {
+		for i := range c {
+			c[i] *= inverse
+		}
+	} else { // a column of subnormal length
+		for i := range c {
+			c[i] /= size
+		}
 	}
 	c[0]++
 	for k := j + 1; k < f.n; k++ {
 		full := f.column(k)
 		d := full[j:]
 		t := dot(c, d) / c[0]
-		for i := range d {
-			d[i] -= t * c[i]
+		for i, x := range c {
+			d[i] -= t * x
 		}
 		f.rest[k] = norm(full[j+1:])
 	}
@@ -130,10 +136,15 @@ func norm(x []float64) float64 {
 }
 
 func dot(x, y []float64) float64 {
-	s := 0.0
+	var a, b float64 // two sums, so that additions need not wait for each other
 	y = y[:len(x)]
-	for i, v := range x {
-		s += v * y[i]
+	i := 0
+	for ; i+1 < len(x); i += 2 {
+		a += x[i] * y[i]
+		b += x[i+1] * y[i+1]
 	}
-	return s
+	if i < len(x) {
+		a += x[i] * y[i]
+	}
+	return a + b
 }

@@ -3,7 +3,6 @@ package fit
 import (
 	"fmt"
 	"math"
-	"slices"
 
 	"gonum.org/v1/gonum/stat/distuv"
 )
@@ -33,6 +32,30 @@ func (t SingleTest) critical(alpha float64) float64 {
 		return distuv.UnitNormal.Quantile(1 - alpha/2)
 	}
 	return distuv.StudentsT{Sigma: 1, Nu: t.Dof}.Quantile(1 - alpha/2)
+}
+
+// quantiles keeps the last quantiles asked for: one of many cables has mostly the degrees of freedom of the one before, and a
+// quantile costs as much as the fit.
+type quantiles struct {
+	alpha, dof, t float64 // of critical
+	k, low, high  float64 // of region
+}
+
+// critical is t.critical(alpha).
+func (q *quantiles) critical(t SingleTest, alpha float64) float64 {
+	if q.alpha != alpha || q.dof != t.Dof {
+		q.alpha, q.dof, q.t = alpha, t.Dof, t.critical(alpha)
+	}
+	return q.t
+}
+
+// region is the 95 % acceptance region of a variance factor with k degrees of freedom.
+func (q *quantiles) region(k float64) (low, high float64) {
+	if q.k != k {
+		chi := distuv.ChiSquared{K: k}
+		q.k, q.low, q.high = k, chi.Quantile(0.025)/k, chi.Quantile(0.975)/k
+	}
+	return q.low, q.high
 }
 
 // singleTests are the tests of all points against the last solution in w.
@@ -73,137 +96,6 @@ func (r *Result) singleTests(w *workspace) []SingleTest {
 	return out
 }
 
-// reject drops the most unlikely point and fits again until none is beyond the limit or a third of the points is gone; then
-// points that fit the final curve after all come back.
-// solved is the error of the fit to all points: a gross error may have spoilt it.
-func (r *Result) reject(w *workspace, share float64, o Options, solved error) error {
-	alpha := 2 * distuv.UnitNormal.Survival(o.RejectBeyond)
-	most := len(r.Observations) / 3
-	dropped, err := r.dropGross(w, share, o, alpha, most, solved)
-	if err != nil {
-		return err
-	}
-	for len(dropped) < most && r.DegreesOfFreedom > 1 {
-		tests := r.singleTests(w)
-		worst := 0
-		for i, t := range tests {
-			if t.p() < tests[worst].p() || (t.p() == tests[worst].p() && math.Abs(t.W) > math.Abs(tests[worst].W)) {
-				worst = i
-			}
-		}
-		if count, _, _ := stations(slices.Delete(slices.Clone(r.Observations), worst, worst+1)); !(tests[worst].p() < alpha) || count < 4 {
-			break
-		}
-		v := r.Observations[worst]
-		dropped = append(dropped, v)
-		r.Rejected = append(r.Rejected, r.suspect(v, tests[worst], o.RejectBeyond,
-			fmt.Sprintf("w = %.1f, as unlikely as %.2g standard deviations", tests[worst].W, equivalent(tests[worst]))))
-		r.Observations = slices.Delete(r.Observations, worst, worst+1)
-		if err := r.solve(w, share, o); err != nil {
-			return err
-		}
-	}
-	return r.bringBack(w, share, o, dropped)
-}
-
-// gross is how far beyond RejectBeyond an error in height must be to be dropped before the distances are looked at.
-const gross = 10
-
-// dropGross drops errors so large that the nearest curve bends to them: the foot of such a point lies on a steep part of the
-// curve, its distance is small, and the single-point test on distances cannot see it. A parabola in heights alone cannot
-// follow one point so; the scatter of the heights themselves, and how far the cable is from a parabola, is the measure. It does nothing when
-// the fit is sound; solved is the error of that fit.
-func (r *Result) dropGross(w *workspace, share float64, o Options, alpha float64, most int, solved error) (dropped []Observation, err error) {
-	if solved == nil && r.sound(w, o) {
-		return nil, nil
-	}
-	h := Result{A: r.A, B: r.B, Observations: slices.Clone(r.Observations)}
-	for i := range h.Observations {
-		h.Observations[i].VarS, h.Observations[i].CovSZ = 0, 0
-	}
-	for len(dropped) < most {
-		if h.solve(w, 0, o) != nil || h.DegreesOfFreedom < 2 {
-			break
-		}
-		tests := h.singleTests(w)
-		worst := 0
-		for i, t := range tests {
-			if math.Abs(t.W) > math.Abs(tests[worst].W) {
-				worst = i
-			}
-		}
-		rest := slices.Delete(slices.Clone(r.Observations), worst, worst+1)
-		if count, _, _ := stations(rest); math.Abs(tests[worst].W) < gross*o.RejectBeyond || !(tests[worst].p() < alpha) || count < 4 {
-			break
-		}
-		v := r.Observations[worst]
-		dropped = append(dropped, v)
-		s := h.suspect(v, tests[worst], gross*o.RejectBeyond, fmt.Sprintf("gross error in height: w = %.3g", tests[worst].W))
-		r.Rejected = append(r.Rejected, s)
-		r.Observations = rest
-		h.Observations = slices.Delete(h.Observations, worst, worst+1)
-	}
-	return dropped, r.solve(w, share, o)
-}
-
-// sound reports whether the fit keeps a stated accuracy nearly enough that no error in it can be gross.
-func (r *Result) sound(w *workspace, o Options) bool {
-	if !r.APriori || r.VarianceFactor > gross*gross {
-		return false
-	}
-	for _, t := range r.singleTests(w) {
-		if t.unchecked || math.Abs(t.W) > gross*o.RejectBeyond {
-			return false
-		}
-	}
-	return true
-}
-
-// equivalent is the number of standard deviations of a normal error that is as unlikely.
-func equivalent(t SingleTest) float64 {
-	if p := t.p(); p > 1e-300 && !math.IsInf(t.Dof, 1) {
-		return -distuv.UnitNormal.Quantile(p / 2)
-	}
-	return math.Abs(t.W)
-}
-
-// bringBack returns dropped points that lie within the suspect level of the final curve.
-func (r *Result) bringBack(w *workspace, share float64, o Options, dropped []Observation) error {
-	kept, back := r.Rejected[:0], false
-	scale := r.scale()
-	for i, v := range dropped {
-		residual, sd := r.prediction(v, w.problem.z0, scale)
-		t := SingleTest{W: residual / sd, Dof: math.Inf(1)}
-		if !r.APriori {
-			t.Dof = float64(r.DegreesOfFreedom)
-		}
-		if t.p() >= o.alpha() {
-			r.Observations = append(r.Observations, v)
-			back = true
-			continue
-		}
-		s := r.Rejected[i]
-		s.Residual = v.Z - r.Curve.Z(v.S)
-		kept = append(kept, s)
-	}
-	r.Rejected = kept
-	if back {
-		return r.solve(w, share, o)
-	}
-	return nil
-}
-
-// prediction is the residual of a point that is not in the fit across the curve, and its standard deviation, m.
-func (r *Result) prediction(v Observation, z0, scale float64) (residual, sd float64) {
-	c := r.Curve
-	c.Z1, c.Z2 = c.Z1-z0, c.Z2-z0
-	e := c.evaluator()
-	var g [3]float64
-	q, sigma := e.foot(&v, z0, &g)
-	u := r.Propagate(g)
-	return q * sigma, math.Sqrt(scale * (sigma*sigma + u*u))
-}
-
 func (o Options) alpha() float64 {
 	if o.Alpha > 0 {
 		return o.Alpha
@@ -217,13 +109,11 @@ func (r *Result) suspect(v Observation, t SingleTest, critical float64, reason s
 
 // scale is the factor on the covariance: the variance factor when the accuracy is estimated or the stated one fails its test
 // on the high side, else 1.
-func (r *Result) scale() float64 {
+func (r *Result) scale(w *workspace) float64 {
 	if !r.APriori {
 		return r.VarianceFactor
 	}
-	f := float64(r.DegreesOfFreedom)
-	chi := distuv.ChiSquared{K: f}
-	r.ChiSquareLow, r.ChiSquareHigh = chi.Quantile(0.025)/f, chi.Quantile(0.975)/f
+	r.ChiSquareLow, r.ChiSquareHigh = w.quantiles.region(float64(r.DegreesOfFreedom))
 	r.VarianceOK = r.VarianceFactor >= r.ChiSquareLow && r.VarianceFactor <= r.ChiSquareHigh
 	if r.VarianceFactor > r.ChiSquareHigh {
 		return r.VarianceFactor
@@ -244,14 +134,13 @@ func (r *Result) judge(w *workspace, o Options) {
 		r.Residuals[i] = v.Z - z
 		sum += r.Residuals[i] * r.Residuals[i]
 		r.W[i] = tests[i].W
-		if p := tests[i].p(); p < o.alpha() {
-			crit := tests[i].critical(o.alpha())
+		if crit := w.quantiles.critical(tests[i], o.alpha()); math.Abs(tests[i].W) > crit {
 			r.Suspects = append(r.Suspects, r.suspect(v, tests[i], crit, fmt.Sprintf("|w| = %.2f > %.2f", math.Abs(tests[i].W), crit)))
 		}
 	}
 	r.RMS = math.Sqrt(sum / float64(n))
 	r.AcrossRMS = acrossRMS(r.Observations)
-	r.ScaledBy = r.scale()
+	r.ScaledBy = r.scale(w)
 	r.correlation()
 	factor := r.ScaledBy * r.Widening * r.Widening
 	for i := range 3 {

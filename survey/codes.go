@@ -21,7 +21,7 @@ func ParseCodeRule(text string) (CodeRule, error) {
 	code, target, ok := strings.Cut(text, "=")
 	code, target = strings.TrimSpace(code), strings.TrimSpace(target)
 	if !ok || code == "" || target == "" {
-		return CodeRule{}, fmt.Errorf("found %s, expected CODE=CABLE, CODE=CABLE/A, CODE=CABLE/SPAN/B, CODE=control, CODE=ground or CODE=ignore", quote(text))
+		return CodeRule{}, wrong(text, "CODE=CABLE, CODE=CABLE/A, CODE=CABLE/SPAN/B, CODE=control, CODE=ground or CODE=ignore", "")
 	}
 	switch strings.ToLower(target) {
 	case "control":
@@ -37,7 +37,7 @@ func ParseCodeRule(text string) (CodeRule, error) {
 		r.Role, parts = end, parts[:len(parts)-1]
 	}
 	if len(parts) > 2 || slices.Contains(parts, "") {
-		return CodeRule{}, fmt.Errorf("found %s, expected CABLE, CABLE/SPAN, CABLE/A or CABLE/SPAN/A after the =", quote(target))
+		return CodeRule{}, wrong(target, "CABLE, CABLE/SPAN, CABLE/A or CABLE/SPAN/A after the =", "")
 	}
 	r.Cable = parts[0]
 	if len(parts) == 2 {

@@ -34,7 +34,7 @@ func (p *PointReader) collect() (*Survey, error) {
 		s.place(pt, p.code)
 	}
 	if err := p.conditions.check(); err != nil {
-		p.problems.add(Problem{File: p.opts.Name, Column: "loads", Expected: trimExpected(err)})
+		p.problems.add(problemOf(err, p.opts.Name, 0, "loads"))
 	}
 	if problem, ok := s.resolver.problems[""]; ok {
 		s.problem(0, "", problem.Found, problem.Expected, problem.Mend)
@@ -72,14 +72,6 @@ func (p *PointReader) checkStructure() {
 		}
 		seen[key] = d.Structure
 	}
-}
-
-func trimExpected(err error) string {
-	text := err.Error()
-	if len(text) > 9 && text[:9] == "expected " {
-		return text[9:]
-	}
-	return text
 }
 
 // sorter puts points where they belong. Every row ends in exactly one place.

@@ -31,7 +31,7 @@ func (c *Conditions) Set(key, value string) error {
 		return nil
 	}
 	if value == "" {
-		return fmt.Errorf("expected a value for %s", key)
+		return wrong("", "a value for "+key, "")
 	}
 	if c.set == nil {
 		c.set = map[string]bool{}
@@ -53,7 +53,7 @@ func (c *Conditions) Set(key, value string) error {
 		return words(&c.span, value, again, key)
 	case "unit", "units":
 		if _, ok := findUnit(value, Length); !ok {
-			return fmt.Errorf("expected a unit of length (%s), found %s", spellings[Length], quote(value))
+			return wrong(value, "a unit of length ("+spellings[Length]+")", "")
 		}
 		return words(&c.unit, value, again, key)
 	case "date":
@@ -67,12 +67,12 @@ func (c *Conditions) Set(key, value string) error {
 	case "load":
 		return c.addLoad(value)
 	}
-	return fmt.Errorf("expected one of structure, date, temperature, wind, loads, load, instrument, accuracy, crew, unit, cable, span or note, found %s", quote(key))
+	return wrong(key, "structure, date, temperature, wind, loads, load, instrument, accuracy, crew, unit, cable, span or note", "")
 }
 
 func words(into *string, value string, again bool, key string) error {
 	if again && *into != value {
-		return fmt.Errorf("expected one %s, found %s and %s", key, quote(*into), quote(value))
+		return wrong(value, fmt.Sprintf("one %s: it was %s before", key, quote(*into)), "take one of the two lines out")
 	}
 	*into = value
 	return nil
@@ -85,12 +85,12 @@ func (c *Conditions) setDate(value string, again bool) error {
 			continue
 		}
 		if again && !c.Date.Equal(d) {
-			return fmt.Errorf("expected one date, found a second one %s", quote(value))
+			return wrong(value, "one date: it was "+c.Date.Format(time.DateOnly)+" before", "take one of the two lines out")
 		}
 		c.Date = d
 		return nil
 	}
-	return fmt.Errorf("expected a date such as 2026-06-11, found %s", quote(value))
+	return wrong(value, "a date such as 2026-06-11", "")
 }
 
 func (c *Conditions) setTemperature(value string, again bool) error {
@@ -99,7 +99,7 @@ func (c *Conditions) setTemperature(value string, again bool) error {
 		return err
 	}
 	if again && *c.CableTemperature != q {
-		return fmt.Errorf("expected one cable temperature, found a second one %s", quote(value))
+		return wrong(value, "one cable temperature: there was another before", "take one of the two lines out")
 	}
 	c.CableTemperature = &q
 	return nil
@@ -124,20 +124,20 @@ func (c *Conditions) setAccuracy(value string, again bool) error {
 			return err
 		}
 		if !(q.Value > 0) || q.Value > 10 {
-			return fmt.Errorf("expected a standard deviation between 0 and 10 m, found %s", quote(part))
+			return wrong(part, "a standard deviation between 0 and 10 m", "")
 		}
 		for _, v := range into {
 			if *v != 0 {
-				return fmt.Errorf("expected each accuracy once, found %s", quote(value))
+				return wrong(value, "each accuracy once", "")
 			}
 			*v = q.Value
 		}
 	}
 	if a.Horizontal == 0 || a.Vertical == 0 {
-		return fmt.Errorf("expected \"3 mm\" or \"horizontal 3 mm, vertical 2 mm\", found %s", quote(value))
+		return wrong(value, "\"3 mm\" or \"horizontal 3 mm, vertical 2 mm\"", "")
 	}
 	if again && *c.Accuracy != a {
-		return fmt.Errorf("expected one accuracy, found a second one %s", quote(value))
+		return wrong(value, "one accuracy: there was another before", "take one of the two lines out")
 	}
 	c.Accuracy = &a
 	return nil
@@ -148,10 +148,10 @@ func (c *Conditions) setLoads(value string) error {
 	switch status {
 	case LoadsAsFiled, LoadsNotChecked, LoadsListed:
 	default:
-		return fmt.Errorf("expected as filed, listed or not checked, found %s", quote(value))
+		return wrong(value, "as filed, listed or not checked", "")
 	}
 	if c.Loads != "" && c.Loads != status {
-		return fmt.Errorf("expected one record of loads, found %s and %s", quote(string(c.Loads)), quote(value))
+		return wrong(value, fmt.Sprintf("one record of loads: it was %s before", quote(string(c.Loads))), "take one of the two lines out")
 	}
 	c.Loads = status
 	return nil
@@ -163,9 +163,9 @@ func (c *Conditions) addLoad(value string) error {
 	for i := range parts {
 		parts[i] = strings.TrimSpace(parts[i])
 	}
-	const form = "expected CABLE; 180 +- 10 N/m; along cable (or along deck); what it is"
+	const form = "CABLE; 180 +- 10 N/m; along cable (or along deck); what it is"
 	if len(parts) < 3 {
-		return fmt.Errorf("%s, found %s", form, quote(value))
+		return wrong(value, form, "")
 	}
 	l := ListedLoad{Cable: parts[0]}
 	if l.Cable == "*" {
@@ -182,13 +182,13 @@ func (c *Conditions) addLoad(value string) error {
 	switch l.Spread = Spread(strings.ToLower(parts[2])); l.Spread {
 	case AlongCable, AlongDeck:
 	default:
-		return fmt.Errorf("%s, found %s for the spread", form, quote(parts[2]))
+		return wrong(parts[2], "along cable or along deck in the third place: "+form, "")
 	}
 	if len(parts) == 4 {
 		l.What = parts[3]
 	}
 	if c.Loads != "" && c.Loads != LoadsListed {
-		return fmt.Errorf("expected no list of loads beside \"loads: %s\", found %s", c.Loads, quote(value))
+		return wrong(value, fmt.Sprintf("no list of loads beside \"loads: %s\"", c.Loads), "write \"loads: listed\", or take the load line out")
 	}
 	c.Loads = LoadsListed
 	c.Listed = append(c.Listed, l)
@@ -198,7 +198,7 @@ func (c *Conditions) addLoad(value string) error {
 // check finds contradictions that only show at the end.
 func (c *Conditions) check() error {
 	if c.Loads == LoadsListed && len(c.Listed) == 0 {
-		return fmt.Errorf("expected at least one load line beside \"loads: listed\", such as \"load: CABLE; 180 +- 10 N/m; along cable; service pipe\", or \"loads: as filed\" if nothing hangs there")
+		return wrong("", "a load line beside \"loads: listed\"", "add \"# load: CABLE; 180 +- 10 N/m; along cable; service pipe\", or write \"loads: as filed\" if nothing hangs there")
 	}
 	return nil
 }

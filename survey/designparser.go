@@ -141,8 +141,8 @@ func (p *designParser) load(d *Design) {
 	kind := LoadKind(strings.ToLower(p.row.Load))
 	inferred := map[[2]bool]LoadKind{{true, false}: LoadSelfWeight, {false, true}: LoadDeck, {true, true}: LoadBoth}
 	have := [2]bool{d.SelfWeight != nil, d.DeckLoad != nil}
-	need := func(ok bool, column string) {
-		if !ok {
+	need := func(ok bool, column, cell string) {
+		if !ok && cell == "" {
 			p.problem(column, "", fmt.Sprintf("a value, because load is %s", quote(string(kind))), "fill the cell or change load")
 		}
 	}
@@ -153,18 +153,18 @@ func (p *designParser) load(d *Design) {
 		}
 		return
 	case LoadSelfWeight:
-		need(have[0], "self_weight")
+		need(have[0], "self_weight", p.row.SelfWeight)
 		if have[1] {
 			p.notice("deck_load", "deck_load is not used, because load is self weight")
 		}
 	case LoadDeck:
-		need(have[1], "deck_load")
+		need(have[1], "deck_load", p.row.DeckLoad)
 		if have[0] {
 			p.notice("self_weight", "self_weight is not used, because load is deck: deck_load must hold the cable's own weight")
 		}
 	case LoadBoth:
-		need(have[0], "self_weight")
-		need(have[1], "deck_load")
+		need(have[0], "self_weight", p.row.SelfWeight)
+		need(have[1], "deck_load", p.row.DeckLoad)
 	default:
 		p.problem("load", p.row.Load, "self weight, deck or both", "")
 	}
@@ -179,7 +179,7 @@ func (p *designParser) plausible(d *Design) {
 	if d.Tension != nil && d.BreakingLoad != nil && d.BreakingLoad.Value <= d.Tension.Value {
 		p.problem("breaking_load", p.row.Breaking, "a breaking load above the design tension "+p.row.DesignTension, "check the units")
 	}
-	if d.Tension != nil && d.AxialStiffness != nil && d.Tension.Value > 0.05*d.AxialStiffness.Value {
+	if d.Tension != nil && d.AxialStiffness != nil && d.AxialStiffness.Value > 0 && d.Tension.Value > 0.05*d.AxialStiffness.Value {
 		p.problem("axial_stiffness", p.row.Axial, "a stiffness of more than 20 times the design tension (less would stretch the cable by 5 %)", "check the units")
 	}
 	if d.Sag != nil && d.SpanLength != nil && d.Sag.Value > 3*d.SpanLength.Value {

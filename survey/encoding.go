@@ -90,7 +90,7 @@ func guessEncoding(head []byte) (string, []Guess) {
 		return "utf-16le", nil
 	case bytes.HasPrefix(head, []byte{0xfe, 0xff}):
 		return "utf-16be", nil
-	case validHead(head):
+	case bytes.HasPrefix(head, []byte("\xef\xbb\xbf")), validHead(head):
 		return "utf-8", nil
 	}
 	return "windows-1252", []Guess{{What: "encoding", Taken: "windows-1252", Why: "the bytes are not UTF-8 and there is no byte-order mark", SetBy: "--encoding"}}

@@ -213,7 +213,7 @@ func (p *PointReader) comment(line int, text []byte) {
 		value = decimalPoints(value)
 	}
 	if err := p.conditions.Set(key, value); err != nil {
-		p.problems.add(Problem{File: p.opts.Name, Line: line, Column: key, Expected: strings.TrimPrefix(err.Error(), "expected "), Mend: ""})
+		p.problems.add(problemOf(err, p.opts.Name, line, key))
 	}
 }
 

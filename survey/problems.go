@@ -1,6 +1,7 @@
 package survey
 
 import (
+	"errors"
 	"fmt"
 	"strings"
 )
@@ -83,4 +84,30 @@ func (e *InputError) orNil() error {
 		return nil
 	}
 	return e
+}
+
+// valueError is a value of a flag or a condition that was refused.
+type valueError struct{ found, expected, mend string }
+
+// Error is "found X, expected Y; mend".
+func (e *valueError) Error() string {
+	text := "expected " + e.expected
+	if e.found != "" {
+		text = "found " + quote(e.found) + ", " + text
+	}
+	if e.mend != "" {
+		text += "; " + e.mend
+	}
+	return text
+}
+
+func wrong(found, expected, mend string) error { return &valueError{found, expected, mend} }
+
+// problemOf places a refused value in a file.
+func problemOf(err error, file string, line int, column string) Problem {
+	var v *valueError
+	if errors.As(err, &v) {
+		return Problem{File: file, Line: line, Column: column, Found: v.found, Expected: v.expected, Mend: v.mend}
+	}
+	return Problem{File: file, Line: line, Column: column, Expected: err.Error()}
 }

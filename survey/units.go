@@ -55,6 +55,9 @@ var spellings = map[Dimension]string{
 	Fraction:       "%",
 }
 
+// usual is the unit that a message suggests.
+var usual = map[Dimension]string{Length: "mm", Force: "kN", ForcePerLength: "N/m", Temperature: "degC", PerTemperature: "1e-6/degC", Fraction: "%"}
+
 // findUnit looks a spelling up. MN and mN differ only by case: a milli-newton is not a unit of cables and is refused.
 func findUnit(text string, d Dimension) (unit, bool) {
 	if d == Force && strings.HasPrefix(text, "mN") {
@@ -73,7 +76,7 @@ func ParseQuantity(text string, d Dimension) (Quantity, error) {
 	v, fault := parseNumber([]byte(number), '.')
 	if fault != "" {
 		expected, mend := fault.describe(number, '.')
-		return Quantity{}, quantityError(text, expected, mend)
+		return Quantity{}, wrong(text, expected, mend)
 	}
 	var s float64
 	relative := false
@@ -81,10 +84,10 @@ func ParseQuantity(text string, d Dimension) (Quantity, error) {
 		sn, su := splitUnit(spread)
 		if s, fault = parseNumber([]byte(sn), '.'); fault != "" {
 			expected, mend := fault.describe(sn, '.')
-			return Quantity{}, quantityError(text, expected+" after +-", mend)
+			return Quantity{}, wrong(text, expected+" after +-", mend)
 		}
 		if s < 0 {
-			return Quantity{}, quantityError(text, "an uncertainty of 0 or more", "")
+			return Quantity{}, wrong(text, "an uncertainty of 0 or more", "")
 		}
 		switch {
 		case su == "%" && d != Fraction && name != "":
@@ -92,35 +95,27 @@ func ParseQuantity(text string, d Dimension) (Quantity, error) {
 		case name == "":
 			name = su
 		case su != "" && !strings.EqualFold(su, name):
-			return Quantity{}, quantityError(text, "one unit for value and uncertainty", "")
+			return Quantity{}, wrong(text, "one unit for value and uncertainty", "")
 		}
 	}
 	if name == "" {
-		return Quantity{}, quantityError(text, "a unit", "write for example \""+number+" "+strings.Fields(strings.ReplaceAll(spellings[d], ",", ""))[0]+"\"")
+		return Quantity{}, wrong(text, "a unit", fmt.Sprintf("write for example \"%s %s\"", number, usual[d]))
 	}
 	u, ok := findUnit(name, d)
 	if !ok {
-		return Quantity{}, quantityError(text, "a unit of "+string(d)+" ("+spellings[d]+")", "")
+		return Quantity{}, wrong(text, "a unit of "+string(d)+" ("+spellings[d]+")", "")
 	}
 	q := Quantity{Value: v*u.factor + u.offset, U: s * u.factor}
 	if relative {
 		q.U = math.Abs(q.Value) * s / 100
 	}
 	if math.IsInf(q.Value, 0) || math.IsInf(q.U, 0) {
-		return Quantity{}, quantityError(text, "a finite number", "")
+		return Quantity{}, wrong(text, "a finite number", "")
 	}
 	if d == Temperature && q.Value < -zeroC {
-		return Quantity{}, quantityError(text, "a temperature above absolute zero", "")
+		return Quantity{}, wrong(text, "a temperature above absolute zero", "")
 	}
 	return q, nil
-}
-
-func quantityError(found, expected, mend string) error {
-	text := fmt.Sprintf("found %s, expected %s", quote(found), expected)
-	if mend != "" {
-		text += "; " + mend
-	}
-	return fmt.Errorf("%s", text)
 }
 
 // cutSpread parts "value +- spread" in any of the usual spellings.

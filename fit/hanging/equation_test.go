@@ -30,7 +30,8 @@ func TestLengthsRatesAndSpan(t *testing.T) {
 		if math.Abs(l.X-run) > 1e-12*size || math.Abs(l.Y-rise) > 1e-12*size {
 			t.Fatalf("spans %.15g, %.15g instead of %.15g, %.15g", l.X, l.Y, run, rise)
 		}
-		if g := e.G * (1 + e.Eta); l.S > math.Hypot(run, rise)*math.Cosh(math.Max(math.Abs(a), math.Abs(b))) || l.S*g*math.Cosh(b) < size/math.Cosh(b)/2 {
+		steepest := math.Cosh(math.Max(math.Abs(a), math.Abs(b)))
+		if l.S*e.G > size*steepest*(1+1e-9) || l.S*e.G*(1+e.Eta*steepest) < size*(1-1e-9) {
 			t.Fatalf("length %g over %g", l.S, size)
 		}
 		mid := a + rapid.Float64Range(0.05, 0.95).Draw(t, "part")*(b-a)
