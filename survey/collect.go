@@ -36,6 +36,10 @@ func (p *PointReader) collect() (*Survey, error) {
 	if err := p.conditions.check(); err != nil {
 		p.problems.add(problemOf(err, p.opts.Name, 0, "loads"))
 	}
+	sv.Conditions = p.conditions
+	for _, l := range sv.UnmatchedLoads() {
+		p.problems.add(Problem{File: p.opts.Name, Column: "load", Found: l.Cable, Expected: "a load on a cable of this survey", Mend: "write the cable as in the codes: " + strings.Join(cableNames(sv), ", ")})
+	}
 	if problem, ok := s.resolver.problems[""]; ok {
 		s.problem(0, "", problem.Found, problem.Expected, problem.Mend)
 	}
@@ -49,7 +53,7 @@ func (p *PointReader) collect() (*Survey, error) {
 	if err != nil {
 		return nil, fmt.Errorf("%s: cannot read: %w", p.opts.Name, err)
 	}
-	sv.SHA256, sv.PointsRead, sv.Conditions = sum, p.rows, p.conditions
+	sv.SHA256, sv.PointsRead = sum, p.rows
 	s.finish()
 	return sv, nil
 }
@@ -72,6 +76,13 @@ func (p *PointReader) checkStructure() {
 		}
 		seen[key] = d.Structure
 	}
+}
+
+func cableNames(sv *Survey) (out []string) {
+	for _, sp := range sv.Spans {
+		out = append(out, sp.Cable)
+	}
+	return out
 }
 
 // sorter puts points where they belong. Every row ends in exactly one place.

@@ -1,6 +1,9 @@
 package survey
 
-import "time"
+import (
+	"strings"
+	"time"
+)
 
 // Point is one surveyed point in the frame of its survey, in metres.
 type Point struct {
@@ -80,6 +83,26 @@ type Survey struct {
 	Guesses    []Guess
 	Notices    []Notice
 	Flat       bool // a two-column survey: station and elevation only
+}
+
+// UnmatchedLoads are the listed loads that name a cable or span of which the survey holds no point: a load that would be
+// recorded and count nowhere.
+func (sv *Survey) UnmatchedLoads() (out []ListedLoad) {
+next:
+	for _, l := range sv.Conditions.Listed {
+		for _, sp := range sv.Spans {
+			if l.On(sp.Cable, sp.Span) {
+				continue next
+			}
+		}
+		out = append(out, l)
+	}
+	return out
+}
+
+// On reports whether the load concerns a span.
+func (l ListedLoad) On(cable, span string) bool {
+	return (l.Cable == "" || strings.EqualFold(l.Cable, cable)) && (l.Span == "" || strings.EqualFold(l.Span, span))
 }
 
 // HeaderUse says how one column of a file was understood.

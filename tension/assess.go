@@ -59,7 +59,7 @@ func (c Case) listedHere() (out []survey.ListedLoad) {
 		return nil
 	}
 	for _, l := range c.Conditions.Listed {
-		if (l.Cable == "" || l.Cable == c.Points.Cable) && (l.Span == "" || l.Span == c.Points.Span) {
+		if l.On(c.Points.Cable, c.Points.Span) {
 			out = append(out, l)
 		}
 	}

@@ -11,19 +11,19 @@ func TestFigures(t *testing.T) {
 		q     Quantity
 		want  string
 	}{
-		{Kilonewton, Quantity{23412, 157}, "23.41 ± 0.31 kN"},
-		{Kilonewton, Quantity{23412, 4.98}, "23.412 ± 0.010 kN"}, // 9.96 N rounds up to 10 N: two digits all the same
-		{Kilonewton, Quantity{-40, 30}, "-0.040 ± 0.060 kN"},
-		{Newton, Quantity{-0.02, 3}, "0.0 ± 6.0 N"},
-		{Metre, Quantity{8.12341, 0.0042}, "8.1234 ± 0.0084 m"},
-		{Metre, Quantity{1646.12, 1.44}, "1646.1 ± 2.9 m"},
-		{Newton, Quantity{123456, 4321}, "123456 ± 8642 N"},
-		{Kilonewton, Quantity{350000, 0}, "350.0 kN"},
-		{NewtonPerMetre, Quantity{10, 1e-14}, "10.00 N/m"},
-		{Degree, Quantity{-5.005, 0.005}, "-5.005 ± 0.010°"},
-		{Percent, Quantity{1.81, 0.07}, "181 ± 14 %"},
-		{Plain, Quantity{0.799, 0.015}, "0.799 ± 0.030"},
-		{Metre, Quantity{0, 0}, "0 m"},
+		{Kilonewton, Quantity{Value: 23412, U: 157}, "23.41 ± 0.31 kN"},
+		{Kilonewton, Quantity{Value: 23412, U: 4.98}, "23.412 ± 0.010 kN"}, // 9.96 N rounds up to 10 N: two digits all the same
+		{Kilonewton, Quantity{Value: -40, U: 30}, "-0.040 ± 0.060 kN"},
+		{Newton, Quantity{Value: -0.02, U: 3}, "0.0 ± 6.0 N"},
+		{Metre, Quantity{Value: 8.12341, U: 0.0042}, "8.1234 ± 0.0084 m"},
+		{Metre, Quantity{Value: 1646.12, U: 1.44}, "1646.1 ± 2.9 m"},
+		{Newton, Quantity{Value: 123456, U: 4321}, "123456 ± 8642 N"},
+		{Kilonewton, Quantity{Value: 350000, U: 0}, "350.0 kN"},
+		{NewtonPerMetre, Quantity{Value: 10, U: 1e-14}, "10.00 N/m"},
+		{Degree, Quantity{Value: -5.005, U: 0.005}, "-5.005 ± 0.010°"},
+		{Percent, Quantity{Value: 1.81, U: 0.07}, "181 ± 14 %"},
+		{Plain, Quantity{Value: 0.799, U: 0.015}, "0.799 ± 0.030"},
+		{Metre, Quantity{Value: 0, U: 0}, "0 m"},
 	} {
 		if got := c.scale.Figure(c.q); got != c.want {
 			t.Errorf("%v in %s: %q, want %q", c.q, c.scale.Unit, got, c.want)

@@ -25,6 +25,7 @@ func (j *judgement) tell() {
 	j.tellSurvey()
 	j.tellShape()
 	j.tellMissing()
+	j.tellExact()
 }
 
 func (j *judgement) tellStrength() {
@@ -264,6 +265,25 @@ func (j *judgement) tellShape() {
 			j.add("shape", Look, "The points speak for a %s against the %s that the filed load asks for (AICc better by %.0f); it would change H by %+.1f %%. Check which load the cable carries.",
 				alt.Shape, f.Shape, -alt.DeltaAICc, 100*alt.TensionOff)
 		}
+	}
+}
+
+// tellExact names the inputs that were given without an uncertainty: they count as known exactly, which they rarely are.
+func (j *judgement) tellExact() {
+	if !j.p.known(outH) {
+		return
+	}
+	var names []string
+	for _, in := range []struct {
+		at   int
+		name string
+	}{{inSelfWeight, "self weight"}, {inDeckLoad, "deck load"}, {inTemperature, "cable temperature"}, {inAxial, "axial stiffness"}, {inExpansion, "expansion"}} {
+		if j.in.have[in.at] && !j.in.uncertain(in.at) {
+			names = append(names, in.name)
+		}
+	}
+	if len(names) > 0 {
+		j.add("taken-as-exact", Look, "Given without an uncertainty and taken as exact: %s. U is too small by what they are really off.", strings.Join(names, ", "))
 	}
 }
 

@@ -72,6 +72,18 @@ func (in *inputs) set(at int, q *Quantity, name string, scale Scale) {
 	}
 }
 
+// uncertain reports whether an input has an uncertainty.
+func (in *inputs) uncertain(at int) bool {
+	for _, s := range in.sources {
+		for _, d := range s.directions {
+			if d[0].at == at {
+				return true
+			}
+		}
+	}
+	return false
+}
+
 // gather lays out the vector for one span.
 func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []survey.ListedLoad) *inputs {
 	n := inFixed + len(listed)

@@ -54,6 +54,25 @@ func (f *conditionFlags) apply(cmd *cobra.Command, surveys []*survey.Survey) err
 	for _, sv := range surveys {
 		f.over(cmd, sv, given)
 	}
+	return f.matched(surveys)
+}
+
+// matched refuses a --load that concerns no cable of any survey.
+func (f *conditionFlags) matched(surveys []*survey.Survey) error {
+	if len(f.loads) == 0 {
+		return nil
+	}
+	misses := map[string]int{}
+	for _, sv := range surveys {
+		for _, l := range sv.UnmatchedLoads() {
+			misses[l.Cable]++
+		}
+	}
+	for cable, n := range misses {
+		if n == len(surveys) {
+			return usageError{fmt.Errorf("--load: found cable %q, expected a cable of the surveys: see \"tautbook check\" for their names", cable)}
+		}
+	}
 	return nil
 }
 
