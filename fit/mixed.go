@@ -18,18 +18,25 @@ type mixedCurve struct {
 	psi1, psi2 float64
 }
 
-// mixed solves for the tangents at the two defining points; ok is false for a line that is straight to rounding.
+// mixed solves for the tangents at the two defining points; ok is false for a line that is straight to rounding. An arch is
+// solved upside down as a hanging curve. Tangents that cannot be found are NaN, and so is all that follows from them: the
+// line is no stand-in for a curve.
 func (c Curve) mixed() (m mixedCurve, ok bool) {
 	if math.Abs(c.Curvature*c.length()) < straight {
 		return m, false
 	}
 	m.eq = hanging.Equation{KW: c.Curvature * c.SelfShare, KQ: c.Curvature * (1 - c.SelfShare), G: 1}
-	m.psi1, m.psi2 = m.eq.Start(c.length(), c.Z2-c.Z1)
-	p1, p2, err := m.eq.Span(c.length(), c.Z2-c.Z1, m.psi1, m.psi2)
-	if err != nil {
-		return m, false
+	up, sign := m.eq, 1.0
+	if c.Curvature < 0 {
+		up.KW, up.KQ, sign = -m.eq.KW, -m.eq.KQ, -1
 	}
-	m.psi1, m.psi2 = p1, p2
+	rise := sign * (c.Z2 - c.Z1)
+	psi1, psi2 := up.Start(c.length(), rise)
+	psi1, psi2, err := up.Span(c.length(), rise, psi1, psi2)
+	if err != nil {
+		psi1, psi2 = math.NaN(), math.NaN()
+	}
+	m.psi1, m.psi2 = sign*psi1, sign*psi2
 	return m, true
 }
 
