@@ -46,7 +46,7 @@ func TestLengthsRatesAndSpan(t *testing.T) {
 		if psi := e.Reach(a, (a+b)/2, p.X); math.Abs(psi-mid) > 1e-9*(1+math.Abs(mid))+1e-11/(b-a) {
 			t.Fatalf("reach %g, want %g", psi, mid)
 		}
-		h := 1e-5 * (b - a)
+		h := math.Max(1e-4*(b-a), 1e-6)
 		step := e.Between(mid-h, mid+h)
 		rate := e.Rate(mid)
 		if math.Abs(step.X/(2*h)-rate.X) > 1e-6*rate.X || math.Abs(step.S/(2*h)-rate.S) > 1e-6*rate.S {
