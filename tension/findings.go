@@ -199,6 +199,11 @@ func (j *judgement) expectedAt(design int) float64 {
 
 func (j *judgement) tellSurvey() {
 	r := j.r
+	// One cable scatters by thousandths of its span even when laser points are coarse, and swings by a few hundredths.
+	if l := r.B.Station - r.A.Station; r.RMS > 0.005*l || r.AcrossRMS > 0.05*l {
+		j.add("not-one-curve", Act, "The points do not lie on one hanging curve: they scatter by %s in height and %s across the plane. Give the points of one cable at a time (codes, or --code CODE=ignore).",
+			Metre.About(r.RMS), Metre.About(r.AcrossRMS))
+	}
 	if n := len(r.Rejected); n > 0 {
 		j.add("rejected", Look, "%d of %d points left out: %s.", n, n+len(r.Observations), suspects(r.Rejected))
 	}
