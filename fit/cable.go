@@ -51,10 +51,17 @@ func InPlane(obs []Observation, frame Frame, a, b End, o Options) (*Result, erro
 	if o.RejectBeyond > 0 && (err == nil || len(obs) > 5) {
 		err = r.reject(w, share, o, err)
 	}
+	bad, named := r.nameGross(w, o, err)
+	if err != nil && named {
+		return nil, fmt.Errorf("%w; point %q (line %d) is about %.3g m off in height: leave it out", err, bad.ID, bad.Line, bad.Residual)
+	}
 	if err != nil {
 		return nil, err
 	}
 	r.judge(w, o)
+	if named && !slices.ContainsFunc(r.Suspects, func(s Suspect) bool { return s.Station == bad.Station && s.ID == bad.ID }) {
+		r.Suspects = append(r.Suspects, bad)
+	}
 	if !o.NoAlternatives {
 		r.compareShapes(w, share, o)
 	}

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/rand/v2"
+	"strings"
 	"testing"
 )
 
@@ -85,6 +86,35 @@ func TestGrossErrorIsFoundWhateverItsSize(t *testing.T) {
 	// five standard deviations are passed by 6e-7 of good points
 	if extra > 1 {
 		t.Errorf("%d good points dropped in %d surveys", extra, runs)
+	}
+}
+
+// The same when nothing may be dropped: the point is among the suspects, or in the error when no curve could be fitted.
+func TestGrossErrorIsNamedWhenNothingIsDropped(t *testing.T) {
+	rng := rand.New(rand.NewPCG(7, 9))
+	named, runs := 0, 1000
+	for range runs {
+		span := math.Pow(10, 0.5+2*rng.Float64())
+		c := Curve{Z1: 5, S2: span, Z2: 5 + 1.5*(2*rng.Float64()-1)*span, Curvature: 1.5 * math.Pow(10, -2.5*rng.Float64()) / span, SelfShare: 1}
+		obs := noisy(rng, c, 12+rng.IntN(20), 0.003, rng.IntN(2) == 0)
+		bad := rng.IntN(len(obs))
+		obs[bad].Z += math.Pow(10, -0.5+3*rng.Float64()) * float64(1-2*rng.IntN(2))
+		r, err := InPlane(obs, Frame{}, End{}, End{Station: span}, Options{NoAlternatives: true})
+		if err != nil {
+			if strings.Contains(err.Error(), fmt.Sprintf("point %q", obs[bad].ID)) {
+				named++
+			}
+			continue
+		}
+		for _, s := range r.Suspects {
+			if s.ID == obs[bad].ID {
+				named++
+				break
+			}
+		}
+	}
+	if named < runs*995/1000 {
+		t.Errorf("%d of %d gross errors named", named, runs)
 	}
 }
 

@@ -80,30 +80,69 @@ func worstOf(tests []SingleTest) int {
 	return worst
 }
 
-// dropGross drops errors so large that the nearest curve bends to them: the foot of such a point lies on a steep part of the
-// curve, its distance is small, and the single-point test on distances cannot see it. A parabola in heights alone cannot
-// follow one point so; the scatter of the heights themselves, and how far the cable is from a parabola, is the measure. It
-// does nothing when the fit is sound; solved is the error of that fit.
+// dropGross drops errors so large that distances cannot show them. It does nothing when the fit is sound; solved is the error
+// of that fit.
 func (x *rejection) dropGross(solved error) error {
 	if solved == nil && x.sound() {
 		return nil
 	}
-	h := Result{A: x.A, B: x.B, Observations: slices.Clone(x.Observations)}
-	for i := range h.Observations {
-		h.Observations[i].VarS, h.Observations[i].CovSZ = 0, 0
-	}
-	for x.mayDrop() && h.solve(x.w, 0, x.o) == nil && h.DegreesOfFreedom > 1 {
-		tests := h.singleTests(x.w)
-		worst := worstOf(tests)
-		t := tests[worst]
-		if math.Abs(t.W) < gross*x.o.RejectBeyond || !(t.p() < x.alpha) || !x.enough(worst) {
+	h := x.heights()
+	for x.mayDrop() {
+		i, s, found := h.grossest(x.w, x.o, x.o.RejectBeyond)
+		if !found || !x.enough(i) {
 			break
 		}
-		x.drop(worst, h.suspect(h.Observations[worst], t, gross*x.o.RejectBeyond, fmt.Sprintf("gross error in height: w = %.3g", t.W)))
-		h.Observations = slices.Delete(h.Observations, worst, worst+1)
+		x.drop(i, s)
+		h.Observations = slices.Delete(h.Observations, i, i+1)
 	}
 	return x.solve(x.w, x.share, x.o)
 }
+
+// heights are the observations with errors in height alone.
+func (r *Result) heights() *Result {
+	h := Result{A: r.A, B: r.B, Observations: slices.Clone(r.Observations)}
+	for i := range h.Observations {
+		h.Observations[i].VarS, h.Observations[i].CovSZ = 0, 0
+	}
+	return &h
+}
+
+// grossest is the place of the point that is farthest off a parabola in heights alone, found when it is off by gross times the
+// level (standard deviations of a normal error). An error of the size of the span bends the nearest curve to itself: the
+// foot of such a point lies on a steep part of the curve, its distance is small, and the single-point test on distances
+// cannot see it. A parabola in heights cannot follow one point so; the scatter of the heights themselves, and how far the
+// cable is from a parabola, is the measure.
+func (h *Result) grossest(w *workspace, o Options, level float64) (place int, s Suspect, found bool) {
+	if h.solve(w, 0, o) != nil || h.DegreesOfFreedom < 2 {
+		return 0, Suspect{}, false
+	}
+	tests := h.singleTests(w)
+	place = worstOf(tests)
+	t := tests[place]
+	found = math.Abs(t.W) >= gross*level && t.p() < 2*distuv.UnitNormal.Survival(level)
+	return place, h.suspect(h.Observations[place], t, gross*level, fmt.Sprintf("gross error in height: w = %.3g", t.W)), found
+}
+
+// nameGross looks for a gross error when nothing may be dropped and the fit failed or is poor: more than gross times a stated
+// accuracy, or, without one, a scatter of a fiftieth of the sag or a five-hundredth of the chord. It returns the point as a
+// suspect.
+func (r *Result) nameGross(w *workspace, o Options, solved error) (Suspect, bool) {
+	if solved == nil {
+		limit := float64(gross * gross)
+		if !r.APriori {
+			_, sag := r.Curve.GreatestSag(r.A.Station, r.B.Station)
+			limit = min(sag*sag/2500, math.Pow(r.B.Station-r.A.Station, 2)/250000)
+		}
+		if !(r.VarianceFactor > limit) {
+			return Suspect{}, false
+		}
+	}
+	_, s, found := r.heights().grossest(w, o, grossLevel)
+	return s, found
+}
+
+// grossLevel is the level of nameGross, standard deviations.
+const grossLevel = 5
 
 // sound reports whether the fit keeps a stated accuracy nearly enough that no error in it can be gross.
 func (x *rejection) sound() bool {
