@@ -179,14 +179,29 @@ func list[T any](l []T) []T {
 
 // hangs reports whether the curvature is known to be positive: its value is above 2 u.
 func (j *judgement) hangs() bool {
-	k := j.p.in.x[inCurvature]
-	return k > 2*math.Sqrt(j.r.Cov[2][2])
+	return j.in.x[inCurvature] > 2*j.uCurvature()
+}
+
+// uCurvature is the standard uncertainty of the curvature, 1/m.
+func (j *judgement) uCurvature() float64 { return j.in.few * math.Sqrt(j.r.Cov[2][2]) }
+
+// unfit says why the points cannot be a hanging cable at all; "" when they can. One cable scatters by thousandths of its span
+// even when laser points are coarse, and swings by a few hundredths.
+func (j *judgement) unfit() string {
+	r := j.r
+	switch l := r.B.Station - r.A.Station; {
+	case r.RMS > 0.005*l || r.AcrossRMS > 0.05*l:
+		return fmt.Sprintf("The points do not lie on one hanging curve: they scatter by %s in height and %s across the plane.", Metre.About(r.RMS), Metre.About(r.AcrossRMS))
+	case j.in.x[inCurvature] < -3*j.uCurvature():
+		return fmt.Sprintf("The points bulge upwards (sag at mid-span %s): this is not a hanging cable.", Metre.Figure(j.a.Fit.SagMid))
+	}
+	return ""
 }
 
 // atLeast is the 95 % lower bound of H when the curve is too flat for an estimate: load over the greatest curvature that
 // the survey allows. Nil when there is no load.
 func (j *judgement) atLeast() *float64 {
-	k := quantile(j.in.x[inCurvature], math.Sqrt(j.r.Cov[2][2]), sure, j.in.dof)
+	k := quantile(j.in.x[inCurvature], j.uCurvature(), sure)
 	hang := j.p.y[outHanging]
 	if !(k > 0) || math.IsNaN(hang) {
 		return nil

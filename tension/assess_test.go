@@ -36,3 +36,49 @@ func TestVerdictFollowsTheRecordOfLoads(t *testing.T) {
 		}
 	}
 }
+
+// Points that are no hanging cable give no tension and no verdict on one, whatever the design says.
+func TestPointsThatAreNoCable(t *testing.T) {
+	s := footbridge()
+	st := s.truth(t)
+	for name, spoil := range map[string]func(p *survey.SpanPoints){
+		"bulging upwards": func(p *survey.SpanPoints) {
+			for i := range p.Points {
+				p.Points[i].Z = 2*431.2 - p.Points[i].Z
+			}
+		},
+		"two wires": func(p *survey.SpanPoints) {
+			for i := range p.Points {
+				if i%2 == 0 {
+					p.Points[i].Z += 6
+				}
+			}
+		},
+	} {
+		p := s.survey(st, rand.New(rand.NewPCG(1, 9)))
+		spoil(&p)
+		a, err := Assess(Case{Points: p, Design: &s.design, Conditions: s.conditions(survey.LoadsAsFiled, 1)})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if a.Verdict != Undecided {
+			t.Errorf("%s: %s, %s", name, a.Verdict, a.Reason)
+		}
+		if name == "bulging upwards" && (a.HorizontalTension != nil || len(a.Reactions) > 0) {
+			t.Errorf("%s: a tension is given", name)
+		}
+	}
+}
+
+// A taut wire whose sag is lost in the noise has no tension to give but a bound; the verdict is not guessed.
+func TestFlatCableGivesABound(t *testing.T) {
+	s := footbridge()
+	s.sigma, s.points = 2, 9
+	a := s.assess(t, rand.New(rand.NewPCG(4, 9)), s.conditions(survey.LoadsAsFiled, 1))
+	if a.HorizontalTension != nil || a.HorizontalTensionAtLeast == nil {
+		t.Fatalf("tension %v, bound %v", a.HorizontalTension, a.HorizontalTensionAtLeast)
+	}
+	if *a.HorizontalTensionAtLeast > s.truth(t).H || a.Verdict != Undecided || a.NextStep == "" {
+		t.Errorf("bound %.0f N, true %.0f N, verdict %s", *a.HorizontalTensionAtLeast, s.truth(t).H, a.Verdict)
+	}
+}

@@ -53,9 +53,9 @@ func (j *judgement) ratioSquared() float64 {
 // neededU is the largest standard uncertainty of the inverse ratio with which the present value would be decided.
 func (j *judgement) neededU() float64 {
 	x := j.a.Expected
-	inv, dof := j.p.y[outInverse], j.p.dof(outInverse)
+	inv := j.p.y[outInverse]
 	decided := func(u float64) bool {
-		s, o := 1-below(inv, u, 1/x.SlackBelow, dof), below(inv, u, 1/x.OverloadAbove, dof)
+		s, o := 1-below(inv, u, 1/x.SlackBelow), below(inv, u, 1/x.OverloadAbove)
 		return s >= sure || o >= sure || 1-s-o >= sure
 	}
 	lo, hi := 0.0, j.p.u(outInverse)

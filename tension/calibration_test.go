@@ -82,6 +82,29 @@ func TestVerdictsAreCalibrated(t *testing.T) {
 	}
 }
 
+// With an accuracy that must be estimated from seven points, U = 2 u still covers the true tension at least as often as it says.
+func TestFewPointsWithoutStatedAccuracyAreCovered(t *testing.T) {
+	s := footbridge()
+	s.points, s.sigma, s.silent = 7, 0.02, true
+	s.design.SelfWeight = q(38, 0)
+	rng := rand.New(rand.NewPCG(3, 3))
+	st := s.truth(t)
+	covered, runs := 0, runsOf(2000)
+	for range runs {
+		a, err := Assess(Case{Points: s.survey(st, rng), Design: &s.design, Conditions: s.conditions(survey.LoadsAsFiled, 1)})
+		if err != nil {
+			t.Fatal(err)
+		}
+		// compared in 1/H, which is linear in what the survey measures
+		if far := math.Abs(1/a.HorizontalTension.Value-1/st.H) * a.HorizontalTension.Value * a.HorizontalTension.Value; far <= a.HorizontalTension.Expanded() {
+			covered++
+		}
+	}
+	if cover := float64(covered) / float64(runs); cover < 0.94 || cover > 0.98 {
+		t.Errorf("U covers %.2f %%", 100*cover)
+	}
+}
+
 // A cable with an unlisted extra load and loads not checked is never called slack, be it deep (lambda squared large: the shape
 // hardly changes) or taut (small: the sag grows, the tension hardly), even when it has slipped as well.
 func TestUnlistedLoadIsNeverCalledSlack(t *testing.T) {

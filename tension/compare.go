@@ -43,10 +43,10 @@ func (j *judgement) compare() {
 		e.SpanFrom = "surveyed supports"
 	}
 	// The inverse ratio is linear in the curvature that the survey measures: its distribution is the one that is normal
-	// or t even for a flat cable, so probabilities are taken from it.
-	inv, u, dof := p.y[outInverse], p.u(outInverse), p.dof(outInverse)
-	e.PSlack = 1 - below(inv, u, 1/low, dof)
-	e.POverload = below(inv, u, 1/high, dof)
+	// even for a flat cable, so probabilities are taken from it.
+	inv, u := p.y[outInverse], p.u(outInverse)
+	e.PSlack = 1 - below(inv, u, 1/low)
+	e.POverload = below(inv, u, 1/high)
 	e.PInside = math.Max(0, 1-e.PSlack-e.POverload)
 	if j.a.HorizontalTension != nil {
 		e.Ratio = p.inverted(outInverse)
@@ -85,10 +85,10 @@ func (j *judgement) strength() {
 	sf := *j.d.SafetyFactor
 	scale := func(out int) Quantity { q := p.must(out); return Quantity{Value: q.Value * sf, U: q.U * sf} }
 	s := &Strength{Use: scale(outUse), Permitted: j.in.x[inBreaking] / sf, GreatestT: p.must(outGreatestT), SafetyFactor: sf}
-	s.POver = 1 - below(s.Use.Value, s.Use.U, 1, p.dof(outUse))
+	s.POver = 1 - below(s.Use.Value, s.Use.U, 1)
 	if p.known(outRivalUse) {
 		use := scale(outRivalUse)
-		over := 1 - below(use.Value, use.U, 1, p.dof(outRivalUse))
+		over := 1 - below(use.Value, use.U, 1)
 		s.RivalUse, s.RivalPOver = &use, &over
 	}
 	j.a.Strength = s
@@ -102,15 +102,14 @@ func (j *judgement) rivalReading(low, high float64) {
 	}
 	v := &Rival{HorizontalTension: p.must(outHRival), Ratio: p.must(outRivalRatio), LoadFactor: p.must(outRivalFactor),
 		ExtraLoad: p.must(outRivalExtra)}
-	dof := p.dof(outRivalFactor)
-	v.PLoadLess = below(v.LoadFactor.Value, v.LoadFactor.U, low, dof)
-	v.PLoadMore = 1 - below(v.LoadFactor.Value, v.LoadFactor.U, high, dof)
+	v.PLoadLess = below(v.LoadFactor.Value, v.LoadFactor.U, low)
+	v.PLoadMore = 1 - below(v.LoadFactor.Value, v.LoadFactor.U, high)
 	switch {
 	case j.record == survey.LoadsAsFiled || j.record == survey.LoadsListed:
 		v.Excluded, v.ExcludedBy = true, "the record of loads"
-	case below(v.HorizontalTension.Value, v.HorizontalTension.U, 0, dof) >= sure:
+	case below(v.HorizontalTension.Value, v.HorizontalTension.U, 0) >= sure:
 		v.Excluded, v.ExcludedBy = true, "the surveyed length: at its designed length the cable would be shorter than without tension"
-	case j.in.have[inBreaking] && p.known(outRivalUse) && below(p.y[outRivalUse], p.u(outRivalUse), 1, p.dof(outRivalUse)) <= 1-sure:
+	case j.in.have[inBreaking] && p.known(outRivalUse) && below(p.y[outRivalUse], p.u(outRivalUse), 1) <= 1-sure:
 		v.Excluded, v.ExcludedBy = true, "the surveyed length: at its designed length the cable would carry more than its breaking load"
 	}
 	j.a.Rival = v
@@ -120,10 +119,11 @@ func (j *judgement) rivalReading(low, high float64) {
 func (j *judgement) decide() {
 	e := evidence{record: j.record, pSlack: math.NaN(), pInside: math.NaN(), pOver: math.NaN(), pLoadOver: math.NaN(),
 		pRivalLess: math.NaN(), pRivalMore: math.NaN(), pStrength: math.NaN(), pRivalUseOver: math.NaN()}
+	e.unfit = j.unfit() != ""
 	if x := j.a.Expected; x != nil {
 		e.compared = true
 		e.pSlack, e.pInside, e.pOver = x.PSlack, x.PInside, x.POverload
-		e.pLoadOver = 1 - below(x.LoadRatio.Value, x.LoadRatio.U, x.OverloadAbove, math.Inf(1))
+		e.pLoadOver = 1 - below(x.LoadRatio.Value, x.LoadRatio.U, x.OverloadAbove)
 	}
 	if v := j.a.Rival; v != nil {
 		e.rivalKnown, e.rivalRefuted = true, v.Excluded

@@ -199,10 +199,8 @@ func (j *judgement) expectedAt(design int) float64 {
 
 func (j *judgement) tellSurvey() {
 	r := j.r
-	// One cable scatters by thousandths of its span even when laser points are coarse, and swings by a few hundredths.
-	if l := r.B.Station - r.A.Station; r.RMS > 0.005*l || r.AcrossRMS > 0.05*l {
-		j.add("not-one-curve", Act, "The points do not lie on one hanging curve: they scatter by %s in height and %s across the plane. Give the points of one cable at a time (codes, or --code CODE=ignore).",
-			Metre.About(r.RMS), Metre.About(r.AcrossRMS))
+	if why := j.unfit(); why != "" {
+		j.add("not-one-curve", Act, "%s", why)
 	}
 	if n := len(r.Rejected); n > 0 {
 		j.add("rejected", Look, "%d of %d points left out: %s.", n, n+len(r.Observations), suspects(r.Rejected))
@@ -219,7 +217,12 @@ func (j *judgement) tellSurvey() {
 		}
 	}
 	if !r.APriori {
-		j.add("accuracy-estimated", Note, "No instrument accuracy was stated: it is estimated from the residuals (%d degrees of freedom), so a constant error of the instrument does not show.", r.DegreesOfFreedom)
+		few := ""
+		if j.in.few > 1.02 {
+			few = fmt.Sprintf("; u widened by %.2f because they are few", j.in.few)
+		}
+		j.add("accuracy-estimated", Note, "No instrument accuracy was stated: it is estimated from the residuals (%d degrees of freedom%s), so a constant error of the instrument does not show.",
+			r.DegreesOfFreedom, few)
 	}
 	if r.Widening > 1 {
 		j.add("correlated", Note, "Neighbouring residuals are alike (lag-1 correlation %.2f): uncertainties were widened by %.2f.", r.Lag1, r.Widening)
@@ -250,13 +253,15 @@ func suspects(list []fit.Suspect) string {
 func (j *judgement) tellShape() {
 	f := j.a.Fit
 	if !j.hangs() {
-		u := math.Sqrt(j.r.Cov[2][2])
-		text := "The curve is too flat for this survey: the sag at mid-span is %s, no more than its uncertainty."
-		if j.in.x[inCurvature] < -3*u {
-			text = "The points bulge upwards (sag %s): this is not a hanging cable. Check codes, units and the order of columns."
+		if j.unfit() == "" {
+			j.add("flat", Act, "The curve is too flat for this survey: the sag at mid-span is %s, no more than its uncertainty.", Metre.Figure(f.SagMid))
 		}
-		j.add("flat", Act, text, Metre.Figure(f.SagMid))
 		return
+	}
+	if k, u := j.in.x[inCurvature], j.uCurvature(); u > 0.1*k && j.p.known(outH) {
+		hang := j.p.y[outHanging]
+		j.add("lopsided", Look, "The curve is so flat that the interval of H is lopsided: from the survey alone it runs from %s to %s (95 %%).",
+			force(Quantity{Value: hang / quantile(k, u, 0.975)}), force(Quantity{Value: hang / quantile(k, u, 0.025)}))
 	}
 	switch {
 	case f.SagRatio >= 0.1:

@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 
+	"gonum.org/v1/gonum/stat/distuv"
+
 	"tautbook/fit"
 	"tautbook/survey"
 )
@@ -39,7 +41,7 @@ type inputs struct {
 	curve   fit.Curve           // shape family and share; its numbers are overwritten from x
 	frame   spanFrame
 	near    outputs // figures at the estimates: first guesses for the states nearby; zero = none
-	dof     float64 // degrees of freedom of the survey block, +Inf when the accuracy is stated and holds
+	few     float64 // factor on u of the survey for an accuracy estimated from few residuals; 1 = none
 }
 
 // spanFrame says which chord the states use.
@@ -52,7 +54,7 @@ type source struct {
 	name       string
 	value, u   string
 	directions [][]step
-	survey     bool // carries the degrees of freedom of the fit
+	survey     bool // the shape of the cable
 }
 
 // step is a move of one input.
@@ -87,10 +89,12 @@ func (in *inputs) uncertain(at int) bool {
 // gather lays out the vector for one span.
 func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []survey.ListedLoad) *inputs {
 	n := inFixed + len(listed)
-	in := &inputs{x: make([]float64, n), have: make([]bool, n), listed: listed, curve: r.Curve, dof: math.Inf(1)}
+	in := &inputs{x: make([]float64, n), have: make([]bool, n), listed: listed, curve: r.Curve, few: 1}
 	in.frame.surveyed = r.A.Surveyed && r.B.Surveyed
 	if !r.APriori || r.ScaledBy != 1 {
-		in.dof = float64(r.DegreesOfFreedom)
+		// Student's t with few degrees of freedom has longer tails than k = 2 covers: u is widened so that 2 u covers 95.45 %
+		// all the same (JCGM 100:2008, G.3; the same idea as JCGM 101:2008, 6.4.9.4).
+		in.few = distuv.StudentsT{Sigma: 1, Nu: float64(r.DegreesOfFreedom)}.Quantile(distuv.UnitNormal.CDF(2)) / 2
 	}
 	in.x[inZA], in.x[inZB], in.x[inCurvature] = r.Curve.Z1, r.Curve.Z2, r.Curve.Curvature
 	in.x[inStationA], in.x[inStationB] = r.A.Station, r.B.Station
@@ -99,7 +103,7 @@ func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []sur
 	}
 	in.sources = append(in.sources, source{name: "shape of the cable (survey)",
 		value: fmt.Sprintf("%d points", len(r.Observations)), u: "rms " + Millimetre.About(r.RMS),
-		directions: cholesky(r.Cov), survey: true})
+		directions: cholesky(r.Cov, in.few), survey: true})
 	in.ends(r)
 	in.set(inTemperature, temperature, "cable temperature on the day", DegreeCelsius)
 	if d == nil {
@@ -144,8 +148,8 @@ func (in *inputs) ends(r *fit.Result) {
 	}
 }
 
-// cholesky splits the covariance of (Z_A, Z_B, curvature) into three independent one-sigma moves.
-func cholesky(c [3][3]float64) [][]step {
+// cholesky splits the covariance of (Z_A, Z_B, curvature) into three independent moves, each a factor times one sigma.
+func cholesky(c [3][3]float64, factor float64) [][]step {
 	var l [3][3]float64
 	for i := range 3 {
 		for j := range i + 1 {
@@ -167,7 +171,7 @@ func cholesky(c [3][3]float64) [][]step {
 		var d []step
 		for i := j; i < 3; i++ {
 			if l[i][j] != 0 {
-				d = append(d, step{at[i], l[i][j]})
+				d = append(d, step{at[i], factor * l[i][j]})
 			}
 		}
 		if d != nil {

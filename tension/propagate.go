@@ -88,16 +88,3 @@ func (p *propagated) uDifference(a, b int) float64 {
 	}
 	return math.Sqrt(sum)
 }
-
-// dof is the effective number of degrees of freedom of an output (Welch-Satterthwaite, JCGM 100:2008, G.4.1): only the
-// survey block is estimated from few data, the other inputs are taken as fully known distributions.
-func (p *propagated) dof(out int) float64 {
-	total := p.u(out)
-	for i, s := range p.in.sources {
-		if s.survey && total > 0 {
-			part := p.variance(i, out) / (total * total)
-			return p.in.dof / (part * part)
-		}
-	}
-	return math.Inf(1)
-}

@@ -218,29 +218,18 @@ var publishedRows = map[string]func(p published) map[string]float64{
 		return map[string]float64{"lambda2": st.Lambda2()}
 	},
 	"N12": func(p published) map[string]float64 {
-		return map[string]float64{"p": below(p.f("y"), p.f("u"), p.f("TU"), rigid) - below(p.f("y"), p.f("u"), p.f("TL"), rigid)}
+		return map[string]float64{"p": below(p.f("y"), p.f("u"), p.f("TU")) - below(p.f("y"), p.f("u"), p.f("TL"))}
 	},
 	"N13": func(p published) map[string]float64 {
-		return map[string]float64{"p": below(p.f("y"), p.f("u"), p.f("TU"), rigid)}
+		return map[string]float64{"p": below(p.f("y"), p.f("u"), p.f("TU"))}
 	},
 	"N14": func(p published) map[string]float64 {
-		return map[string]float64{"p": 1 - below(p.f("y"), p.f("u"), p.f("TL"), rigid)}
-	},
-	"N15": func(p published) map[string]float64 {
-		r := map[string]float64{"t9545_10": quantile(0, 1, 1-0.0455/2, 10), "t99_16": quantile(0, 1, 0.995, 16), "t9973_10": quantile(0, 1, 1-0.0027/2, 10)}
-		for _, n := range []float64{1, 2, 5, 10, 20, 50} {
-			r[fmt.Sprintf("t95_%.0f", n)] = quantile(0, 1, 0.975, n)
-		}
-		return r
-	},
-	"N17": func(p published) map[string]float64 {
-		return map[string]float64{"t975_3": quantile(0, 1, 0.975, 3), "t975_7": quantile(0, 1, 0.975, 7), "t995_12": quantile(0, 1, 0.995, 12),
-			"t975_2p5": quantile(0, 1, 0.975, 2.5), "z975": quantile(0, 1, 0.975, rigid)}
+		return map[string]float64{"p": 1 - below(p.f("y"), p.f("u"), p.f("TL"))}
 	},
 	"N18": func(p published) map[string]float64 {
 		r := map[string]float64{}
 		for i, prob := range p.list("p") {
-			r[fmt.Sprintf("z%d", i+1)] = quantile(0, 1, prob, rigid)
+			r[fmt.Sprintf("z%d", i+1)] = quantile(0, 1, prob)
 		}
 		return r
 	},

@@ -10,6 +10,8 @@ import (
 func (j *judgement) reason() string {
 	x, v, s := j.a.Expected, j.a.Rival, j.a.Strength
 	switch j.ground {
+	case groundUnfit:
+		return j.unfit() + " No tension can be read from them."
 	case groundStrength:
 		return fmt.Sprintf("The greatest tension is %s, %s of the permitted %s (probability of being over: %s).",
 			force(s.GreatestT), Percent.Value(s.Use), force(Quantity{Value: s.Permitted}), Probability(s.POver))
@@ -136,6 +138,8 @@ func (j *judgement) noDesign() string {
 // nextStep is what to do or to measure now.
 func (j *judgement) nextStep() string {
 	switch j.ground {
+	case groundUnfit:
+		return "Check codes, units and the order of columns with \"tautbook check\"; give the points of one cable at a time (codes, or --code CODE=ignore)."
 	case groundStrength:
 		return "Take live load off, tell the engineer who answers for the structure today, and confirm with a direct reading."
 	case groundRivalStrength:

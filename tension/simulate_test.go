@@ -22,6 +22,7 @@ type site struct {
 	points  int
 	sigma   float64 // of a point, m
 	support float64 // of a support, m
+	silent  bool    // the accuracy of the points is not stated
 }
 
 func q(v, u float64) *survey.Quantity { return &survey.Quantity{Value: v, U: u} }
@@ -106,7 +107,7 @@ func (s site) survey(st State, rng *rand.Rand) survey.SpanPoints {
 	az := 0.7
 	at := func(id string, station, z, sigma float64) survey.Point {
 		v := sigma * sigma
-		return survey.Point{ID: id, HasCov: sigma > 0, Cov: survey.Cov3{EE: v, NN: v, ZZ: v},
+		return survey.Point{ID: id, HasCov: sigma > 0 && !s.silent, Cov: survey.Cov3{EE: v, NN: v, ZZ: v},
 			E: e0 + station*math.Sin(az) + sigma*rng.NormFloat64(), N: n0 + station*math.Cos(az) + sigma*rng.NormFloat64(), Z: z0 + z + sigma*rng.NormFloat64()}
 	}
 	out := survey.SpanPoints{Cable: s.design.Cable}

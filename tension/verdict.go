@@ -21,10 +21,12 @@ const (
 	groundInside        ground = "inside"
 	groundCoarse        ground = "coarse"
 	groundNone          ground = "none"
+	groundUnfit         ground = "unfit" // the points are no hanging cable
 )
 
 // evidence is what the verdict rests on. Probabilities are NaN when they could not be worked out; NaN is never sure.
 type evidence struct {
+	unfit                    bool // the points are no hanging cable
 	compared                 bool // there is an expected tension
 	pSlack, pInside, pOver   float64
 	record                   survey.LoadStatus
@@ -43,6 +45,8 @@ func decide(e evidence) (Verdict, ground) {
 	looked := e.record == survey.LoadsAsFiled || e.record == survey.LoadsListed
 	open := !looked && !e.rivalRefuted
 	switch {
+	case e.unfit:
+		return Undecided, groundUnfit
 	case e.pStrength >= sure:
 		return Overload, groundStrength
 	case looked && e.pLoadOver >= sure:
