@@ -195,26 +195,37 @@ func count(points []Point, keep func(Point) bool) (n int) {
 	return n
 }
 
+// extent is the diagonal of the points in plan, m.
+func extent(points []Point) float64 {
+	lo, hi := [2]float64{math.Inf(1), math.Inf(1)}, [2]float64{math.Inf(-1), math.Inf(-1)}
+	for _, p := range points {
+		for k, v := range [2]float64{p.E, p.N} {
+			lo[k], hi[k] = math.Min(lo[k], v), math.Max(hi[k], v)
+		}
+	}
+	return math.Hypot(hi[0]-lo[0], hi[1]-lo[1])
+}
+
 // odd tells a chord that does not fit the design span, by a factor of feet to metres above all.
 func (s *sorter) odd(sp SpanPoints) {
-	if sp.A == nil || sp.B == nil {
-		return
+	chord, what := extent(sp.Points), "points reach over"
+	if sp.A != nil && sp.B != nil {
+		chord, what = math.Hypot(sp.A.E-sp.B.E, sp.A.N-sp.B.N), "supports are apart by"
 	}
-	chord := math.Hypot(sp.A.E-sp.B.E, sp.A.N-sp.B.N)
 	for _, d := range s.resolver.known {
 		if d.Cable != sp.Cable || d.Span != sp.Span || d.SpanLength == nil {
 			continue
 		}
 		ratio := chord / d.SpanLength.Value
 		add := func(text string) {
-			s.survey.Notices = append(s.survey.Notices, Notice{File: s.survey.File, Text: fmt.Sprintf("cable %s: the surveyed supports are %.3f m apart, the design span is %.3f m: %s", quote(sp.Cable), chord, d.SpanLength.Value, text)})
+			s.survey.Notices = append(s.survey.Notices, Notice{File: s.survey.File, Text: fmt.Sprintf("cable %s: the surveyed %s %.3f m, the design span is %.3f m: %s", quote(sp.Cable), what, chord, d.SpanLength.Value, text)})
 		}
 		switch {
-		case math.Abs(ratio*foot-1) < 0.02:
+		case math.Abs(ratio*foot-1) < 0.05:
 			add("the file may be in feet: say --unit ft or us-ft")
-		case math.Abs(ratio/foot-1) < 0.02:
+		case math.Abs(ratio/foot-1) < 0.02 && sp.A != nil && sp.B != nil:
 			add("the file may be in metres: check --unit and the units in the header")
-		case math.Abs(ratio-1) > 0.01:
+		case ratio > 1.01, ratio < 0.99 && sp.A != nil && sp.B != nil:
 			add("check the codes, the units and the cables file")
 		}
 	}

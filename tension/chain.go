@@ -206,13 +206,25 @@ func (in *inputs) design(y *outputs, x []float64) (*State, []lack) {
 	return &st, nil
 }
 
-// chordToday is the chord for the states: surveyed if both supports were, else that of the design.
+// sameSpan is the fraction by which a surveyed span may differ from the design before they are not taken for the same: no
+// support moves that far.
+const sameSpan = 0.2
+
+// chordToday is the chord for the states: surveyed if both supports were, else that of the design. The second result says
+// why there is none.
 func (in *inputs) chordToday(x []float64, c fit.Curve) (Chord, string) {
+	covered := x[inStationB] - x[inStationA]
 	if in.frame.surveyed {
-		return Chord{Length: x[inStationB] - x[inStationA], Rise: c.Z(x[inStationB]) - c.Z(x[inStationA])}, ""
+		if in.have[inSpan] && math.Abs(covered/x[inSpan]-1) > sameSpan {
+			return Chord{}, fmt.Sprintf("the surveyed supports are %.4g m apart and the design span is %.4g m: not the same span, or another unit", covered, x[inSpan])
+		}
+		return Chord{Length: covered, Rise: c.Z(x[inStationB]) - c.Z(x[inStationA])}, ""
 	}
-	if !in.have[inSpan] || !in.have[inRise] {
+	switch {
+	case !in.have[inSpan] || !in.have[inRise]:
 		return Chord{}, "the supports were not surveyed and the file gives no design_span and design_rise"
+	case covered > 1.01*x[inSpan]:
+		return Chord{}, fmt.Sprintf("the points cover %.4g m and the design span is %.4g m: not the same span, or another unit", covered, x[inSpan])
 	}
 	return Chord{Length: x[inSpan], Rise: x[inRise]}, ""
 }

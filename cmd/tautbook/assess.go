@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"runtime"
+	"slices"
 	"sync"
 
 	"github.com/spf13/cobra"
@@ -82,6 +83,9 @@ func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
 		return err
 	}
 	cases := casesOf(in, plain, fit.Options{RejectBeyond: o.rejectBeyond})
+	if plain != nil && !slices.ContainsFunc(cases, func(c tension.Case) bool { return c.Design == plain }) {
+		fmt.Fprintf(o.streams.err, "tautbook: --self-weight and --deck-load are not used: %s has design values for every cable\n", in.cables)
+	}
 	cables, err := assessAll(cases)
 	if err != nil {
 		return err
