@@ -39,10 +39,17 @@ type tick struct {
 	Label string
 }
 
+// mostTicks keeps a picture readable whatever the axis holds.
+const mostTicks = 40
+
 func (a axis) ticks() (out []tick) {
 	decimals := max(0, -int(math.Floor(math.Log10(a.step)+1e-9)))
-	for k := math.Ceil(a.lo/a.step - 1e-9); k*a.step <= a.hi+1e-9*a.step; k++ {
-		v := k * a.step
+	first := math.Ceil(a.lo/a.step - 1e-9)
+	for i := range mostTicks {
+		v := (first + float64(i)) * a.step
+		if !(v <= a.hi+1e-9*a.step) {
+			break
+		}
 		out = append(out, tick{a.at(v), minus(strconv.FormatFloat(v+0, 'f', decimals, 64))})
 	}
 	return out

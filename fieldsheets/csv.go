@@ -3,6 +3,7 @@ package fieldsheets
 import (
 	"encoding/csv"
 	"io"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -16,8 +17,13 @@ type csvColumn struct {
 }
 
 // WriteCSV prints one header and one line a cable with the names of the JSON, standard uncertainties as columns u_..., full
-// precision, empty cells for what is not known. Text from files is made harmless for spreadsheets.
+// precision. A number that is not known is an empty cell, so that number columns hold numbers alone; the column
+// not_determined then says in words which and why. Text from files is made harmless for spreadsheets. A number that is not
+// finite is an error that names its place.
 func WriteCSV(w io.Writer, r Report) error {
+	if err := finite(r); err != nil {
+		return err
+	}
 	out := csv.NewWriter(w)
 	header := make([]string, len(csvColumns))
 	for i, c := range csvColumns {
@@ -37,14 +43,6 @@ func WriteCSV(w io.Writer, r Report) error {
 	}
 	out.Flush()
 	return out.Error()
-}
-
-// harmless keeps a spreadsheet from taking text for a formula.
-func harmless(text string) string {
-	if strings.HasPrefix(strings.TrimLeft(text, " "), "=") || (text != "" && strings.ContainsRune("+-@\t\r", rune(text[0]))) {
-		return "'" + text
-	}
-	return text
 }
 
 func exactly(v float64) string { return strconv.FormatFloat(v, 'g', -1, 64) }
@@ -166,6 +164,32 @@ func makeColumns() (out []csvColumn) {
 		}
 		return &a.Strength.Use
 	})...)
-	add(textColumn("reason", func(a *tension.Assessment) string { return a.Reason }), textColumn("next_step", func(a *tension.Assessment) string { return a.NextStep }))
+	add(textColumn("reason", func(a *tension.Assessment) string { return a.Reason }), textColumn("next_step", func(a *tension.Assessment) string { return a.NextStep }),
+		csvColumn{"not_determined", func(a *tension.Assessment) string { return strings.Join(missing(a), "; ") }})
+	return out
+}
+
+// missing names the columns that are empty for a cable, with the reason; standard uncertainties go with their values.
+func missing(a *tension.Assessment) (out []string) {
+	for _, m := range []struct {
+		known bool
+		name  string
+		why   string
+	}{
+		{a.HorizontalTension != nil, "horizontal_tension_N", whyNoTension(a)},
+		{len(a.Reactions) == 2, "reaction_A and reaction_B", whyNoTension(a)},
+		{a.Expected != nil, "expected, ratio and probabilities", noDesign},
+		{a.Expected == nil || a.Expected.Ratio != nil, "ratio", whyNoTension(a)},
+		{a.Rival != nil, "rival", noRival},
+		{a.AtDesignTemperature != nil, "horizontal_tension_at_design_temperature_N", whyNotBrought(a)},
+		{a.Strength != nil, "strength_use", noStrength},
+	} {
+		if !m.known {
+			out = append(out, m.name+": "+m.why)
+		}
+	}
+	if slices.Equal(constants(a), []*tension.Quantity{nil, nil, nil}) {
+		out = append(out, "catenary_constant_m, parabola_parameter_m and mixed_constant_m: "+tooFlat)
+	}
 	return out
 }

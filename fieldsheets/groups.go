@@ -18,7 +18,17 @@ type group struct {
 	Rows  []row
 }
 
-const unknown = "not determined"
+// Why a figure is not there, in words that follow "not determined: ".
+const (
+	tooFlat    = "the curve is too flat for this survey"
+	noLoad     = "no load on file"
+	noDesign   = "no design values to compare with, see findings"
+	noRival    = "no even load explains this shape at the designed length"
+	noStrength = "breaking load, safety factor or tension is missing, see findings"
+)
+
+// unknown is what stands where a figure could not be worked out.
+func unknown(why string) string { return "not determined: " + why }
 
 // or prints a quantity, or words where there is none.
 func or(q *tension.Quantity, print func(tension.Quantity) string, otherwise string) string {
@@ -48,12 +58,23 @@ func name(a *tension.Assessment) string {
 	return a.Cable + ", span " + a.Span
 }
 
-// visitRows are the conditions that are known and the same in all files.
+// visitRows are the conditions that were recorded; those that differ between files are named and stand with each file.
 func visitRows(v Visit) (out []row) {
+	if v.Date == "" {
+		v.Date = "date not recorded"
+	}
+	var different []string
 	for _, r := range []row{{"visit", v.Date}, {"wind", v.Wind}, {"loads", v.Loads}, {"instrument", v.Instrument}, {"crew", v.Crew}} {
-		if r.Value != "" && r.Value != differs {
+		switch r.Value {
+		case "":
+		case differs:
+			different = append(different, r.Label)
+		default:
 			out = append(out, row{r.Label, clean(r.Value)})
 		}
+	}
+	if len(different) > 0 {
+		out = append(out, row{"different between files:", strings.Join(different, ", ")})
 	}
 	return out
 }
@@ -61,7 +82,7 @@ func visitRows(v Visit) (out []row) {
 // groups are all figures of one cable.
 func groups(a *tension.Assessment) []group {
 	out := []group{forces(a), comparison(a)}
-	if a.Rival != nil {
+	if a.Expected != nil {
 		out = append(out, rivalGroup(a))
 	}
 	return append(out, strengthGroup(a), loadGroup(a), shapeGroup(a))
@@ -69,28 +90,42 @@ func groups(a *tension.Assessment) []group {
 
 func forces(a *tension.Assessment) group {
 	g := group{Title: "Forces today, if the load is as recorded"}
-	h := or(a.HorizontalTension, force, unknown+noTension(a))
+	h := or(a.HorizontalTension, force, unknown(whyNoTension(a)))
 	if v := a.HorizontalTensionAtLeast; v != nil && a.HorizontalTension == nil {
-		h = "at least " + forceExact(*v) + " (95 % sure); the curve is too flat for more"
+		h = "at least " + forceExact(*v) + " (95 % sure); " + tooFlat + " to say more"
 	}
 	g.Rows = append(g.Rows, row{"Horizontal tension H", h})
 	for _, r := range a.Reactions {
-		where := "support " + r.Support
+		where := "support " + clean(r.Support)
 		if !r.Surveyed {
-			where = "end " + r.Support + " (outermost)"
+			where = "end " + clean(r.Support) + " (outermost)"
 		}
 		g.Rows = append(g.Rows,
 			row{"Tension at " + where, force(r.Tension) + ", slope " + tension.Degree.Figure(r.SlopeDeg)},
 			row{"Vertical reaction there", force(r.Vertical) + upOrDown(r)})
 	}
+	if len(a.Reactions) == 0 {
+		g.Rows = append(g.Rows, row{"Reactions at A and B", unknown(whyNoTension(a))})
+	}
 	return g
 }
 
-func noTension(a *tension.Assessment) string {
+func whyNoTension(a *tension.Assessment) string {
 	if a.Load.Hanging.Value == 0 {
-		return ": no load on file"
+		return noLoad
 	}
-	return ": the curve is too flat for this survey"
+	return tooFlat
+}
+
+// whyNotBrought says why there is no tension at the design temperature or no unstressed length.
+func whyNotBrought(a *tension.Assessment) string {
+	switch {
+	case a.HorizontalTension == nil:
+		return whyNoTension(a)
+	case a.Expected == nil:
+		return noDesign
+	}
+	return "the elastic state has no solution for these values"
 }
 
 func upOrDown(r tension.Reaction) string {
@@ -104,44 +139,52 @@ func comparison(a *tension.Assessment) group {
 	g := group{Title: "Against the design"}
 	e := a.Expected
 	if e == nil {
-		g.Rows = append(g.Rows, row{"Expected tension", "no design state to compare with: see findings"})
+		g.Rows = append(g.Rows, row{"Expected tension", unknown(noDesign)})
 		return g
 	}
 	g.Rows = append(g.Rows,
-		row{"H expected today", force(e.HorizontalTension)},
-		row{"Ratio today / expected", or(e.Ratio, tension.Plain.Figure, unknown)},
+		row{"Ratio today / expected", or(e.Ratio, tension.Plain.Figure, unknown(whyNoTension(a)))},
 		row{"Limits", fmt.Sprintf("slack below %.2f, overload above %.2f (%s)", e.SlackBelow, e.OverloadAbove, e.LimitsFrom)},
 		row{"Probabilities", fmt.Sprintf("slack %s, inside the limits %s, overload %s", tension.Probability(e.PSlack), tension.Probability(e.PInside), tension.Probability(e.POverload))},
-		row{"Sag expected / measured", length(e.SagMid) + " / " + length(e.MeasuredSagMid)},
 		row{"Brought to the day from", fmt.Sprintf("design temperature %+.1f °C, span from %s", e.TemperatureShift, e.SpanFrom)})
 	if e.LoadRatio.Value != 1 {
 		g.Rows = append(g.Rows, row{"Load on record / design load", tension.Percent.Figure(e.LoadRatio)},
-			row{"H under the design load alone", force(e.UnderFiledLoad)})
+			row{"H under design load alone", force(e.UnderFiledLoad)})
 	}
-	if q := a.AtDesignTemperature; q != nil {
-		g.Rows = append(g.Rows, row{"H at the design temperature", force(*q)})
-	}
+	g.Rows = append(g.Rows, row{"H at the design temperature", or(a.AtDesignTemperature, force, unknown(whyNotBrought(a)))})
 	if l := a.UnstressedLength; l != nil {
 		g.Rows = append(g.Rows, row{"Unstressed length today", tension.Metre.Figure(l.Today)},
 			row{"Longer than designed by", tension.Millimetre.Figure(l.Difference)})
+	} else {
+		g.Rows = append(g.Rows, row{"Unstressed length today", unknown(whyNotBrought(a))})
 	}
 	if i := a.ImpliedLoad; i != nil {
-		g.Rows = append(g.Rows, row{"Load implied by expected H", or(i.IfTensionAsExpected, tension.NewtonPerMetre.Figure, unknown)},
-			row{"Load implied by length", or(i.IfLengthAsDesigned, tension.NewtonPerMetre.Figure, unknown)})
+		g.Rows = append(g.Rows, row{"Load implied by expected H", or(i.IfTensionAsExpected, tension.NewtonPerMetre.Figure, unknown(tooFlat))},
+			row{"Load implied by length", or(i.IfLengthAsDesigned, tension.NewtonPerMetre.Figure, unknown(noRival))})
+	} else {
+		g.Rows = append(g.Rows, row{"Load implied by the shape", unknown(whyNoTension(a))})
 	}
 	return g
 }
 
+// rivalGroup says how far the other reading is from the record and whether anything rules it out.
 func rivalGroup(a *tension.Assessment) group {
-	v := a.Rival
 	g := group{Title: "The other reading: length as designed, load not"}
-	g.Rows = append(g.Rows, row{"H then", force(v.HorizontalTension)}, row{"Ratio then", tension.Plain.Figure(v.Ratio)},
-		row{"Load then / load on record", tension.Percent.Figure(v.LoadFactor)}, row{"Load beside the record then", tension.NewtonPerMetre.Figure(v.ExtraLoad)})
+	v := a.Rival
+	if v == nil {
+		g.Rows = append(g.Rows, row{"H then", unknown(noRival)})
+		return g
+	}
+	g.Rows = append(g.Rows, row{"Load then / load on record", tension.Percent.Figure(v.LoadFactor)},
+		row{"Load beside the record then", tension.NewtonPerMetre.Figure(v.ExtraLoad)})
 	state := "open: nothing on record excludes it"
 	if v.Excluded {
 		state = "excluded by " + v.ExcludedBy
 	}
 	g.Rows = append(g.Rows, row{"This reading is", state})
+	if s := a.Strength; s != nil && s.RivalPOver != nil && !v.Excluded {
+		g.Rows = append(g.Rows, row{"Over the permitted tension", tension.Probability(*s.RivalPOver) + " then"})
+	}
 	return g
 }
 
@@ -149,15 +192,12 @@ func strengthGroup(a *tension.Assessment) group {
 	g := group{Title: "Strength"}
 	s := a.Strength
 	if s == nil {
-		g.Rows = append(g.Rows, row{"Use of the permitted tension", "not checked: see findings"})
+		g.Rows = append(g.Rows, row{"Use of the permitted tension", unknown(noStrength)})
 		return g
 	}
 	g.Rows = append(g.Rows, row{"Greatest tension", force(s.GreatestT)},
 		row{"Permitted", fmt.Sprintf("%s (breaking load / %.3g)", forceExact(s.Permitted), s.SafetyFactor)},
 		row{"Use", fmt.Sprintf("%s; over: %s", tension.Percent.Figure(s.Use), tension.Probability(s.POver))})
-	if s.RivalUse != nil && a.Rival != nil && !a.Rival.Excluded {
-		g.Rows = append(g.Rows, row{"Use in the other reading", tension.Percent.Figure(*s.RivalUse)})
-	}
 	return g
 }
 
@@ -178,7 +218,10 @@ func loadGroup(a *tension.Assessment) group {
 	} else {
 		g.Rows = append(g.Rows, row{"Load", "none on file"})
 	}
-	record := map[survey.LoadStatus]string{survey.LoadsAsFiled: "looked at, as filed", survey.LoadsListed: "looked at, listed", survey.LoadsNotChecked: "NOT CHECKED"}[l.Record]
+	record := map[survey.LoadStatus]string{survey.LoadsAsFiled: "looked at, as filed", survey.LoadsListed: "looked at, listed"}[l.Record]
+	if record == "" {
+		record = "NOT CHECKED"
+	}
 	temperature := or(a.Temperature, tension.DegreeCelsius.Figure, "not recorded")
 	g.Rows = append(g.Rows, row{"Record of loads", record}, row{"Cable temperature", temperature})
 	return g
@@ -196,24 +239,33 @@ func shapeGroup(a *tension.Assessment) group {
 		accuracy = fmt.Sprintf("as stated, variance factor %.2f", f.VarianceFactor)
 	}
 	g.Rows = append(g.Rows, row{"Curve", string(f.Shape)}, row{"Points", points + ", scatter " + tension.Millimetre.About(f.RMS)}, row{"Accuracy", accuracy})
-	for _, c := range []struct {
-		label string
-		q     *tension.Quantity
-	}{{"Catenary constant a = H/w", f.CatenaryConstant}, {"Parabola parameter p = H/q", f.ParabolaParameter}, {"Constant H/(w + q)", f.MixedConstant}} {
-		if c.q != nil {
-			g.Rows = append(g.Rows, row{c.label, tension.Metre.Figure(*c.q)})
+	known := false
+	for i, c := range constants(a) {
+		if c != nil {
+			label := [...]string{"Catenary constant a = H/w", "Parabola parameter p = H/q", "Constant H/(w + q)"}[i]
+			g.Rows, known = append(g.Rows, row{label, tension.Metre.Figure(*c)}), true
 		}
+	}
+	if !known {
+		g.Rows = append(g.Rows, row{"Curve constant", unknown(tooFlat)})
 	}
 	g.Rows = append(g.Rows, row{"Chord, horizontal", tension.Metre.Figure(f.Chord)}, row{"Rise of B over A", tension.Metre.Figure(f.Rise)},
 		row{"Sag at mid-span", length(f.SagMid) + fmt.Sprintf(" (%s of the span)", tension.Percent.About(f.SagRatio))},
 		row{"Greatest sag", length(f.GreatestSag) + fmt.Sprintf(" at station %.1f m", f.GreatestSagAt)}, row{"Arc length", tension.Metre.Figure(f.ArcLength)})
 	if f.LowPointStation != nil && f.LowPointElevation != nil {
 		g.Rows = append(g.Rows, row{"Low point", "station " + tension.Metre.Figure(*f.LowPointStation) + outside(a) + ", elevation " + tension.Metre.Figure(*f.LowPointElevation)})
+	} else {
+		g.Rows = append(g.Rows, row{"Low point", unknown(tooFlat)})
 	}
 	for _, alt := range f.Alternatives {
 		g.Rows = append(g.Rows, row{"As a " + string(alt.Shape), fmt.Sprintf("H %+.2f %%, %s", 100*alt.TensionOff, fitsAsWell(alt))})
 	}
 	return g
+}
+
+// constants are those of the catenary, the parabola and the mixed curve; at most one is there.
+func constants(a *tension.Assessment) []*tension.Quantity {
+	return []*tension.Quantity{a.Fit.CatenaryConstant, a.Fit.ParabolaParameter, a.Fit.MixedConstant}
 }
 
 func outside(a *tension.Assessment) string {
@@ -238,21 +290,4 @@ func fitsAsWell(alt fit.Alternative) string {
 	default:
 		return "fits as well"
 	}
-}
-
-// clean makes text from a file safe to show on one line: control and direction marks become visible blanks, and what is
-// very long is cut.
-func clean(s string) string {
-	s = strings.Map(func(r rune) rune {
-		switch {
-		case r < ' ' || r == 0x7f || (r >= 0x80 && r < 0xa0),
-			r >= 0x200b && r <= 0x200f, r >= 0x2028 && r <= 0x202e, r >= 0x2060 && r <= 0x2069, r == 0xfeff:
-			return '·'
-		}
-		return r
-	}, s)
-	if runes := []rune(s); len(runes) > 120 {
-		s = string(runes[:120]) + "…"
-	}
-	return s
 }

@@ -30,20 +30,24 @@ type page struct {
 	Report   Report
 	Style    template.CSS
 	Visit    []row
+	Tally    string
 	Cables   []cableView
 	Urgent   []cableView // the same, most urgent first
 	Files    []fileView
+	Designs  string // the cables file
 	Notices  []string
 	Printed  string
 	Cautions []string
+	Signers  []string
 }
 
 // cableView is one cable as the sheet shows it.
 type cableView struct {
 	ID, Name, Verdict, Class string
-	Owner                    string // for the owner: one line
+	Owner, Sure              string // for the owner: the state in one line, and how sure it is
 	Reason, Next             string
 	Heavy, Notes             []tension.Finding
+	Grid                     *grid
 	Groups                   []group
 	Scale, Shape, Below, Res template.HTML
 	Budget                   []budgetView
@@ -67,13 +71,18 @@ type fileView struct {
 // WriteHTML prints the condition summary as one HTML file without scripts and without anything to fetch: for the owner the
 // verdicts in words, for the engineer one section a cable, then provenance and cautions. It prints on A4 and Letter.
 func WriteHTML(w io.Writer, r Report) error {
+	if err := finite(r); err != nil {
+		return err
+	}
 	p := page{Title: "Condition summary" + prefixed(": ", clean(r.Visit.Structure)), Report: r, Style: template.CSS(summaryStyle), Visit: visitRows(r.Visit),
-		Printed: r.Printed.Format("2006-01-02 15:04"), Cautions: r.Cautions}
+		Printed: r.Printed.Format("2006-01-02 15:04"), Designs: clean(r.Survey.CablesFile), Cautions: r.Cautions,
+		Signers: []string{"Surveyed by", "Assessed by", "Reviewed by"}}
 	for i := range r.Cables {
 		p.Cables = append(p.Cables, viewOf(i, &r.Cables[i]))
 	}
 	p.Urgent = slices.Clone(p.Cables)
 	slices.SortStableFunc(p.Urgent, func(a, b cableView) int { return urgency[a.Verdict] - urgency[b.Verdict] })
+	p.Tally = tally(r.Cables)
 	for _, n := range r.Survey.Notices {
 		p.Notices = append(p.Notices, noticeText(n))
 	}
@@ -88,10 +97,6 @@ func WriteHTML(w io.Writer, r Report) error {
 	return err
 }
 
-// urgency orders verdicts for the first page.
-var urgency = map[string]int{string(tension.Overload): 0, string(tension.Slack): 1, string(tension.OffDesign): 2, string(tension.Undecided): 3,
-	string(tension.NoDesign): 4, string(tension.AsDesigned): 5}
-
 // together keeps numbers and their units on one line.
 func together(s string) string {
 	list := words(s)
@@ -104,7 +109,14 @@ func together(s string) string {
 func viewOf(i int, a *tension.Assessment) cableView {
 	id := fmt.Sprintf("c%d", i+1)
 	v := cableView{ID: id, Name: clean(name(a)), Verdict: string(a.Verdict), Class: strings.ReplaceAll(string(a.Verdict), " ", "-"),
-		Owner: together(ownerLine(a)), Reason: together(cleanSentence(a.Reason)), Next: together(cleanSentence(a.NextStep)), Groups: groups(a)}
+		Owner: together(ownerLine(a)), Sure: together(howSure(a)), Reason: together(cleanSentence(a.Reason)), Next: together(cleanSentence(a.NextStep)), Groups: groups(a)}
+	if v.Grid = readings(a); v.Grid != nil {
+		for _, r := range v.Grid.Rows {
+			for i := range r.Cells {
+				r.Cells[i] = together(r.Cells[i])
+			}
+		}
+	}
 	for _, g := range v.Groups {
 		for i := range g.Rows {
 			g.Rows[i].Value = together(cleanSentence(g.Rows[i].Value))
@@ -126,7 +138,11 @@ func viewOf(i int, a *tension.Assessment) cableView {
 	}
 	for _, b := range a.Budget {
 		b.Input = clean(b.Input)
-		v.Budget = append(v.Budget, budgetView{b, fmt.Sprintf("%.0f %%", 100*b.Share), 100 * b.Share})
+		share := fmt.Sprintf("%.0f\u00a0%%", 100*b.Share)
+		if b.Share < 0.005 {
+			share = "under 1\u00a0%"
+		}
+		v.Budget = append(v.Budget, budgetView{b, share, 100 * b.Share})
 	}
 	for _, s := range a.Fit.Rejected {
 		point := s.ID
@@ -136,48 +152,6 @@ func viewOf(i int, a *tension.Assessment) cableView {
 		v.Rejected = append(v.Rejected, row{clean(point), fmt.Sprintf("station %.2f m, %+.0f mm: %s", s.Station, 1000*s.Residual, s.Reason)})
 	}
 	return v
-}
-
-// cleanSentence is clean without the cut: findings are sentences of this program that may quote text from a file.
-func cleanSentence(s string) string {
-	var out []string
-	for _, w := range strings.Fields(s) {
-		out = append(out, clean(w))
-	}
-	return strings.Join(out, " ")
-}
-
-// ownerLine says the state of a cable to somebody who is no engineer.
-func ownerLine(a *tension.Assessment) string {
-	percent := func(q *tension.Quantity) string { return fmt.Sprintf("%.0f %%", 100*q.Value) }
-	e := a.Expected
-	switch a.Verdict {
-	case tension.Slack:
-		if e != nil && e.Ratio != nil {
-			return "It carries about " + percent(e.Ratio) + " of the tension that it should have today."
-		}
-		return "It carries less tension than it should have today."
-	case tension.Overload:
-		switch {
-		case a.Strength != nil && a.Strength.POver >= 0.95:
-			return "Its tension is above what its strength permits."
-		case e != nil && e.LoadRatio.Value > e.OverloadAbove:
-			return "It carries about " + percent(&e.LoadRatio) + " of the load that it was designed for."
-		case e != nil && e.Ratio != nil && e.Ratio.Value > 1:
-			return "It carries about " + percent(e.Ratio) + " of the tension that it should have today."
-		}
-		return "It may carry more than its strength permits; the loads have not been looked at."
-	case tension.OffDesign:
-		return "It does not hang as designed. Either it has become longer or shorter, or something hangs on it that is not on file: the loads must be looked at."
-	case tension.AsDesigned:
-		if a.Load.Record == "not checked" {
-			return "It hangs as designed, if nothing hangs on it that is not on file."
-		}
-		return "It hangs as designed."
-	case tension.Undecided:
-		return "The survey is too coarse to say."
-	}
-	return "There is no design to hold it against."
 }
 
 func fileViewOf(f SurveyFile) fileView {

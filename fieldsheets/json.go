@@ -8,6 +8,7 @@ import (
 	"math"
 	"reflect"
 	"slices"
+	"strings"
 )
 
 //go:embed schema/assess.schema.json
@@ -19,8 +20,8 @@ func Schema() []byte { return slices.Clone(schema) }
 // WriteJSON prints the report as one JSON object: SI units named in the keys, uncertain values as {"value", "u"} with the
 // standard uncertainty, full precision. A number that is not finite is an error that names its place.
 func WriteJSON(w io.Writer, r Report) error {
-	if path := notFinite(reflect.ValueOf(r), "report"); path != "" {
-		return fmt.Errorf("cannot print: %s is not a finite number", path)
+	if err := finite(r); err != nil {
+		return err
 	}
 	text, err := json.MarshalIndent(r, "", "  ")
 	if err != nil {
@@ -30,7 +31,17 @@ func WriteJSON(w io.Writer, r Report) error {
 	return err
 }
 
-// notFinite finds the first number of the printed fields that is NaN or infinite.
+// finite refuses a report that holds a NaN or an infinity, whatever it is printed as: a figure that failed must not reach
+// paper. The error names the place by its JSON keys.
+func finite(r Report) error {
+	if path := notFinite(reflect.ValueOf(r), ""); path != "" {
+		return fmt.Errorf("cannot print: %s is not a finite number", path)
+	}
+	return nil
+}
+
+// notFinite is the path of the first number that is NaN or infinite, "" when all are finite. Fields without a JSON key go by
+// their Go name.
 func notFinite(v reflect.Value, path string) string {
 	switch v.Kind() {
 	case reflect.Float64:
@@ -50,10 +61,14 @@ func notFinite(v reflect.Value, path string) string {
 	case reflect.Struct:
 		for i := range v.NumField() {
 			f := v.Type().Field(i)
-			if f.Tag.Get("json") == "-" || !f.IsExported() {
+			if !f.IsExported() {
 				continue
 			}
-			if p := notFinite(v.Field(i), path+"."+f.Name); p != "" {
+			key, _, _ := strings.Cut(f.Tag.Get("json"), ",")
+			if key == "" || key == "-" {
+				key = f.Name
+			}
+			if p := notFinite(v.Field(i), strings.TrimPrefix(path+"."+key, ".")); p != "" {
 				return p
 			}
 		}

@@ -166,8 +166,10 @@ func TestAbsentFiguresAreWords(t *testing.T) {
 	}
 	r := sampleReport()
 	r.Cables[0].Fit.RMS = math.NaN()
-	if err := WriteJSON(io.Discard, r); err == nil || !strings.Contains(err.Error(), "report.Cables[0].Fit.RMS") {
-		t.Errorf("NaN in JSON: %v", err)
+	for format, write := range printers {
+		if err := write(io.Discard, r); err == nil || !strings.Contains(err.Error(), "cables[0].fit.rms_m") {
+			t.Errorf("NaN in %s: %v", format, err)
+		}
 	}
 }
 

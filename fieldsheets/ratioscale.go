@@ -8,60 +8,78 @@ import (
 	"tautbook/tension"
 )
 
+// reading is one line of the ratio scale.
+type reading struct {
+	class, assumption string
+	ratio             tension.Quantity
+}
+
 // ratioScale shows today's tension over the expected one with its 95 % interval against the limits, and the other reading
-// beside it while that is open. Words and shapes say everything that shading does.
+// under it while that is open. Words and shapes say everything that shading does.
 func ratioScale(id string, a *tension.Assessment) template.HTML {
 	e := a.Expected
 	if e == nil || e.Ratio == nil {
 		return ""
 	}
-	type mark struct {
-		class, label string
-		q            tension.Quantity
-	}
-	marks := []mark{{"today", "if the load is as recorded", *e.Ratio}}
+	list := []reading{{"today", "if the load is as recorded", *e.Ratio}}
 	if a.Rival != nil && !a.Rival.Excluded {
-		marks = append(marks, mark{"other", "if the length is as designed", a.Rival.Ratio})
+		list = append(list, reading{"other", "if the length is as designed", a.Rival.Ratio})
 	}
-	lo, hi := math.Min(0.7, e.SlackBelow-0.15), math.Max(1.3, e.OverloadAbove+0.15)
-	for _, m := range marks {
-		lo = math.Min(lo, math.Max(m.q.Value-m.q.Expanded()-0.05, m.q.Value*0.5))
-		hi = math.Max(hi, math.Min(m.q.Value+m.q.Expanded()+0.05, m.q.Value*1.6))
-	}
-	lo = math.Max(lo, 0)
 	var s svg
-	const left, right = 20.0, pictureWidth - 20.0
-	bottom := 58 + 36*float64(len(marks))
-	x := newAxis(lo, hi, left, right, 8)
-	s.el(`<rect class="inside" x="%.1f" y="30" width="%.1f" height="%.1f"/>`, x.at(e.SlackBelow), x.at(e.OverloadAbove)-x.at(e.SlackBelow), bottom-30)
+	const left, right, top = 218.0, pictureWidth - 20.0, 30.0
+	lo, hi := ratioRange(e, list)
+	x := newAxis(lo, hi, left, right, 7)
+	bottom := top + 44*float64(len(list)) + 6
+	s.el(`<rect class="inside" x="%.1f" y="%.1f" width="%.1f" height="%.1f"/>`, x.at(e.SlackBelow), top, x.at(e.OverloadAbove)-x.at(e.SlackBelow), bottom-top)
+	s.line("zero", x.at(1), top, x.at(1), bottom)
 	for _, l := range []float64{e.SlackBelow, e.OverloadAbove} {
-		s.line("limit", x.at(l), 24, x.at(l), bottom)
+		s.line("limit", x.at(l), top-6, x.at(l), bottom)
 	}
-	s.line("zero", x.at(1), 30, x.at(1), bottom)
-	s.text("small", x.at(e.SlackBelow)-5, 22, "end", fmt.Sprintf("slack below %.2f", e.SlackBelow))
-	s.text("small", x.at(e.OverloadAbove)+5, 22, "start", fmt.Sprintf("overload above %.2f", e.OverloadAbove))
+	s.text("small", x.at(e.SlackBelow)-5, 20, "end", fmt.Sprintf("← slack below %.2f", e.SlackBelow))
+	s.text("small", x.at(e.OverloadAbove)+5, 20, "start", fmt.Sprintf("overload above %.2f →", e.OverloadAbove))
 	s.line("axis", left, bottom, right, bottom)
 	for _, t := range x.ticks() {
 		s.line("axis", t.At, bottom, t.At, bottom+4)
 		s.text("tick", t.At, bottom+17, "middle", t.Label)
 	}
-	desc := ""
-	for i, m := range marks {
-		y := 60 + 36*float64(i)
-		from, to := math.Max(x.at(m.q.Value-m.q.Expanded()), left), math.Min(x.at(m.q.Value+m.q.Expanded()), right)
-		s.line(m.class, from, y, to, y)
-		s.line(m.class, from, y-5, from, y+5)
-		s.line(m.class, to, y-5, to, y+5)
-		c := x.at(m.q.Value)
-		s.el(`<path class="%s-mark" d="M%.1f %.1fl7 7l-7 7l-7 -7Z"/>`, m.class, c, y-7)
-		label := m.label + ": " + tension.Plain.Figure(m.q)
-		anchor, tx := "start", math.Min(from, c-8)
-		if tx > (left+right)/2 {
-			anchor, tx = "end", math.Max(to, c+8)
-		}
-		s.text("small halo", tx, y-11, anchor, label)
-		desc += label + ". "
+	desc := fmt.Sprintf("Slack below %.2f, overload above %.2f.", e.SlackBelow, e.OverloadAbove)
+	for i, r := range list {
+		y := top + 25 + 44*float64(i)
+		figure := tension.Plain.Figure(r.ratio)
+		s.text("small", 0, y-5, "start", r.assumption)
+		s.text("label", 0, y+12, "start", figure)
+		r.draw(&s, x, y)
+		desc += " " + r.assumption + ": " + figure + "."
 	}
-	s.text("tick", right, bottom+32, "end", "tension today / tension expected today")
-	return s.picture(id, "Tension today against the expected one", desc, pictureWidth, bottom+40)
+	s.text("tick", right, bottom+34, "end", "tension today / tension expected today")
+	return s.picture(id, "Tension of "+clean(name(a))+" today against the expected one", desc, pictureWidth, bottom+42)
+}
+
+// ratioRange covers the limits and the intervals, but not so much of a very wide one that the limits could not be seen.
+func ratioRange(e *tension.Expected, list []reading) (lo, hi float64) {
+	lo, hi = math.Min(0.7, e.SlackBelow-0.15), math.Max(1.3, e.OverloadAbove+0.15)
+	for _, r := range list {
+		v, u := r.ratio.Value, r.ratio.Expanded()
+		lo = math.Min(lo, math.Max(v-u-0.05, v-math.Abs(v)/2))
+		hi = math.Max(hi, math.Min(v+u+0.05, v+0.6*math.Abs(v)))
+	}
+	return math.Max(lo, 0), hi
+}
+
+// draw is the interval with end bars and a diamond at the value; an end outside the scale has an arrow instead of a bar.
+func (r reading) draw(s *svg, x axis, y float64) {
+	lo, hi := r.ratio.Value-r.ratio.Expanded(), r.ratio.Value+r.ratio.Expanded()
+	s.line(r.class, x.at(math.Max(lo, x.lo)), y, x.at(math.Min(hi, x.hi)), y)
+	end := func(v, at, out float64) {
+		if v == at {
+			s.line(r.class+" end", x.at(at), y-6, x.at(at), y+6)
+			return
+		}
+		s.path(r.class+" end", [][2]float64{{x.at(at) - 7*out, y - 6}, {x.at(at), y}, {x.at(at) - 7*out, y + 6}})
+	}
+	end(lo, math.Max(lo, x.lo), -1)
+	end(hi, math.Min(hi, x.hi), 1)
+	if r.ratio.Value >= x.lo && r.ratio.Value <= x.hi {
+		s.el(`<path class="%s-mark" d="M%.1f %.1fl7 7l-7 7l-7 -7Z"/>`, r.class, x.at(r.ratio.Value), y-7)
+	}
 }

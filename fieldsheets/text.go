@@ -6,7 +6,6 @@ import (
 	"io"
 	"slices"
 	"strings"
-	"unicode/utf8"
 
 	"tautbook/tension"
 )
@@ -20,10 +19,10 @@ type TextOptions struct {
 // WriteText prints the report for a terminal: the verdicts of all cables first, then one block a cable, then how the survey
 // was understood and the cautions. No line is longer than the width, except for an unbreakable name.
 func WriteText(w io.Writer, r Report, o TextOptions) error {
-	p := &textPrinter{width: max(o.Width, 60), color: o.Color}
-	if o.Width == 0 {
-		p.width = 80
+	if err := finite(r); err != nil {
+		return err
 	}
+	p := newTextPrinter(o)
 	p.heading(r)
 	p.overview(r)
 	for i := range r.Cables {
@@ -44,6 +43,13 @@ type textPrinter struct {
 	color bool
 }
 
+func newTextPrinter(o TextOptions) *textPrinter {
+	if o.Width == 0 {
+		o.Width = 80
+	}
+	return &textPrinter{width: max(o.Width, 60), color: o.Color}
+}
+
 func (p *textPrinter) line(format string, args ...any) {
 	fmt.Fprintf(&p.out, format, args...)
 	p.out.WriteByte('\n')
@@ -51,8 +57,13 @@ func (p *textPrinter) line(format string, args ...any) {
 
 // title is an underlined heading after a blank line.
 func (p *textPrinter) title(s string) {
-	p.line("\n%s", p.strong(s))
-	p.line("%s", strings.Repeat("-", min(utf8.RuneCountInString(s), p.width)))
+	p.line("")
+	wide := 0
+	for _, l := range p.broken("", s) {
+		p.line("%s", p.strong(l))
+		wide = max(wide, columns(l))
+	}
+	p.line("%s", strings.Repeat("-", min(wide, p.width)))
 }
 
 func (p *textPrinter) strong(s string) string {
@@ -75,12 +86,18 @@ func (p *textPrinter) verdict(v tension.Verdict, width int) string {
 
 // wrapped prints text after a lead, broken between words; later lines are indented by the lead's width.
 func (p *textPrinter) wrapped(lead, text string) {
-	indent := strings.Repeat(" ", utf8.RuneCountInString(lead))
+	for _, l := range p.broken(lead, text) {
+		p.line("%s", l)
+	}
+}
+
+func (p *textPrinter) broken(lead, text string) (out []string) {
+	indent := strings.Repeat(" ", columns(lead))
 	line := lead
 	empty := true
 	for _, word := range words(text) {
-		if !empty && utf8.RuneCountInString(line)+1+utf8.RuneCountInString(word) > p.width {
-			p.line("%s", line)
+		if !empty && columns(line)+1+columns(word) > p.width {
+			out = append(out, line)
 			line, empty = indent, true
 		}
 		if !empty {
@@ -89,7 +106,7 @@ func (p *textPrinter) wrapped(lead, text string) {
 		line += word
 		empty = false
 	}
-	p.line("%s", strings.TrimRight(line, " "))
+	return append(out, strings.TrimRight(line, " "))
 }
 
 // words parts a text at blanks but keeps a number and its unit or uncertainty together.
@@ -113,7 +130,9 @@ func endsInDigit(s string) bool { return s != "" && s[len(s)-1] >= '0' && s[len(
 
 func (p *textPrinter) heading(r Report) {
 	v := r.Visit
-	p.line("%s", p.strong("CONDITION SUMMARY"+prefixed(": ", clean(v.Structure))))
+	for _, l := range p.broken("", "CONDITION SUMMARY"+prefixed(": ", clean(v.Structure))) {
+		p.line("%s", p.strong(l))
+	}
 	parts := []string{}
 	for _, s := range visitRows(v) {
 		parts = append(parts, s.Label+" "+s.Value)
@@ -131,32 +150,50 @@ func prefixed(lead, s string) string {
 	return lead + s
 }
 
-// overview is one line a cable: verdict, tension, expected, ratio.
+// widestName is the room for a cable's name in the overview; a longer one has a line of its own.
+const widestName = 22
+
+// overview is one line a cable: verdict, tension, expected, ratio. Each column of forces has one unit, so that the eye can
+// compare down the column.
 func (p *textPrinter) overview(r Report) {
 	p.line("")
-	wide := 10
-	for i := range r.Cables {
-		wide = max(wide, min(utf8.RuneCountInString(clean(name(&r.Cables[i]))), 22))
+	if len(r.Cables) == 0 {
+		p.line("No cable was assessed.")
+		return
 	}
-	p.line("%-*s  %-11s  %-18s  %-18s  %s", wide, "cable", "verdict", "H today", "H expected", "ratio")
+	wide := 10
+	var today, expected []*tension.Quantity
 	for i := range r.Cables {
 		a := &r.Cables[i]
-		h, e, ratio := "?", "-", "-"
-		switch {
-		case a.HorizontalTension != nil:
-			h = force(*a.HorizontalTension)
-		case a.HorizontalTensionAtLeast != nil:
-			h = "over " + forceExact(*a.HorizontalTensionAtLeast)
+		if n := columns(clean(name(a))); n <= widestName {
+			wide = max(wide, n)
+		}
+		today = append(today, a.HorizontalTension)
+		if v := a.HorizontalTensionAtLeast; v != nil {
+			today = append(today, &tension.Quantity{Value: *v})
 		}
 		if a.Expected != nil {
-			e = force(a.Expected.HorizontalTension)
-			ratio = or(a.Expected.Ratio, func(q tension.Quantity) string { return fmt.Sprintf("%.2f", q.Value) }, "?")
+			expected = append(expected, &a.Expected.HorizontalTension)
 		}
-		label := []rune(clean(name(a)))
-		if len(label) > wide {
-			label = append(label[:wide-1], '…')
+	}
+	hToday, hExpected := forceColumn(today...), forceColumn(expected...)
+	p.line("%s  %-11s  %-18s  %-18s  %s", padded("cable", wide), "verdict", "H today", "H expected", "ratio")
+	for i := range r.Cables {
+		a := &r.Cables[i]
+		h, e, ratio := or(a.HorizontalTension, hToday, notKnown), "no design", "no design"
+		if v := a.HorizontalTensionAtLeast; v != nil && a.HorizontalTension == nil {
+			h = "over " + hToday(tension.Quantity{Value: *v})
 		}
-		p.line("%-*s  %s  %-18s  %-18s  %s", wide, string(label), p.verdict(a.Verdict, 11), h, e, ratio)
+		if a.Expected != nil {
+			e = hExpected(a.Expected.HorizontalTension)
+			ratio = or(a.Expected.Ratio, func(q tension.Quantity) string { return fmt.Sprintf("%.2f", q.Value) }, "too flat")
+		}
+		label := clean(name(a))
+		if columns(label) > wide {
+			p.wrapped("", label)
+			label = ""
+		}
+		p.line("%s  %s  %-18s  %-18s  %s", padded(label, wide), p.verdict(a.Verdict, 11), h, e, ratio)
 	}
 }
 
@@ -169,6 +206,7 @@ func (p *textPrinter) cable(a *tension.Assessment) {
 			p.wrapped(fmt.Sprintf("%-6s", strings.ToUpper(string(f.Level))), cleanSentence(f.Text))
 		}
 	}
+	p.grid(readings(a))
 	for _, g := range groups(a) {
 		p.line("\n  %s", g.Title)
 		for _, r := range g.Rows {
@@ -188,6 +226,25 @@ func (p *textPrinter) cable(a *tension.Assessment) {
 	}
 }
 
+func (p *textPrinter) grid(g *grid) {
+	if g == nil {
+		return
+	}
+	wide := (p.width - 4 - 17) / len(g.Columns)
+	print := func(label string, cells []string) {
+		l := "    " + padded(label, 17)
+		for _, c := range cells {
+			l += padded(c, wide)
+		}
+		p.line("%s", strings.TrimRight(l, " "))
+	}
+	p.line("\n  %s", g.Title)
+	print("", g.Columns)
+	for _, r := range g.Rows {
+		print(r.Label, r.Cells)
+	}
+}
+
 // sorted are the findings with the heaviest first.
 func sorted(findings []tension.Finding) []tension.Finding {
 	rank := map[tension.Level]int{tension.Act: 0, tension.Look: 1, tension.Note: 2}
@@ -196,17 +253,27 @@ func sorted(findings []tension.Finding) []tension.Finding {
 	return out
 }
 
+// budget lists the inputs that matter; those under a hundredth of the variance are one line.
 func (p *textPrinter) budget(a *tension.Assessment) {
 	if len(a.Budget) == 0 {
 		return
 	}
 	p.line("\n  What the uncertainty comes from (standard uncertainties)")
-	p.line("    %-32s %-16s %-16s %s", "input", "value", "u", "share")
-	for _, b := range a.Budget {
-		label := []rune(clean(b.Input))
-		if len(label) > 32 {
-			label = append(label[:31], '…')
+	p.line("    %-32s %-16s %-14s %s", "input", "value", "u", "share")
+	var small []string
+	for i, b := range a.Budget {
+		if i > 0 && b.Share < 0.005 {
+			small = append(small, clean(b.Input))
+			continue
 		}
-		p.line("    %-32s %-16s %-16s %3.0f %%", string(label), b.Value, b.U, 100*b.Share)
+		lead, rest := "    "+padded(clean(b.Input), 32)+" ", fmt.Sprintf("%-16s %-14s %3.0f %%", b.Value, b.U, 100*b.Share)
+		if columns(lead+rest) > p.width {
+			p.wrapped("    ", clean(b.Input))
+			lead = strings.Repeat(" ", 37)
+		}
+		p.line("%s%s", lead, rest)
+	}
+	if len(small) > 0 {
+		p.wrapped("    ", "under 1 % each: "+strings.Join(small, "; "))
 	}
 }

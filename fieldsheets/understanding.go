@@ -12,10 +12,7 @@ import (
 // WriteUnderstanding says how surveys were understood, and nothing that was computed from them: encoding, columns, units,
 // codes and what they map to, guesses with the flag that changes each, and what looks odd.
 func WriteUnderstanding(w io.Writer, files []SurveyFile, spans []SpanCount, o TextOptions) error {
-	p := &textPrinter{width: max(o.Width, 60), color: o.Color}
-	if o.Width == 0 {
-		p.width = 80
-	}
+	p := newTextPrinter(o)
 	for _, f := range files {
 		p.file(f)
 		p.conditions(f)

@@ -1,0 +1,77 @@
+package fieldsheets
+
+import "tautbook/tension"
+
+// grid is a small table: one column a reading of the cable, one row a figure.
+type grid struct {
+	Title   string
+	Columns []string
+	Rows    []gridRow
+}
+
+type gridRow struct {
+	Label string
+	Cells []string
+}
+
+const (
+	notKnown      = "not determined"
+	notApplicable = "not worked out"
+)
+
+// readings puts the two readings of the measured shape beside the designed cable, nil when there is no design to put beside.
+// Each holds the sag of the points; they differ in what they take as given, so the reader sees what follows from which.
+func readings(a *tension.Assessment) *grid {
+	e := a.Expected
+	if e == nil {
+		return nil
+	}
+	g := &grid{Title: "The readings side by side", Columns: []string{"load as recorded", "designed, today", "length as designed"}}
+	one := func(q *tension.Quantity, print func(tension.Quantity) string) string { return or(q, print, notKnown) }
+	var implied, use *tension.Quantity
+	if a.ImpliedLoad != nil {
+		implied = a.ImpliedLoad.IfLengthAsDesigned
+	}
+	var rivalH, rivalRatio, rivalUse *tension.Quantity
+	if v := a.Rival; v != nil {
+		rivalH, rivalRatio = &v.HorizontalTension, &v.Ratio
+	}
+	if s := a.Strength; s != nil {
+		use, rivalUse = &s.Use, s.RivalUse
+	}
+	hanging := notKnown
+	if a.Load.Hanging.Value > 0 {
+		hanging = tension.NewtonPerMetre.Figure(a.Load.Hanging)
+	}
+	kilo := forceColumn(a.HorizontalTension, &e.HorizontalTension, rivalH)
+	measured := length(e.MeasuredSagMid)
+	standing := []string{"open", "for comparison", "open"}
+	switch {
+	case a.Rival == nil:
+		standing = []string{"taken", "for comparison", notKnown}
+	case a.Rival.Excluded:
+		standing = []string{"taken", "for comparison", "EXCLUDED"}
+	}
+	g.Rows = []gridRow{
+		{"this reading is", standing},
+		{"H", []string{one(a.HorizontalTension, kilo), kilo(e.HorizontalTension), one(rivalH, kilo)}},
+		{"H / expected", []string{one(e.Ratio, tension.Plain.Figure), "1", one(rivalRatio, tension.Plain.Figure)}},
+		{"load as it hangs", []string{hanging, "as recorded", one(implied, tension.NewtonPerMetre.Figure)}},
+		{"sag at mid-span", []string{measured, length(e.SagMid), measured}},
+	}
+	if a.Strength != nil {
+		g.Rows = append(g.Rows, gridRow{"strength use", []string{one(use, tension.Percent.Figure), notApplicable, one(rivalUse, tension.Percent.Figure)}})
+	}
+	return g
+}
+
+// forceColumn prints forces that stand side by side in one unit, that of the largest.
+func forceColumn(forces ...*tension.Quantity) func(tension.Quantity) string {
+	most := 0.0
+	for _, q := range forces {
+		if q != nil {
+			most = max(most, q.Value, -q.Value)
+		}
+	}
+	return tension.ForceScale(most).Figure
+}
