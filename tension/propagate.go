@@ -2,10 +2,10 @@ package tension
 
 import "math"
 
-// probe is the length of the step, in standard deviations, of the central differences that propagate uncertainty: small
-// enough that curvature of the chain does not matter (its error grows with the square), large enough that rounding of
-// the state solver does not either.
-const probe = 0.1
+// probe is the length of the step, in standard deviations, of the differences that propagate uncertainty: so small that the
+// curvature of the chain over it does not matter (a thousandth of the nonlinearity over one standard deviation), so large
+// that the rounding of the state solver, 1e-12 of a figure, does not either.
+const probe = 1.0 / 256
 
 // propagated are the outputs with the effect of every source on each of them (JCGM 100:2008, 5.1.3 and 5.2, with the
 // correlated survey block split into independent directions).
@@ -24,20 +24,20 @@ func (in *inputs) propagate() propagated {
 	for i, s := range in.sources {
 		p.effect[i] = make([]outputs, len(s.directions))
 		for j, d := range s.directions {
-			up := in.moved(x, d, probe)
-			down := in.moved(x, d, -probe)
-			for k := range up {
-				p.effect[i][j][k] = (up[k] - down[k]) / (2 * probe)
+			moved := in.moved(x, d)
+			for k := range moved {
+				p.effect[i][j][k] = (moved[k] - p.y[k]) / probe
 			}
 		}
 	}
 	return p
 }
 
-func (in *inputs) moved(x []float64, d []step, by float64) outputs {
+// moved is the chain with the inputs of one direction moved by the probe; x is work space.
+func (in *inputs) moved(x []float64, d []step) outputs {
 	copy(x, in.x)
 	for _, s := range d {
-		x[s.at] += by * s.by
+		x[s.at] += probe * s.by
 	}
 	y, _ := in.evaluate(x)
 	return y
