@@ -37,9 +37,10 @@ type SpanCount struct {
 
 // SpanCounts lists the spans of a survey.
 func SpanCounts(sv *survey.Survey, designs []survey.Design) (out []SpanCount) {
+	index := survey.IndexDesigns(designs)
 	for _, sp := range sv.Spans {
 		c := SpanCount{File: sv.File, Cable: sp.Cable, Span: sp.Span, Points: len(sp.Points), A: sp.A != nil, B: sp.B != nil,
-			Design: survey.DesignOf(designs, sv.Conditions.Structure, sp.Cable, sp.Span) != nil}
+			Design: index.Of(sv.Conditions.Structure, sp.Cable, sp.Span) != nil}
 		lo, hi := [3]float64{}, [3]float64{}
 		for i, q := range sp.Points {
 			for k, v := range [3]float64{q.E, q.N, q.Z} {

@@ -64,7 +64,8 @@ var plainWords = map[string]Role{"CP": Control, "CTRL": Control, "CONTROL": Cont
 type resolver struct {
 	rules    map[string]CodeRule
 	known    []Design
-	cable    string // --cable
+	byName   map[string][]int // places in known by cable and span, and by cable, in plain spelling
+	cable    string           // --cable
 	span     string
 	hasCodes bool
 	cache    map[string]*CodeUse
@@ -75,6 +76,14 @@ type resolver struct {
 
 func newResolver(o PointOptions, hasCodes bool) *resolver {
 	r := &resolver{rules: map[string]CodeRule{}, known: o.Known, cable: o.Cable, span: o.Span, hasCodes: hasCodes, cache: map[string]*CodeUse{}, problems: map[string]Problem{}}
+	r.byName = map[string][]int{}
+	for i, d := range o.Known {
+		whole, cable := plain(d.Cable, d.Span), plain(d.Cable)
+		r.byName[whole] = append(r.byName[whole], i)
+		if cable != whole {
+			r.byName[cable] = append(r.byName[cable], i)
+		}
+	}
 	for _, c := range o.Codes {
 		r.rules[strings.ToLower(c.Code)] = c
 	}
@@ -153,18 +162,14 @@ func (r *resolver) spelled(cable string) string {
 
 // fromKnown finds a code among the ids of the cables file; what it does not know is set aside, with the nearest id named.
 func (r *resolver) fromKnown(code string, rest []string, role Role) *CodeUse {
-	plain := func(parts ...string) string {
-		return strings.ToLower(strings.Join(strings.FieldsFunc(strings.Join(parts, " "), func(c rune) bool { return unicode.IsSpace(c) || strings.ContainsRune("/:;,|", c) }), " "))
-	}
 	whole := plain(rest...)
 	var same []Design
-	for _, d := range r.known {
-		switch whole {
-		case plain(d.Cable, d.Span):
+	for _, i := range r.byName[whole] {
+		d := r.known[i]
+		if whole == plain(d.Cable, d.Span) {
 			return &CodeUse{Role: role, Cable: d.Cable, Span: d.Span, How: "id in the cables file"}
-		case plain(d.Cable):
-			same = append(same, d)
 		}
+		same = append(same, d)
 	}
 	switch {
 	case len(same) == 1:
@@ -176,15 +181,19 @@ func (r *resolver) fromKnown(code string, rest []string, role Role) *CodeUse {
 	case len(rest) == 0 && len(r.known) == 1:
 		return &CodeUse{Role: role, Cable: r.known[0].Cable, Span: r.known[0].Span, How: "support of the only span in the cables file"}
 	case plain(code) != whole: // an id may itself end in A or B
-		for _, d := range r.known {
-			if plain(code) == plain(d.Cable) {
-				return &CodeUse{Role: OnCable, Cable: d.Cable, Span: d.Span, How: "id in the cables file"}
-			}
+		for _, i := range r.byName[plain(code)] {
+			d := r.known[i]
+			return &CodeUse{Role: OnCable, Cable: d.Cable, Span: d.Span, How: "id in the cables file"}
 		}
 	}
 	near := r.nearest(whole)
 	r.notices = append(r.notices, fmt.Sprintf("code %s is not in the cables file: its points are set aside. Nearest id: %s; --code %q says what it is", quote(code), quote(near), code+"="+near))
 	return &CodeUse{Role: Ignored, How: "not in the cables file; --code changes it"}
+}
+
+// plain is a code or an id without what spelling varies.
+func plain(parts ...string) string {
+	return strings.ToLower(strings.Join(strings.FieldsFunc(strings.Join(parts, " "), func(c rune) bool { return unicode.IsSpace(c) || strings.ContainsRune("/:;,|", c) }), " "))
 }
 
 // nearest is the known cable id with the least edit distance.

@@ -181,12 +181,34 @@ func OfStructure(designs []Design, structure string) []Design {
 	return unnamed
 }
 
-// DesignOf is the design of a span of a structure, nil when there is none.
-func DesignOf(designs []Design, structure, cable, span string) *Design {
-	for _, d := range OfStructure(designs, structure) {
-		if strings.EqualFold(d.Cable, cable) && strings.EqualFold(d.Span, span) {
-			return &d
+// DesignIndex finds designs by structure, cable and span.
+type DesignIndex struct {
+	byKey map[[3]string]*Design
+}
+
+// IndexDesigns makes an index; the designs must not move while it is used.
+func IndexDesigns(designs []Design) DesignIndex {
+	x := DesignIndex{byKey: make(map[[3]string]*Design, 2*len(designs))}
+	for i := range designs {
+		d := &designs[i]
+		cable, span := strings.ToLower(d.Cable), strings.ToLower(d.Span)
+		x.byKey[[3]string{strings.ToLower(d.Structure), cable, span}] = d
+		// a survey that does not name its structure means the only one that has the cable: readers refuse it otherwise
+		if _, taken := x.byKey[[3]string{"", cable, span}]; !taken {
+			x.byKey[[3]string{"", cable, span}] = d
 		}
+	}
+	return x
+}
+
+// Of is the design of a span of a structure, nil when there is none. A cables file that names no structures is for any.
+func (x DesignIndex) Of(structure, cable, span string) *Design {
+	cable, span = strings.ToLower(cable), strings.ToLower(span)
+	if d := x.byKey[[3]string{strings.ToLower(structure), cable, span}]; d != nil {
+		return d
+	}
+	if d := x.byKey[[3]string{"", cable, span}]; d != nil && d.Structure == "" {
+		return d
 	}
 	return nil
 }

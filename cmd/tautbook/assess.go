@@ -134,9 +134,10 @@ func (o *assessOptions) plainLoad() (*survey.Design, error) {
 
 // casesOf pairs every surveyed span with its design values.
 func casesOf(in input, plain *survey.Design, opts fit.Options) (cases []tension.Case) {
+	index := survey.IndexDesigns(in.designs)
 	for _, sv := range in.surveys {
 		for _, sp := range sv.Spans {
-			d := survey.DesignOf(in.designs, sv.Conditions.Structure, sp.Cable, sp.Span)
+			d := index.Of(sv.Conditions.Structure, sp.Cable, sp.Span)
 			if d == nil {
 				d = plain
 			}
