@@ -40,6 +40,9 @@ func (p *PointReader) collect() (*Survey, error) {
 	for _, l := range sv.UnmatchedLoads() {
 		p.problems.add(Problem{File: p.opts.Name, Column: "load", Found: l.Cable, Expected: "a load on a cable of this survey", Mend: "write the cable as in the codes: " + strings.Join(cableNames(sv), ", ")})
 	}
+	for _, r := range sv.UnmatchedReadings() {
+		p.problems.add(Problem{File: p.opts.Name, Column: "reading", Found: r.Cable, Expected: "a reading on a cable of this survey", Mend: "write the cable as in the codes: " + strings.Join(cableNames(sv), ", ")})
+	}
 	if problem, ok := s.resolver.problems[""]; ok {
 		s.problem(0, "", problem.Found, problem.Expected, problem.Mend)
 	}

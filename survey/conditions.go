@@ -7,7 +7,7 @@ import (
 )
 
 // conditionKeys are the keys that a "# key: value" line of a survey file may have.
-var conditionKeys = map[string]bool{"structure": true, "date": true, "temperature": true, "cable temperature": true, "wind": true, "loads": true, "load": true,
+var conditionKeys = map[string]bool{"structure": true, "date": true, "temperature": true, "cable temperature": true, "wind": true, "loads": true, "load": true, "reading": true,
 	"instrument": true, "accuracy": true, "crew": true, "unit": true, "units": true, "cable": true, "span": true, "note": true}
 
 // Set gives one condition by its key, as it stands in a survey file or a flag:
@@ -17,6 +17,7 @@ var conditionKeys = map[string]bool{"structure": true, "date": true, "temperatur
 //	temperature   of the cable: 12 +- 2 degC
 //	loads         as filed | listed | not checked
 //	load          CABLE[/SPAN]; 180 +- 10 N/m; along cable | along deck; what it is   (may be given several times)
+//	reading       CABLE[/SPAN]; tension at A | tension at B | horizontal tension; 30.7 +- 0.5 kN; load cell   (one a span)
 //	accuracy      standard deviation of a point: 3 mm, or horizontal 3 mm, vertical 2 mm
 //	unit          of coordinates
 //	cable, span   that all points of the file are on
@@ -66,8 +67,10 @@ func (c *Conditions) Set(key, value string) error {
 		return c.setLoads(value)
 	case "load":
 		return c.addLoad(value)
+	case "reading":
+		return c.addReading(value)
 	}
-	return wrong(key, "structure, date, temperature, wind, loads, load, instrument, accuracy, crew, unit, cable, span or note", "")
+	return wrong(key, "structure, date, temperature, wind, loads, load, reading, instrument, accuracy, crew, unit, cable, span or note", "")
 }
 
 func words(into *string, value string, again bool, key string) error {
@@ -192,6 +195,48 @@ func (c *Conditions) addLoad(value string) error {
 	}
 	c.Loads = LoadsListed
 	c.Listed = append(c.Listed, l)
+	return nil
+}
+
+// addReading reads one direct reading of tension.
+func (c *Conditions) addReading(value string) error {
+	parts := strings.SplitN(value, ";", 4)
+	for i := range parts {
+		parts[i] = strings.TrimSpace(parts[i])
+	}
+	const form = "CABLE; tension at A (or tension at B, horizontal tension); 30.7 +- 0.5 kN; what read it"
+	if len(parts) < 3 {
+		return wrong(value, form, "")
+	}
+	r := Reading{Cable: parts[0], Of: ReadOf(strings.ReplaceAll(strings.ReplaceAll(strings.ToLower(parts[1]), "at a", "at A"), "at b", "at B"))}
+	if r.Cable == "*" {
+		r.Cable = ""
+	}
+	if cable, span, ok := strings.Cut(r.Cable, "/"); ok {
+		r.Cable, r.Span = strings.TrimSpace(cable), strings.TrimSpace(span)
+	}
+	switch r.Of {
+	case HorizontalTension, TensionAtA, TensionAtB:
+	default:
+		return wrong(parts[1], "tension at A, tension at B or horizontal tension in the second place: "+form, "")
+	}
+	q, err := ParseQuantity(parts[2], Force)
+	if err != nil {
+		return err
+	}
+	if !(q.Value > 0) || !(q.U > 0) {
+		return wrong(parts[2], "a tension above 0 with its standard uncertainty", "write for example \"30.7 +- 0.5 kN\"")
+	}
+	r.Value = q
+	if len(parts) == 4 {
+		r.How = parts[3]
+	}
+	for _, other := range c.Readings {
+		if other.On(r.Cable, r.Span) || r.On(other.Cable, other.Span) {
+			return wrong(value, "one reading a span", "keep the better one, or their mean")
+		}
+	}
+	c.Readings = append(c.Readings, r)
 	return nil
 }
 

@@ -100,6 +100,20 @@ next:
 	return out
 }
 
+// UnmatchedReadings are the direct readings that are of no span of the survey.
+func (sv *Survey) UnmatchedReadings() (out []Reading) {
+next:
+	for _, r := range sv.Conditions.Readings {
+		for _, sp := range sv.Spans {
+			if r.On(sp.Cable, sp.Span) {
+				continue next
+			}
+		}
+		out = append(out, r)
+	}
+	return out
+}
+
 // On reports whether the load concerns a span.
 func (l ListedLoad) On(cable, span string) bool {
 	return (l.Cable == "" || strings.EqualFold(l.Cable, cable)) && (l.Span == "" || strings.EqualFold(l.Span, span))
@@ -140,6 +154,29 @@ type ListedLoad struct {
 	What        string // free text, for example "service pipe"
 }
 
+// ReadOf says what a direct reading of tension is of.
+type ReadOf string
+
+// What can be read directly.
+const (
+	HorizontalTension ReadOf = "horizontal tension"
+	TensionAtA        ReadOf = "tension at A" // along the cable at support A
+	TensionAtB        ReadOf = "tension at B"
+)
+
+// Reading is a tension read directly on the day: a load cell, a jack lift-off.
+type Reading struct {
+	Cable, Span string // "" = the only span of the survey
+	Of          ReadOf
+	Value       Quantity // N, with its standard uncertainty
+	How         string   // free text, for example "load cell 3"
+}
+
+// On reports whether the reading is of a span.
+func (r Reading) On(cable, span string) bool {
+	return (r.Cable == "" || strings.EqualFold(r.Cable, cable)) && (r.Span == "" || strings.EqualFold(r.Span, span))
+}
+
 // Accuracy is the instrument's stated standard deviation of one point, m.
 type Accuracy struct {
 	Horizontal float64 // each of E and N
@@ -154,6 +191,7 @@ type Conditions struct {
 	Wind             string
 	Loads            LoadStatus // "" means not stated, which counts as LoadsNotChecked
 	Listed           []ListedLoad
+	Readings         []Reading
 	Instrument       string
 	Accuracy         *Accuracy
 	Crew             string

@@ -66,6 +66,16 @@ func (c Case) listedHere() (out []survey.ListedLoad) {
 	return out
 }
 
+// readingHere is the direct reading of this span.
+func (c Case) readingHere() *survey.Reading {
+	for i, r := range c.Conditions.Readings {
+		if r.On(c.Points.Cable, c.Points.Span) {
+			return &c.Conditions.Readings[i]
+		}
+	}
+	return nil
+}
+
 // shapeFor is the shape under the load on the day: a catenary when nothing says otherwise.
 func shapeFor(d *survey.Design, listed []survey.ListedLoad) (fit.Shape, float64) {
 	var own, deck float64
@@ -106,6 +116,8 @@ func (c Case) judgement(r *fit.Result, listed []survey.ListedLoad) *judgement {
 		temperature = &Quantity{Value: c.Design.Temperature.Value, U: unknownTemperatureU}
 	}
 	j.in = gather(r, c.Design, temperature, listed)
+	j.reading = c.readingHere()
+	j.in.read(j.reading)
 	j.p = j.in.propagate()
 	j.a = Assessment{Cable: c.Points.Cable, Span: c.Points.Span, SurveyFile: c.File, Structure: c.Conditions.Structure,
 		Temperature: c.Conditions.CableTemperature}
@@ -122,6 +134,7 @@ type judgement struct {
 	d                  *survey.Design
 	record             survey.LoadStatus
 	temperatureAssumed bool
+	reading            *survey.Reading // direct reading of this span, nil when there is none
 	in                 *inputs
 	p                  propagated
 	a                  Assessment

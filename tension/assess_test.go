@@ -1,6 +1,7 @@
 package tension
 
 import (
+	"math"
 	"math/rand/v2"
 	"testing"
 
@@ -80,5 +81,40 @@ func TestFlatCableGivesABound(t *testing.T) {
 	}
 	if *a.HorizontalTensionAtLeast > s.truth(t).H || a.Verdict != Undecided || a.NextStep == "" {
 		t.Errorf("bound %.0f N, true %.0f N, verdict %s", *a.HorizontalTensionAtLeast, s.truth(t).H, a.Verdict)
+	}
+}
+
+// A load cell tells the two readings of one shape apart: the slipped cable is slack, the loaded one overloaded, with nobody having
+// looked at the loads; and it catches a wrong record.
+func TestDirectReadingTellsTheReadingsApart(t *testing.T) {
+	for _, c := range []struct {
+		name        string
+		slip, extra float64
+		record      survey.LoadStatus
+		u           float64 // of the load cell, relative
+		want        Verdict
+	}{
+		{"slipped", 0.08, 0, survey.LoadsNotChecked, 0.02, Slack},
+		{"loaded", 0, 0.8, survey.LoadsNotChecked, 0.05, Overload},
+		{"slipped and loaded to the same tension", 0.2, 0.9, survey.LoadsNotChecked, 0.02, Overload},
+		{"as designed", 0, 0, survey.LoadsNotChecked, 0.02, AsDesigned},
+		{"loaded, recorded as filed", 0, 0.8, survey.LoadsAsFiled, 0.02, Overload},
+		{"slipped and a little loaded, recorded as filed", 0.06, 0.18, survey.LoadsAsFiled, 0.01, OffDesign},
+	} {
+		s := footbridge()
+		s.slip, s.extra = c.slip, c.extra
+		st := s.truth(t)
+		cond := s.conditions(c.record, 1)
+		cond.Readings = []survey.Reading{{Of: survey.TensionAtB, Value: survey.Quantity{Value: st.TensionB(), U: c.u * st.TensionB()}, How: "load cell"}}
+		a := s.assess(t, rand.New(rand.NewPCG(8, 3)), cond)
+		if a.Verdict != c.want {
+			t.Errorf("%s: %s (%s), want %s", c.name, a.Verdict, a.Reason, c.want)
+		}
+		if d := a.Direct; d == nil || math.Abs(d.HorizontalTension.Value/st.H-1) > 1e-3 || math.Abs(d.LoadFactor.Value-(1+c.extra)) > 0.01 {
+			t.Errorf("%s: direct reading %+v, true H %.0f N, load %.2f", c.name, a.Direct, st.H, 1+c.extra)
+		}
+		if a.Reason == "" || a.NextStep == "" {
+			t.Errorf("%s: no reason or next step", c.name)
+		}
 	}
 }

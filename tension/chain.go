@@ -49,6 +49,10 @@ const (
 	outGreatestT
 	outUse
 	outRivalUse
+	outHRead      // from the direct reading
+	outReadRatio  // to the expected tension under the filed load
+	outReadFactor // load that the reading implies / load on record
+	outReadUse
 	outCount
 )
 
@@ -90,6 +94,7 @@ func (in *inputs) evaluate(x []float64) (y outputs, lacks []lack) {
 		lacks = append(lacks, lack{"expected tension", err.Error()})
 	}
 	in.rival(&y, x, c, day, ch, dt)
+	y[outReadRatio] = y[outHRead] / y[outHFiled]
 	in.strength(&y, x)
 	return y, lacks
 }
@@ -153,6 +158,11 @@ func (in *inputs) statics(y *outputs, c fit.Curve, x []float64, l carried) {
 	y[outVerticalA], y[outVerticalB] = -h*ta, h*tb
 	y[outTensionA], y[outTensionB] = h*math.Hypot(1, ta), h*math.Hypot(1, tb)
 	y[outGreatestT] = math.Max(y[outTensionA], y[outTensionB])
+	if in.have[inReading] {
+		per := map[survey.ReadOf]float64{survey.HorizontalTension: 1, survey.TensionAtA: math.Hypot(1, ta), survey.TensionAtB: math.Hypot(1, tb)}[in.readOf]
+		y[outHRead] = x[inReading] / per
+		y[outReadFactor] = y[outHRead] / h
+	}
 	in.strength(y, x)
 }
 
@@ -162,8 +172,10 @@ func (in *inputs) strength(y *outputs, x []float64) {
 		return
 	}
 	y[outUse] = y[outGreatestT] / x[inBreaking]
-	if h := y[outHRival]; !math.IsNaN(h) {
-		y[outRivalUse] = y[outGreatestT] / y[outH] * h / x[inBreaking]
+	for use, tension := range map[int]int{outRivalUse: outHRival, outReadUse: outHRead} {
+		if h := y[tension]; !math.IsNaN(h) {
+			y[use] = y[outGreatestT] / y[outH] * h / x[inBreaking]
+		}
 	}
 }
 

@@ -34,6 +34,7 @@ func (j *judgement) compare() {
 	p := &j.p
 	j.strength()
 	if !p.known(outInverse) {
+		j.directReading()
 		return
 	}
 	low, high, from := j.limits()
@@ -64,6 +65,7 @@ func (j *judgement) compare() {
 	}
 	j.a.AtDesignTemperature = p.quantity(outHReference)
 	j.rivalReading(low, high)
+	j.directReading()
 	j.a.Stiffness = j.stiffness()
 }
 
@@ -115,11 +117,34 @@ func (j *judgement) rivalReading(low, high float64) {
 	j.a.Rival = v
 }
 
+// directReading holds a tension that was read on the day against the two readings of the shape.
+func (j *judgement) directReading() {
+	p := &j.p
+	if j.reading == nil || !p.known(outHRead) || j.a.HorizontalTension == nil {
+		return
+	}
+	d := &Direct{Of: string(j.reading.Of), How: j.reading.How, HorizontalTension: p.must(outHRead), LoadFactor: p.must(outReadFactor), Ratio: p.quantity(outReadRatio)}
+	d.Load = Quantity{Value: d.LoadFactor.Value * p.y[outHanging], U: d.LoadFactor.U * p.y[outHanging]}
+	d.OffRecord = (p.y[outHRead] - p.y[outH]) / p.uDifference(outHRead, outH)
+	if p.known(outHRival) {
+		off := (p.y[outHRead] - p.y[outHRival]) / p.uDifference(outHRead, outHRival)
+		d.OffLength = &off
+	}
+	j.a.Direct = d
+	if v := j.a.Rival; v != nil && !v.Excluded && d.OffLength != nil && math.Abs(*d.OffLength) > apart && math.Abs(d.OffRecord) < apart {
+		v.Excluded, v.ExcludedBy = true, "the direct reading"
+	}
+}
+
+// apart is the number of standard uncertainties from which two figures count as different: 95 % two-sided.
+const apart = 1.96
+
 // decide puts the evidence together.
 func (j *judgement) decide() {
 	e := evidence{record: j.record, pSlack: math.NaN(), pInside: math.NaN(), pOver: math.NaN(), pLoadOver: math.NaN(),
 		pRivalLess: math.NaN(), pRivalMore: math.NaN(), pStrength: math.NaN(), pRivalUseOver: math.NaN()}
 	e.unfit = j.unfit() != ""
+	j.readEvidence(&e)
 	if x := j.a.Expected; x != nil {
 		e.compared = true
 		e.pSlack, e.pInside, e.pOver = x.PSlack, x.PInside, x.POverload
@@ -136,6 +161,27 @@ func (j *judgement) decide() {
 		}
 	}
 	j.a.Verdict, j.ground = decide(e)
+}
+
+// readEvidence adds what a direct reading says.
+func (j *judgement) readEvidence(e *evidence) {
+	d := j.a.Direct
+	e.pReadSlack, e.pReadInside, e.pReadOver, e.pReadLoad, e.pReadUse = math.NaN(), math.NaN(), math.NaN(), math.NaN(), math.NaN()
+	if d == nil {
+		return
+	}
+	low, high, _ := j.limits()
+	e.readAgrees = math.Abs(d.OffRecord) < apart
+	e.readDenies = math.Abs(d.OffRecord) > 3
+	if q := d.Ratio; q != nil {
+		e.pReadSlack = below(q.Value, q.U, low)
+		e.pReadOver = 1 - below(q.Value, q.U, high)
+		e.pReadInside = 1 - e.pReadSlack - e.pReadOver
+	}
+	e.pReadLoad = 1 - below(d.LoadFactor.Value, d.LoadFactor.U, high)
+	if s := j.a.Strength; s != nil && j.p.known(outReadUse) {
+		e.pReadUse = 1 - below(j.p.y[outReadUse]*s.SafetyFactor, j.p.u(outReadUse)*s.SafetyFactor, 1)
+	}
 }
 
 // stiffness works out how shape and tension of today's cable answer to load and temperature, by exact states a little

@@ -29,6 +29,7 @@ const (
 	inRise               // design rise, m
 	inDesignTemp         // degC
 	inBreaking           // MBL, N
+	inReading            // tension read directly on the day, N
 	inFixed
 )
 
@@ -38,6 +39,7 @@ type inputs struct {
 	have    []bool
 	sources []source
 	listed  []survey.ListedLoad // those that concern this span
+	readOf  survey.ReadOf       // what inReading is of
 	curve   fit.Curve           // shape family and share; its numbers are overwritten from x
 	frame   spanFrame
 	near    outputs // figures at the estimates: first guesses for the states nearby; zero = none
@@ -71,6 +73,14 @@ func (in *inputs) set(at int, q *Quantity, name string, scale Scale) {
 	if q.U > 0 {
 		in.sources = append(in.sources, source{name: name, value: scale.Value(*q), u: scale.About(q.U),
 			directions: [][]step{{{at, q.U}}}})
+	}
+}
+
+// read adds the direct reading of the span, if there is one.
+func (in *inputs) read(r *survey.Reading) {
+	if r != nil {
+		in.readOf = r.Of
+		in.set(inReading, &r.Value, "direct reading: "+orUnnamed(r.How), ForceScale(r.Value.Value))
 	}
 }
 

@@ -31,6 +31,7 @@ type Assessment struct {
 	AtDesignTemperature      *Quantity      `json:"horizontal_tension_at_design_temperature_N,omitempty"`
 	Expected                 *Expected      `json:"expected"`
 	Rival                    *Rival         `json:"rival_reading,omitempty"`
+	Direct                   *Direct        `json:"direct_reading,omitempty"`
 	Stiffness                *Stiffness     `json:"stiffness,omitempty"`
 	Strength                 *Strength      `json:"strength_use"`
 
@@ -157,6 +158,19 @@ type Rival struct {
 	PLoadMore         float64  `json:"p_load_above_limit"`
 	Excluded          bool     `json:"excluded"`
 	ExcludedBy        string   `json:"excluded_by,omitempty"`
+}
+
+// Direct is a tension that was read on the day, held against both readings of the shape. It is the evidence that tells them
+// apart: with the shape it gives the load as well.
+type Direct struct {
+	Of                string    `json:"of"` // what was read
+	How               string    `json:"how"`
+	HorizontalTension Quantity  `json:"horizontal_tension_N"`
+	Ratio             *Quantity `json:"ratio"`       // to the tension expected today under the filed load; nil without a design state
+	LoadFactor        Quantity  `json:"load_factor"` // load that it implies / load on record
+	Load              Quantity  `json:"implied_load_N_per_m"`
+	OffRecord         float64   `json:"off_load_as_recorded"`   // difference from the tension if the load is as recorded, in standard uncertainties
+	OffLength         *float64  `json:"off_length_as_designed"` // the same for the reading in which the length is as designed
 }
 
 // Stiffness says how the shape and the tension answer to load, from the exact elastic state.

@@ -12,6 +12,12 @@ func (j *judgement) reason() string {
 	switch j.ground {
 	case groundUnfit:
 		return j.unfit() + " No tension can be read from them."
+	case groundReading, groundReadLoad:
+		return j.byReading()
+	case groundConflict:
+		d := j.a.Direct
+		return fmt.Sprintf("The direct reading gives H = %s, but shape and load on record give %s: %.1f standard uncertainties apart. The reading, the weight on file or the record of loads is wrong.",
+			force(d.HorizontalTension), force(*j.a.HorizontalTension), d.OffRecord)
 	case groundStrength:
 		return fmt.Sprintf("The greatest tension is %s, %s of the permitted %s (probability of being over: %s).",
 			force(s.GreatestT), Percent.Value(s.Use), force(Quantity{Value: s.Permitted}), Probability(s.POver))
@@ -38,6 +44,16 @@ func (j *judgement) reason() string {
 	default:
 		return j.noDesign()
 	}
+}
+
+// byReading is the reason when a direct reading decides.
+func (j *judgement) byReading() string {
+	d, x := j.a.Direct, j.a.Expected
+	text := fmt.Sprintf("The direct reading (%s) gives H = %s", orUnnamed(d.How), force(d.HorizontalTension))
+	if d.Ratio != nil && x != nil {
+		text += fmt.Sprintf(", %s the %s expected today under the filed load (ratio %s)", change(d.Ratio.Value), force(x.UnderFiledLoad), Plain.Figure(*d.Ratio))
+	}
+	return text + fmt.Sprintf(". With the shape it means a load of %s of the one on record.", Percent.Figure(d.LoadFactor))
 }
 
 // against is today's tension beside the expected one.
@@ -140,6 +156,18 @@ func (j *judgement) nextStep() string {
 	switch j.ground {
 	case groundUnfit:
 		return "Check codes, units and the order of columns with \"tautbook check\"; give the points of one cable at a time (codes, or --code CODE=ignore)."
+	case groundReading:
+		switch j.a.Verdict {
+		case AsDesigned:
+			return "No action; next visit as planned."
+		case Slack:
+			return "Check anchorages and clamps for slip before drawing the cable up; plan the retensioning and survey again afterwards."
+		}
+		return "Do not add load or take up. Tell the engineer who answers for the structure, and find out why the tension is high."
+	case groundReadLoad:
+		return "Look for the load that is not on file, record it, and have the engineer check the structure for it."
+	case groundConflict:
+		return "Repeat the direct reading, check the weight on file, and look at the loads again. Until then treat the higher tension as true."
 	case groundStrength:
 		return "Take live load off, tell the engineer who answers for the structure today, and confirm with a direct reading."
 	case groundRivalStrength:

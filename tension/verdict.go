@@ -21,7 +21,10 @@ const (
 	groundInside        ground = "inside"
 	groundCoarse        ground = "coarse"
 	groundNone          ground = "none"
-	groundUnfit         ground = "unfit" // the points are no hanging cable
+	groundUnfit         ground = "unfit"         // the points are no hanging cable
+	groundReading       ground = "reading"       // by a direct reading of the tension
+	groundReadLoad      ground = "reading, load" // shape and direct reading give a load above the design load
+	groundConflict      ground = "conflict"      // the direct reading contradicts the record of loads
 )
 
 // evidence is what the verdict rests on. Probabilities are NaN when they could not be worked out; NaN is never sure.
@@ -35,6 +38,11 @@ type evidence struct {
 	rivalRefuted             bool // the surveyed length itself rules the rival reading out
 	pRivalLess, pRivalMore   float64
 	pStrength, pRivalUseOver float64
+
+	// A direct reading, NaN without one. With the shape it gives tension and load, whatever the record says.
+	pReadSlack, pReadInside, pReadOver float64
+	pReadLoad, pReadUse                float64 // load above limit, strength use above 1
+	readAgrees, readDenies             bool    // with the tension if the load is as recorded
 }
 
 // decide is DESIGN's verdict rule. Two points go beyond its text, both to the safe side. While nobody looked at the loads no
@@ -43,10 +51,23 @@ type evidence struct {
 // beyond the limit is off design, not as designed.
 func decide(e evidence) (Verdict, ground) {
 	looked := e.record == survey.LoadsAsFiled || e.record == survey.LoadsListed
+	if e.readAgrees && e.rivalRefuted {
+		looked = true // the reading, too coarse to decide alone, says that the load is as recorded and not as the length would need
+	}
 	open := !looked && !e.rivalRefuted
 	switch {
 	case e.unfit:
 		return Undecided, groundUnfit
+	case e.pReadUse >= sure, e.pReadOver >= sure:
+		return Overload, groundReading
+	case looked && e.readDenies:
+		return OffDesign, groundConflict
+	case e.pReadLoad >= sure:
+		return Overload, groundReadLoad
+	case e.pReadSlack >= sure:
+		return Slack, groundReading
+	case e.pReadInside >= sure && !(looked && (e.pSlack >= sure || e.pOver >= sure)):
+		return AsDesigned, groundReading
 	case e.pStrength >= sure:
 		return Overload, groundStrength
 	case looked && e.pLoadOver >= sure:

@@ -11,7 +11,8 @@ import (
 func TestDecide(t *testing.T) {
 	nan := math.NaN()
 	base := evidence{compared: true, pSlack: 0.01, pInside: 0.98, pOver: 0.01, record: survey.LoadsAsFiled, pLoadOver: 0, rivalKnown: true,
-		rivalRefuted: true, pRivalLess: 0, pRivalMore: 0, pStrength: 0, pRivalUseOver: 0}
+		rivalRefuted: true, pRivalLess: 0, pRivalMore: 0, pStrength: 0, pRivalUseOver: 0,
+		pReadSlack: nan, pReadInside: nan, pReadOver: nan, pReadLoad: nan, pReadUse: nan}
 	with := func(change func(e *evidence)) evidence { e := base; change(&e); return e }
 	open := func(e *evidence) { e.record, e.rivalRefuted = survey.LoadsNotChecked, false }
 	slack := func(e *evidence) { e.pSlack, e.pInside, e.pOver = 0.96, 0.04, 0 }
@@ -38,8 +39,16 @@ func TestDecide(t *testing.T) {
 		{"strength", with(func(e *evidence) { slack(e); e.pStrength = 0.95 }), Overload, groundStrength},
 		{"strength under the worse reading", with(func(e *evidence) { open(e); slack(e); e.pRivalUseOver = 0.99 }), Overload, groundRivalStrength},
 		{"that reading excluded", with(func(e *evidence) { slack(e); e.pRivalUseOver = 0.99 }), Slack, groundTension},
-		{"strength without design state", evidence{pStrength: 0.99, pSlack: nan, pInside: nan, pOver: nan}, Overload, groundStrength},
-		{"nothing to compare", evidence{pStrength: nan, pSlack: nan, pInside: nan, pOver: nan}, NoDesign, groundNone},
+		{"strength without design state", evidence{pStrength: 0.99, pSlack: nan, pInside: nan, pOver: nan, pReadSlack: nan, pReadInside: nan, pReadOver: nan, pReadLoad: nan, pReadUse: nan}, Overload, groundStrength},
+		{"nothing to compare", evidence{pStrength: nan, pSlack: nan, pInside: nan, pOver: nan, pReadSlack: nan, pReadInside: nan, pReadOver: nan, pReadLoad: nan, pReadUse: nan}, NoDesign, groundNone},
+		{"reading slack, not checked", with(func(e *evidence) { open(e); slack(e); e.pReadSlack, e.pReadInside, e.pReadOver = 0.99, 0.01, 0 }), Slack, groundReading},
+		{"reading high, not checked", with(func(e *evidence) { open(e); slack(e); e.pReadSlack, e.pReadInside, e.pReadOver = 0, 0.01, 0.99 }), Overload, groundReading},
+		{"reading inside, load above", with(func(e *evidence) { open(e); e.pReadInside, e.pReadLoad = 0.99, 0.99 }), Overload, groundReadLoad},
+		{"reading inside", with(func(e *evidence) { open(e); e.pReadInside, e.pReadLoad = 0.99, 0 }), AsDesigned, groundReading},
+		{"reading inside, sharper survey slack, as filed", with(func(e *evidence) { slack(e); e.pReadInside, e.readAgrees = 0.96, true }), Slack, groundTension},
+		{"reading above strength", with(func(e *evidence) { open(e); e.pReadUse = 0.99 }), Overload, groundReading},
+		{"reading against the record", with(func(e *evidence) { e.readDenies, e.pReadSlack = true, 0.99 }), OffDesign, groundConflict},
+		{"coarse reading that excludes the rival", with(func(e *evidence) { open(e); slack(e); e.readAgrees, e.rivalRefuted = true, true }), Slack, groundTension},
 		{"coarse", with(func(e *evidence) { e.pSlack, e.pInside, e.pOver = 0.3, 0.6, 0.1 }), Undecided, groundCoarse},
 		{"just not sure", with(func(e *evidence) { e.pSlack, e.pInside, e.pOver = 0.949, 0.051, 0 }), Undecided, groundCoarse},
 		{"just sure", with(func(e *evidence) { e.pSlack, e.pInside, e.pOver = 0.95, 0.05, 0 }), Slack, groundTension},

@@ -12,6 +12,7 @@ import (
 type conditionFlags struct {
 	values map[string]*string
 	loads  []string
+	reads  []string
 }
 
 // conditionKeys are the keys of survey.Conditions that have a flag of the same name, in the order of the help.
@@ -31,9 +32,13 @@ func (f *conditionFlags) bind(cmd *cobra.Command) {
 	for _, k := range conditionKeys {
 		f.values[k.key] = cmd.Flags().String(k.key, "", k.help)
 	}
+	cmd.Flags().StringArrayVar(&f.reads, "reading", nil, readingHelp)
 	cmd.Flags().StringArrayVar(&f.loads, "load", nil,
 		"a load seen on the day: \"CABLE; 30 +- 2 N/m; along cable; service pipe\" (or along deck); may be repeated")
 }
+
+// readingHelp is the help of --reading.
+const readingHelp = "a tension read directly on the day: \"CABLE; tension at A; 30.7 +- 0.5 kN; load cell\" (or tension at B, horizontal tension); may be repeated"
 
 // apply sets the flags over the conditions of every survey; what they replace is told as a notice.
 func (f *conditionFlags) apply(cmd *cobra.Command, surveys []*survey.Survey) error {
@@ -51,26 +56,35 @@ func (f *conditionFlags) apply(cmd *cobra.Command, surveys []*survey.Survey) err
 			return usageError{fmt.Errorf("--load: %w", err)}
 		}
 	}
+	for _, r := range f.reads {
+		if err := given.Set("reading", r); err != nil {
+			return usageError{fmt.Errorf("--reading: %w", err)}
+		}
+	}
 	for _, sv := range surveys {
 		f.over(cmd, sv, given)
 	}
 	return f.matched(surveys)
 }
 
-// matched refuses a --load that concerns no cable of any survey.
+// matched refuses a --load or --reading that concerns no cable of any survey.
 func (f *conditionFlags) matched(surveys []*survey.Survey) error {
-	if len(f.loads) == 0 {
-		return nil
-	}
-	misses := map[string]int{}
+	misses := map[[2]string]int{}
 	for _, sv := range surveys {
-		for _, l := range sv.UnmatchedLoads() {
-			misses[l.Cable]++
+		if len(f.loads) > 0 {
+			for _, l := range sv.UnmatchedLoads() {
+				misses[[2]string{"load", l.Cable}]++
+			}
+		}
+		if len(f.reads) > 0 {
+			for _, r := range sv.UnmatchedReadings() {
+				misses[[2]string{"reading", r.Cable}]++
+			}
 		}
 	}
-	for cable, n := range misses {
+	for what, n := range misses {
 		if n == len(surveys) {
-			return usageError{fmt.Errorf("--load: found cable %q, expected a cable of the surveys: see \"tautbook check\" for their names", cable)}
+			return usageError{fmt.Errorf("--%s: found cable %q, expected a cable of the surveys: see \"tautbook check\" for their names", what[0], what[1])}
 		}
 	}
 	return nil
@@ -104,6 +118,10 @@ func (f *conditionFlags) over(cmd *cobra.Command, sv *survey.Survey, given surve
 	if changed("loads") || changed("load") {
 		replaced("loads", c.Loads != "" && (c.Loads != given.Loads || len(c.Listed)+len(given.Listed) > 0))
 		c.Loads, c.Listed = given.Loads, given.Listed
+	}
+	if changed("reading") {
+		replaced("reading", len(c.Readings) > 0)
+		c.Readings = given.Readings
 	}
 	if changed("instrument") {
 		replaced("instrument", c.Instrument != "" && c.Instrument != given.Instrument)
