@@ -187,6 +187,9 @@ func fileViewOf(f SurveyFile) fileView {
 	if c.AccuracyH != nil && c.AccuracyV != nil {
 		v.Conditions = append(v.Conditions, row{"accuracy of a point", fmt.Sprintf("%.3g mm horizontal, %.3g mm vertical", 1000**c.AccuracyH, 1000**c.AccuracyV)})
 	}
+	for _, l := range c.Listed {
+		v.Conditions = append(v.Conditions, row{"load seen", together(listedText(l))})
+	}
 	for _, n := range c.Notes {
 		v.Conditions = append(v.Conditions, row{"note", clean(n)})
 	}

@@ -65,7 +65,11 @@ func readings(a *tension.Assessment) *grid {
 	return g
 }
 
-// forceColumn prints forces that stand side by side in one unit, that of the largest.
+// widestForce is the room for a force in a column, "208.34 ± 0.55 kN" and a little more.
+const widestForce = 18
+
+// forceColumn prints forces that stand one under another in one unit, that of the largest; one that is so small beside it
+// that its digits would not fit has its own unit.
 func forceColumn(forces ...*tension.Quantity) func(tension.Quantity) string {
 	most := 0.0
 	for _, q := range forces {
@@ -73,5 +77,11 @@ func forceColumn(forces ...*tension.Quantity) func(tension.Quantity) string {
 			most = max(most, q.Value, -q.Value)
 		}
 	}
-	return tension.ForceScale(most).Figure
+	scale := tension.ForceScale(most)
+	return func(q tension.Quantity) string {
+		if text := scale.Figure(q); columns(text) <= widestForce {
+			return text
+		}
+		return force(q)
+	}
 }

@@ -73,7 +73,17 @@ type Conditions struct {
 	AccuracyH   *float64          `json:"accuracy_horizontal_m"`
 	AccuracyV   *float64          `json:"accuracy_vertical_m"`
 	Crew        string            `json:"crew"`
+	Listed      []RecordedLoad    `json:"listed_loads"` // seen on the day beside the filed loads
 	Notes       []string          `json:"notes"`
+}
+
+// RecordedLoad is one line of the record of loads, as it was read; Cable and Span are "" for every cable and every span.
+type RecordedLoad struct {
+	Cable  string          `json:"cable"`
+	Span   string          `json:"span"`
+	Load   survey.Quantity `json:"load_N_per_m"`
+	Spread survey.Spread   `json:"spread"`
+	What   string          `json:"what"`
 }
 
 // Input is what a report is made of beside the assessments.
@@ -111,7 +121,10 @@ func NewSurveyFile(sv *survey.Survey) SurveyFile {
 	f := SurveyFile{File: sv.File, SHA256: sv.SHA256, Encoding: sv.Encoding, Separator: sv.Separator, Decimal: sv.Decimal, LengthUnit: sv.LengthUnit,
 		PointsRead: sv.PointsRead, Columns: noNil(sv.Header), Codes: noNil(sv.Codes), Guesses: noNil(sv.Guesses), Notices: noNil(sv.Notices),
 		Conditions: Conditions{Structure: c.Structure, Temperature: c.CableTemperature, Wind: c.Wind, Loads: c.Loads, Instrument: c.Instrument,
-			Crew: c.Crew, Notes: noNil(c.Notes)}}
+			Crew: c.Crew, Listed: []RecordedLoad{}, Notes: noNil(c.Notes)}}
+	for _, l := range c.Listed {
+		f.Conditions.Listed = append(f.Conditions.Listed, RecordedLoad(l))
+	}
 	if !c.Date.IsZero() {
 		f.Conditions.Date = c.Date.Format(time.DateOnly)
 	}

@@ -73,7 +73,8 @@ func sampleSurvey() *survey.Survey {
 		Codes:   []survey.CodeUse{{Code: "c1", Role: survey.OnCable, Cable: "c1", Points: 21, How: "id in the cables file"}, {Code: "BM", Role: survey.Control, Points: 2, How: "usual word for control"}},
 		Guesses: []survey.Guess{{What: "separator", Taken: "comma", Why: "it fits", SetBy: "--separator"}}, Notices: []survey.Notice{{File: "points.csv", Line: 4, Text: "odd"}},
 		Conditions: survey.Conditions{Structure: "Invented footbridge", Date: time.Date(2026, 6, 11, 0, 0, 0, 0, time.UTC), CableTemperature: q(18, 1.5), Wind: "light",
-			Accuracy: &survey.Accuracy{Horizontal: 0.003, Vertical: 0.002}, Instrument: "total station", Notes: []string{"invented data"}}}
+			Accuracy: &survey.Accuracy{Horizontal: 0.003, Vertical: 0.002}, Instrument: "total station",
+			Listed: []survey.ListedLoad{{Cable: "loaded", Load: *q(30, 1), Spread: survey.AlongCable, What: "service pipe"}}, Notes: []string{"invented data"}}}
 }
 
 func sampleReport() Report {

@@ -12,7 +12,7 @@ import (
 
 // TextOptions steer WriteText.
 type TextOptions struct {
-	Width int  // columns, 0 = 80; at least 60
+	Width int  // columns, at least 80: the tables have fixed columns; 0 = 80
 	Color bool // use escape codes; the words alone say everything
 }
 
@@ -44,10 +44,7 @@ type textPrinter struct {
 }
 
 func newTextPrinter(o TextOptions) *textPrinter {
-	if o.Width == 0 {
-		o.Width = 80
-	}
-	return &textPrinter{width: max(o.Width, 60), color: o.Color}
+	return &textPrinter{width: max(o.Width, 80), color: o.Color}
 }
 
 func (p *textPrinter) line(format string, args ...any) {
@@ -151,7 +148,7 @@ func prefixed(lead, s string) string {
 }
 
 // widestName is the room for a cable's name in the overview; a longer one has a line of its own.
-const widestName = 22
+const widestName = 16
 
 // overview is one line a cable: verdict, tension, expected, ratio. Each column of forces has one unit, so that the eye can
 // compare down the column.
@@ -234,7 +231,7 @@ func (p *textPrinter) grid(g *grid) {
 	print := func(label string, cells []string) {
 		l := "    " + padded(label, 17)
 		for _, c := range cells {
-			l += padded(c, wide)
+			l += padded(c, wide-1) + " "
 		}
 		p.line("%s", strings.TrimRight(l, " "))
 	}

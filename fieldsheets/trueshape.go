@@ -41,7 +41,7 @@ func trueShape(id string, a *tension.Assessment) template.HTML {
 	x := func(v float64) float64 { return left + (v-d.From)*scale }
 	y := func(z float64) float64 { return top + (hi-z)*scale }
 	s.line("chord", x(d.From), y(d.Curve.Z(d.From)), x(d.To), y(d.Curve.Z(d.To)))
-	s.path("cable", sample(d.From, d.To, func(v float64) (float64, float64) { return x(v), y(d.Curve.Z(v)) }))
+	s.path("rope", sample(d.From, d.To, func(v float64) (float64, float64) { return x(v), y(d.Curve.Z(v)) }))
 	desc, what := "The cable, heights and lengths to one scale.", "no support forces: "+whyNoTension(a)
 	bottom := y(lo)
 	for i, r := range a.Reactions {

@@ -7,6 +7,7 @@ import (
 	"strings"
 
 	"tautbook/survey"
+	"tautbook/tension"
 )
 
 // WriteUnderstanding says how surveys were understood, and nothing that was computed from them: encoding, columns, units,
@@ -173,9 +174,21 @@ func (p *textPrinter) conditions(f SurveyFile) {
 		accuracy = fmt.Sprintf("%.3g mm horizontal, %.3g mm vertical", 1000**c.AccuracyH, 1000**c.AccuracyV)
 	}
 	p.wrapped("  visit    ", fmt.Sprintf("structure %s; date %s; cable temperature %s; loads %s; accuracy %s", orWords(c.Structure), orWords(c.Date), temperature, c.Loads, accuracy))
+	for _, l := range c.Listed {
+		p.wrapped("  load     ", listedText(l))
+	}
 	for _, n := range c.Notes {
 		p.wrapped("  note     ", clean(n))
 	}
+}
+
+// listedText is one load of the record, with the cable that it hangs on.
+func listedText(l RecordedLoad) string {
+	on := "every cable"
+	if l.Cable != "" {
+		on = clean(l.Cable) + prefixed("/", clean(l.Span))
+	}
+	return fmt.Sprintf("%s on %s, %s: %s", tension.NewtonPerMetre.Figure(l.Load), on, l.Spread, orWords(l.What))
 }
 
 func orWords(s string) string {
