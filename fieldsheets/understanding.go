@@ -97,7 +97,8 @@ func (p *textPrinter) understanding(r Report) {
 }
 
 func (p *textPrinter) file(f SurveyFile) {
-	p.line("\n%s", clean(f.File))
+	p.line("")
+	p.wrapped("", clean(f.File))
 	p.line("  SHA-256  %s", f.SHA256)
 	used := ""
 	if f.PointsUsed > 0 {
