@@ -101,6 +101,15 @@ func rival(get func(v *tension.Rival) *tension.Quantity) func(a *tension.Assessm
 	}
 }
 
+func direct(get func(d *tension.Direct) *tension.Quantity) func(a *tension.Assessment) *tension.Quantity {
+	return func(a *tension.Assessment) *tension.Quantity {
+		if a.Direct == nil {
+			return nil
+		}
+		return get(a.Direct)
+	}
+}
+
 func reaction(k int, get func(r *tension.Reaction) *tension.Quantity) func(a *tension.Assessment) *tension.Quantity {
 	return func(a *tension.Assessment) *tension.Quantity {
 		if k >= len(a.Reactions) {
@@ -150,6 +159,9 @@ func makeColumns() (out []csvColumn) {
 		{"ratio", expected(func(e *tension.Expected) *tension.Quantity { return e.Ratio })},
 		{"rival_horizontal_tension_N", rival(func(v *tension.Rival) *tension.Quantity { return &v.HorizontalTension })},
 		{"rival_load_factor", rival(func(v *tension.Rival) *tension.Quantity { return &v.LoadFactor })},
+		{"direct_reading_horizontal_tension_N", direct(func(d *tension.Direct) *tension.Quantity { return &d.HorizontalTension })},
+		{"direct_reading_ratio", direct(func(d *tension.Direct) *tension.Quantity { return d.Ratio })},
+		{"direct_reading_load_factor", direct(func(d *tension.Direct) *tension.Quantity { return &d.LoadFactor })},
 		{"horizontal_tension_at_design_temperature_N", func(a *tension.Assessment) *tension.Quantity { return a.AtDesignTemperature }},
 	} {
 		add(quantityColumns(q.name, q.get)...)

@@ -85,6 +85,9 @@ func groups(a *tension.Assessment) []group {
 	if a.Expected != nil {
 		out = append(out, rivalGroup(a))
 	}
+	if a.Direct != nil {
+		out = append(out, directGroup(a))
+	}
 	return append(out, strengthGroup(a), loadGroup(a), shapeGroup(a))
 }
 

@@ -25,6 +25,9 @@ func ratioScale(id string, a *tension.Assessment) template.HTML {
 	if a.Rival != nil && !a.Rival.Excluded {
 		list = append(list, reading{"other", "if the length is as designed", a.Rival.Ratio})
 	}
+	if d := a.Direct; d != nil && d.Ratio != nil && e.LoadRatio.Value == 1 { // with loads listed its ratio is to another tension
+		list = append(list, reading{"read", "by the direct reading", *d.Ratio})
+	}
 	var s svg
 	const left, right, top = 218.0, pictureWidth - 20.0, 30.0
 	lo, hi := ratioRange(e, list)

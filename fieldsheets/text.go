@@ -191,6 +191,13 @@ func (p *textPrinter) overview(r Report) {
 			label = ""
 		}
 		p.line("%s  %s  %-18s  %-18s  %s", padded(label, wide), p.verdict(a.Verdict, 11), h, e, ratio)
+		if d := a.Direct; d != nil {
+			text := force(d.HorizontalTension)
+			if d.Ratio != nil {
+				text += fmt.Sprintf(", ratio %.2f", d.Ratio.Value)
+			}
+			p.line("%s  %-11s  %s", padded("", wide), "read on it:", text)
+		}
 	}
 }
 
