@@ -22,7 +22,7 @@ func (p *PointReader) collect() (*Survey, error) {
 		p.opts.Cable, p.opts.Span = p.conditions.cable, p.conditions.span
 	}
 	p.checkStructure()
-	s := sorter{survey: sv, resolver: newResolver(p.opts, p.hasCodes), reader: p, spans: map[[2]string]int{}, ids: map[string]Point{}}
+	s := sorter{survey: sv, resolver: newResolver(p.opts, p.hasCodes), reader: p, spans: map[[2]string]int{}, ids: map[string]seenPoint{}}
 	for {
 		pt, err := p.Next()
 		if err == io.EOF {
@@ -94,8 +94,14 @@ type sorter struct {
 	resolver *resolver
 	reader   *PointReader
 	spans    map[[2]string]int
-	ids      map[string]Point
-	twice    int
+	ids      map[string]seenPoint
+}
+
+// seenPoint is what must be kept of a point to tell a repeated id.
+type seenPoint struct {
+	line    int
+	e, n, z float64
+	code    string
 }
 
 func (s *sorter) problem(line int, column, found, expected, mend string) {
@@ -133,16 +139,15 @@ func (s *sorter) repeated(pt Point) bool {
 	}
 	first, again := s.ids[pt.ID]
 	if !again {
-		s.ids[pt.ID] = pt
+		s.ids[pt.ID] = seenPoint{pt.Line, pt.E, pt.N, pt.Z, pt.Code}
 		return false
 	}
-	if first.E != pt.E || first.N != pt.N || first.Z != pt.Z || first.Code != pt.Code {
-		s.problem(pt.Line, "id", pt.ID, fmt.Sprintf("an id of its own: line %d has the same one with other values", first.Line), "rename one of the two")
+	if first.e != pt.E || first.n != pt.N || first.z != pt.Z || first.code != pt.Code {
+		s.problem(pt.Line, "id", pt.ID, fmt.Sprintf("an id of its own: line %d has the same one with other values", first.line), "rename one of the two")
 		return true
 	}
-	s.twice++
 	s.survey.Notices = append(s.survey.Notices, Notice{File: s.survey.File, Line: pt.Line, Column: "id",
-		Text: fmt.Sprintf("point %s repeats line %d to the digit: used once", quote(pt.ID), first.Line)})
+		Text: fmt.Sprintf("point %s repeats line %d to the digit: used once", quote(pt.ID), first.line)})
 	return true
 }
 
@@ -184,8 +189,9 @@ func (s *sorter) finish() {
 	if n := count(sv.Ignored, func(p Point) bool { return p.Code == "" }); n > 0 && s.reader.hasCodes {
 		sv.Notices = append(sv.Notices, Notice{File: sv.File, Text: fmt.Sprintf("%d points have no code and are set aside", n)})
 	}
+	index := IndexDesigns(s.resolver.known)
 	for _, sp := range sv.Spans {
-		s.odd(sp)
+		s.odd(sp, index.Of(s.reader.opts.Structure, sp.Cable, sp.Span))
 	}
 }
 
@@ -210,26 +216,24 @@ func extent(points []Point) float64 {
 }
 
 // odd tells a chord that does not fit the design span, by a factor of feet to metres above all.
-func (s *sorter) odd(sp SpanPoints) {
+func (s *sorter) odd(sp SpanPoints, d *Design) {
+	if d == nil || d.SpanLength == nil {
+		return
+	}
 	chord, what := extent(sp.Points), "points reach over"
 	if sp.A != nil && sp.B != nil {
 		chord, what = math.Hypot(sp.A.E-sp.B.E, sp.A.N-sp.B.N), "supports are apart by"
 	}
-	for _, d := range s.resolver.known {
-		if d.Cable != sp.Cable || d.Span != sp.Span || d.SpanLength == nil {
-			continue
-		}
-		ratio := chord / d.SpanLength.Value
-		add := func(text string) {
-			s.survey.Notices = append(s.survey.Notices, Notice{File: s.survey.File, Text: fmt.Sprintf("cable %s: the surveyed %s %.3f m, the design span is %.3f m: %s", quote(sp.Cable), what, chord, d.SpanLength.Value, text)})
-		}
-		switch {
-		case math.Abs(ratio*foot-1) < 0.05:
-			add("the file may be in feet: say --unit ft or us-ft")
-		case math.Abs(ratio/foot-1) < 0.02 && sp.A != nil && sp.B != nil:
-			add("the file may be in metres: check --unit and the units in the header")
-		case ratio > 1.01, ratio < 0.99 && sp.A != nil && sp.B != nil:
-			add("check the codes, the units and the cables file")
-		}
+	ratio := chord / d.SpanLength.Value
+	add := func(text string) {
+		s.survey.Notices = append(s.survey.Notices, Notice{File: s.survey.File, Text: fmt.Sprintf("cable %s: the surveyed %s %.3f m, the design span is %.3f m: %s", quote(sp.Cable), what, chord, d.SpanLength.Value, text)})
+	}
+	switch {
+	case math.Abs(ratio*foot-1) < 0.05:
+		add("the file may be in feet: say --unit ft or us-ft")
+	case math.Abs(ratio/foot-1) < 0.02 && sp.A != nil && sp.B != nil:
+		add("the file may be in metres: check --unit and the units in the header")
+	case ratio > 1.01, ratio < 0.99 && sp.A != nil && sp.B != nil:
+		add("check the codes, the units and the cables file")
 	}
 }

@@ -1,6 +1,7 @@
 package survey
 
 import (
+	"slices"
 	"strings"
 	"time"
 )
@@ -87,36 +88,29 @@ type Survey struct {
 
 // UnmatchedLoads are the listed loads that name a cable or span of which the survey holds no point: a load that would be
 // recorded and count nowhere.
-func (sv *Survey) UnmatchedLoads() (out []ListedLoad) {
-next:
-	for _, l := range sv.Conditions.Listed {
-		for _, sp := range sv.Spans {
-			if l.On(sp.Cable, sp.Span) {
-				continue next
-			}
-		}
-		out = append(out, l)
-	}
-	return out
+func (sv *Survey) UnmatchedLoads() []ListedLoad {
+	return slices.DeleteFunc(slices.Clone(sv.Conditions.Listed), func(l ListedLoad) bool { return sv.holds(l.On) })
 }
 
 // UnmatchedReadings are the direct readings that are of no span of the survey.
-func (sv *Survey) UnmatchedReadings() (out []Reading) {
-next:
-	for _, r := range sv.Conditions.Readings {
-		for _, sp := range sv.Spans {
-			if r.On(sp.Cable, sp.Span) {
-				continue next
-			}
-		}
-		out = append(out, r)
-	}
-	return out
+func (sv *Survey) UnmatchedReadings() []Reading {
+	return slices.DeleteFunc(slices.Clone(sv.Conditions.Readings), func(r Reading) bool { return sv.holds(r.On) })
+}
+
+// holds reports whether a span of the survey is meant.
+func (sv *Survey) holds(on func(cable, span string) bool) bool {
+	return slices.ContainsFunc(sv.Spans, func(sp SpanPoints) bool { return on(sp.Cable, sp.Span) })
 }
 
 // On reports whether the load concerns a span.
-func (l ListedLoad) On(cable, span string) bool {
-	return (l.Cable == "" || strings.EqualFold(l.Cable, cable)) && (l.Span == "" || strings.EqualFold(l.Span, span))
+func (l ListedLoad) On(cable, span string) bool { return meant(l.Cable, l.Span, cable, span) }
+
+// On reports whether the reading is of a span.
+func (r Reading) On(cable, span string) bool { return meant(r.Cable, r.Span, cable, span) }
+
+// meant reports whether a cable and span, "" for any, stand for a span.
+func meant(cable, span, ofCable, ofSpan string) bool {
+	return (cable == "" || strings.EqualFold(cable, ofCable)) && (span == "" || strings.EqualFold(span, ofSpan))
 }
 
 // HeaderUse says how one column of a file was understood.
@@ -170,11 +164,6 @@ type Reading struct {
 	Of          ReadOf
 	Value       Quantity // N, with its standard uncertainty
 	How         string   // free text, for example "load cell 3"
-}
-
-// On reports whether the reading is of a span.
-func (r Reading) On(cable, span string) bool {
-	return (r.Cable == "" || strings.EqualFold(r.Cable, cable)) && (r.Span == "" || strings.EqualFold(r.Span, span))
 }
 
 // Accuracy is the instrument's stated standard deviation of one point, m.
