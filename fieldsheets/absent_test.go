@@ -53,7 +53,11 @@ func TestEveryCombinationOfAbsentFigures(t *testing.T) {
 	emptyCell := regexp.MustCompile(`<td>\s*</td>\s*</tr>|<th scope="row">[^<]*</th><td></td>|<p[^>]*>\s*</p>|<b>[^<]*:</b>\s*</p>`)
 	emptyRow := regexp.MustCompile(`(?m)^    [A-Z][^:\n]{0,27}$`)
 	bad := regexp.MustCompile(`NaN|Inf\b|nil>|%!`)
-	for mask := range 1 << len(absences) {
+	step := 1
+	if testing.Short() {
+		step = 7 // still every pair
+	}
+	for mask := 0; mask < 1<<len(absences); mask += step {
 		a := full("invented", verdicts[mask%len(verdicts)])
 		var names []string
 		for i, x := range absences {

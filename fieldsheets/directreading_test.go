@@ -63,6 +63,21 @@ func TestStandingOfReadings(t *testing.T) {
 	}
 }
 
+// What follows from shape and record must say so at the figure: beside a direct reading it may be wrong by a factor.
+func TestFiguresFromTheRecordSayThatTheyAre(t *testing.T) {
+	a := read(tension.Overload, 6.2)
+	for _, g := range groups(&a) {
+		for _, r := range g.Rows {
+			switch r.Label {
+			case "Probabilities", "Use", "Greatest tension", "Horizontal tension H", "Ratio today / expected":
+				if !strings.HasSuffix(g.Title, ", if the load is as recorded") {
+					t.Errorf("%s stands under %q", r.Label, g.Title)
+				}
+			}
+		}
+	}
+}
+
 // A direct reading stands in every format with the same figures.
 func TestDirectReadingIsPrinted(t *testing.T) {
 	r := sampleReport()

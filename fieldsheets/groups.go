@@ -139,7 +139,7 @@ func upOrDown(r tension.Reaction) string {
 }
 
 func comparison(a *tension.Assessment) group {
-	g := group{Title: "Against the design"}
+	g := group{Title: "Against the design, if the load is as recorded"}
 	e := a.Expected
 	if e == nil {
 		g.Rows = append(g.Rows, row{"Expected tension", unknown(noDesign)})
@@ -192,7 +192,7 @@ func rivalGroup(a *tension.Assessment) group {
 }
 
 func strengthGroup(a *tension.Assessment) group {
-	g := group{Title: "Strength"}
+	g := group{Title: "Strength, if the load is as recorded"}
 	s := a.Strength
 	if s == nil {
 		g.Rows = append(g.Rows, row{"Use of the permitted tension", unknown(noStrength)})
