@@ -3,63 +3,86 @@ package survey
 import (
 	"fmt"
 	"io"
-	"math"
+	"slices"
 	"strings"
 )
 
 // collect reads all points and sorts them.
 func (p *PointReader) collect() (*Survey, error) {
 	sv := &Survey{File: p.opts.Name, Flat: p.flat, LengthUnit: p.unitName, Encoding: p.src.encoding, Separator: separatorNames[p.dialect.separator],
-		Decimal: map[byte]string{'.': "point", ',': "comma"}[p.dialect.mark]}
-	for i, c := range p.columns {
-		u := HeaderUse{Column: i + 1, Name: c.name, Field: fieldNames[c.field], Unit: c.unit}
-		sv.Header = append(sv.Header, u)
-	}
-	if p.opts.Structure == "" {
-		p.opts.Structure = p.conditions.Structure
-	}
-	if p.opts.Cable == "" {
-		p.opts.Cable, p.opts.Span = p.conditions.cable, p.conditions.span
-	}
+		Decimal: map[byte]string{'.': "point", ',': "comma"}[p.dialect.mark], Header: p.Header()}
+	p.overrule()
 	p.checkStructure()
-	s := sorter{survey: sv, resolver: newResolver(p.opts, p.hasCodes), reader: p, spans: map[[2]string]int{}, ids: map[string]seenPoint{}}
+	codes, err := newResolver(p.opts, p.hasCodes)
+	if err != nil {
+		return nil, err
+	}
+	s := sorter{survey: sv, resolver: codes, reader: p, spans: map[[2]string]int{}, ids: map[string]seenPoint{}}
 	for {
-		pt, err := p.Next()
+		pt, err := p.next()
 		if err == io.EOF {
 			break
 		}
 		if err != nil {
-			return nil, fmt.Errorf("%s: cannot read: %w", p.opts.Name, err)
+			return nil, err
 		}
-		s.place(pt, p.code)
+		s.place(pt)
 	}
 	if err := p.conditions.check(); err != nil {
 		p.problems.add(problemOf(err, p.opts.Name, 0, "loads"))
 	}
 	sv.Conditions = p.conditions
-	for _, l := range sv.UnmatchedLoads() {
-		p.problems.add(Problem{File: p.opts.Name, Column: "load", Found: l.Cable, Expected: "a load on a cable of this survey", Mend: "write the cable as in the codes: " + strings.Join(cableNames(sv), ", ")})
-	}
-	for _, r := range sv.UnmatchedReadings() {
-		p.problems.add(Problem{File: p.opts.Name, Column: "reading", Found: r.Cable, Expected: "a reading on a cable of this survey", Mend: "write the cable as in the codes: " + strings.Join(cableNames(sv), ", ")})
-	}
-	if problem, ok := s.resolver.problems[""]; ok {
-		s.problem(0, "", problem.Found, problem.Expected, problem.Mend)
-	}
+	p.matchConditions(sv)
 	if p.rows == 0 && len(p.problems.Problems) == 0 {
 		p.problems.add(Problem{File: p.opts.Name, Expected: "rows of points below the header", Mend: "the file has a header only"})
 	}
 	if err := p.problems.orNil(); err != nil {
 		return nil, err
 	}
-	sum, err := p.src.hashed()
-	if err != nil {
-		return nil, fmt.Errorf("%s: cannot read: %w", p.opts.Name, err)
+	if sv.SHA256, err = p.SHA256(); err != nil {
+		return nil, err
 	}
-	sv.SHA256, sv.PointsRead = sum, p.rows
+	sv.PointsRead = p.rows
 	s.finish()
 	return sv, nil
 }
+
+// overrule settles structure and cable: options count over the file, and a contradiction is told.
+func (p *PointReader) overrule() {
+	c := &p.conditions
+	if p.opts.Structure == "" {
+		p.opts.Structure = c.Structure
+	}
+	if p.opts.Cable == "" {
+		p.opts.Cable = c.cable
+		if p.opts.Span == "" {
+			p.opts.Span = c.span
+		}
+		return
+	}
+	if c.cable != "" && !strings.EqualFold(c.cable, p.opts.Cable) {
+		p.notice(0, "", "--cable %s replaces the cable %s that the file names", p.opts.Cable, c.cable)
+	}
+}
+
+// matchConditions refuses loads and readings that would count nowhere, and tells a temperature that is hard to believe.
+func (p *PointReader) matchConditions(sv *Survey) {
+	unmatched := func(column, found, expected string) {
+		p.problems.add(Problem{File: p.opts.Name, Column: column, Found: found, Expected: expected, Mend: "write the cable as in the codes: " + strings.Join(cableNames(sv), ", ")})
+	}
+	for _, l := range sv.UnmatchedLoads() {
+		unmatched("load", l.Cable, "a load on a cable of this survey")
+	}
+	for _, r := range sv.UnmatchedReadings() {
+		unmatched("reading", r.Cable, "a reading on a cable of this survey")
+	}
+	if t := p.conditions.CableTemperature; t != nil && oddTemperature(t.Value) {
+		p.notice(0, "temperature", "a cable temperature of %.0f °C is unusual: check its unit", t.Value)
+	}
+}
+
+// oddTemperature reports whether a temperature in degC is one that no cable has outdoors: common practice, no source.
+func oddTemperature(degC float64) bool { return degC < -80 || degC > 120 }
 
 // checkStructure narrows the known spans to the structure of the survey.
 func (p *PointReader) checkStructure() {
@@ -88,15 +111,6 @@ func cableNames(sv *Survey) (out []string) {
 	return out
 }
 
-// sorter puts points where they belong. Every row ends in exactly one place.
-type sorter struct {
-	survey   *Survey
-	resolver *resolver
-	reader   *PointReader
-	spans    map[[2]string]int
-	ids      map[string]seenPoint
-}
-
 // seenPoint is what must be kept of a point to tell a repeated id.
 type seenPoint struct {
 	line    int
@@ -104,36 +118,57 @@ type seenPoint struct {
 	code    string
 }
 
+// sorter puts points where they belong. Every row ends in exactly one place.
+type sorter struct {
+	survey   *Survey
+	resolver *resolver
+	reader   *PointReader
+	spans    map[[2]string]int
+	at       int // the span of the last point
+	ids      map[string]seenPoint
+	twice    int // rows that repeat another to the digit
+	twiceAt  int // line of the first of them
+}
+
 func (s *sorter) problem(line int, column, found, expected, mend string) {
 	s.reader.problems.add(Problem{File: s.survey.File, Line: line, Column: column, Found: found, Expected: expected, Mend: mend})
 }
 
-func (s *sorter) place(pt Point, code []byte) {
-	use := s.resolver.use(code)
-	pt.Code = use.Code
-	if s.repeated(pt) {
-		use.Points--
+func (s *sorter) place(pt Point) {
+	if s.repeated(&pt) {
 		s.survey.Ignored = append(s.survey.Ignored, pt)
 		return
 	}
+	use := s.resolver.use(pt.Code)
 	switch use.Role {
 	case Control:
 		s.survey.Control = append(s.survey.Control, pt)
 	case Ground:
 		s.survey.Ground = append(s.survey.Ground, pt)
 	case Ignored:
-		if problem, ok := s.resolver.problems[use.Code]; ok {
-			s.problem(pt.Line, "code", problem.Found, problem.Expected, problem.Mend)
-			delete(s.resolver.problems, use.Code)
-		}
+		s.refused(use, pt.Line)
 		s.survey.Ignored = append(s.survey.Ignored, pt)
 	default:
-		s.onSpan(pt, use)
+		s.onSpan(&pt, use)
 	}
 }
 
-// repeated finds a second row with the same id: refused when the coordinates differ, used once when they do not.
-func (s *sorter) repeated(pt Point) bool {
+// refused tells the problem of a code once, with its first line; that of a file without codes has no line.
+func (s *sorter) refused(use *CodeUse, line int) {
+	problem, ok := s.resolver.problems[use.Code]
+	if !ok {
+		return
+	}
+	delete(s.resolver.problems, use.Code)
+	if !s.reader.hasCodes {
+		s.problem(0, "", problem.Found, problem.Expected, problem.Mend)
+		return
+	}
+	s.problem(line, "code", problem.Found, problem.Expected, problem.Mend)
+}
+
+// repeated finds a second row with the same id: refused when it differs, used once when it does not.
+func (s *sorter) repeated(pt *Point) bool {
 	if pt.ID == "" {
 		return false
 	}
@@ -146,53 +181,73 @@ func (s *sorter) repeated(pt Point) bool {
 		s.problem(pt.Line, "id", pt.ID, fmt.Sprintf("an id of its own: line %d has the same one with other values", first.line), "rename one of the two")
 		return true
 	}
-	s.survey.Notices = append(s.survey.Notices, Notice{File: s.survey.File, Line: pt.Line, Column: "id",
-		Text: fmt.Sprintf("point %s repeats line %d to the digit: used once", quote(pt.ID), first.line)})
+	if s.twice++; s.twice == 1 {
+		s.twiceAt = pt.Line
+	}
 	return true
 }
 
-func (s *sorter) onSpan(pt Point, use *CodeUse) {
-	key := [2]string{use.Cable, use.Span}
-	i, ok := s.spans[key]
-	if !ok {
-		i = len(s.survey.Spans)
-		s.spans[key] = i
-		s.survey.Spans = append(s.survey.Spans, SpanPoints{Cable: use.Cable, Span: use.Span})
+func (s *sorter) onSpan(pt *Point, use *CodeUse) {
+	if len(s.survey.Spans) == 0 || s.survey.Spans[s.at].Cable != use.Cable || s.survey.Spans[s.at].Span != use.Span {
+		key := [2]string{use.Cable, use.Span}
+		i, ok := s.spans[key]
+		if !ok {
+			i = len(s.survey.Spans)
+			s.spans[key] = i
+			s.survey.Spans = append(s.survey.Spans, SpanPoints{Cable: use.Cable, Span: use.Span})
+		}
+		s.at = i
 	}
-	sp := &s.survey.Spans[i]
-	end := map[Role]**Point{SupportA: &sp.A, SupportB: &sp.B}[use.Role]
-	switch {
-	case end == nil:
-		sp.Points = append(sp.Points, pt)
-	case *end != nil:
+	sp := &s.survey.Spans[s.at]
+	var end **Point
+	switch use.Role {
+	case SupportA:
+		end = &sp.A
+	case SupportB:
+		end = &sp.B
+	default:
+		if len(sp.Points) == cap(sp.Points) {
+			sp.Points = slices.Grow(sp.Points, max(4, len(sp.Points))) // doubling: fewer copies of long clouds
+		}
+		sp.Points = append(sp.Points, *pt)
+		return
+	}
+	if *end != nil {
 		s.problem(pt.Line, "code", pt.Code, fmt.Sprintf("one %s of cable %s: line %d is one already", use.Role, quote(use.Cable), (*end).Line),
 			"give one of the two another code, or say --code")
-	default:
-		*end = &pt
+		return
 	}
+	support := *pt
+	*end = &support
 }
 
 // finish writes down what was assumed and what looks odd.
 func (s *sorter) finish() {
-	sv := s.survey
+	sv, p := s.survey, s.reader
 	for _, u := range s.resolver.order {
 		sv.Codes = append(sv.Codes, *u)
 	}
-	sv.Guesses = s.reader.guesses
-	if !s.reader.hasCodes && len(sv.Codes) > 0 && s.reader.opts.Cable == "" {
+	sv.Guesses = p.guesses
+	if !p.hasCodes && len(sv.Codes) > 0 && p.opts.Cable == "" {
 		sv.Guesses = append(sv.Guesses, Guess{What: "cable", Taken: sv.Codes[0].Cable, Why: "the file has no codes", SetBy: "--cable"})
 	}
-	sv.Notices = append(s.reader.notices, sv.Notices...)
-	for _, n := range s.resolver.notices {
-		sv.Notices = append(sv.Notices, Notice{File: sv.File, Text: n})
+	if s.twice > 0 {
+		p.notice(s.twiceAt, "id", "%d rows repeat an earlier one to the digit, this one first: used once", s.twice)
 	}
-	if n := count(sv.Ignored, func(p Point) bool { return p.Code == "" }); n > 0 && s.reader.hasCodes {
-		sv.Notices = append(sv.Notices, Notice{File: sv.File, Text: fmt.Sprintf("%d points have no code and are set aside", n)})
+	for _, text := range s.resolver.tell() {
+		p.notice(0, "", "%s", text)
 	}
+	if n := count(sv.Ignored, func(p Point) bool { return p.Code == "" }); n > 0 && p.hasCodes {
+		p.notice(0, "", "%d points have no code and are set aside", n)
+	}
+	p.lookCutOff()
 	index := IndexDesigns(s.resolver.known)
 	for _, sp := range sv.Spans {
-		s.odd(sp, index.Of(s.reader.opts.Structure, sp.Cable, sp.Span))
+		s.odd(sp, index.Of(p.opts.Structure, sp.Cable, sp.Span))
+		s.mixed(sp)
+		s.coinciding(sp)
 	}
+	sv.Notices = p.notices
 }
 
 func count(points []Point, keep func(Point) bool) (n int) {
@@ -202,38 +257,4 @@ func count(points []Point, keep func(Point) bool) (n int) {
 		}
 	}
 	return n
-}
-
-// extent is the diagonal of the points in plan, m.
-func extent(points []Point) float64 {
-	lo, hi := [2]float64{math.Inf(1), math.Inf(1)}, [2]float64{math.Inf(-1), math.Inf(-1)}
-	for _, p := range points {
-		for k, v := range [2]float64{p.E, p.N} {
-			lo[k], hi[k] = math.Min(lo[k], v), math.Max(hi[k], v)
-		}
-	}
-	return math.Hypot(hi[0]-lo[0], hi[1]-lo[1])
-}
-
-// odd tells a chord that does not fit the design span, by a factor of feet to metres above all.
-func (s *sorter) odd(sp SpanPoints, d *Design) {
-	if d == nil || d.SpanLength == nil {
-		return
-	}
-	chord, what := extent(sp.Points), "points reach over"
-	if sp.A != nil && sp.B != nil {
-		chord, what = math.Hypot(sp.A.E-sp.B.E, sp.A.N-sp.B.N), "supports are apart by"
-	}
-	ratio := chord / d.SpanLength.Value
-	add := func(text string) {
-		s.survey.Notices = append(s.survey.Notices, Notice{File: s.survey.File, Text: fmt.Sprintf("cable %s: the surveyed %s %.3f m, the design span is %.3f m: %s", quote(sp.Cable), what, chord, d.SpanLength.Value, text)})
-	}
-	switch {
-	case math.Abs(ratio*foot-1) < 0.05:
-		add("the file may be in feet: say --unit ft or us-ft")
-	case math.Abs(ratio/foot-1) < 0.02 && sp.A != nil && sp.B != nil:
-		add("the file may be in metres: check --unit and the units in the header")
-	case ratio > 1.01, ratio < 0.99 && sp.A != nil && sp.B != nil:
-		add("check the codes, the units and the cables file")
-	}
 }

@@ -58,8 +58,8 @@ func (p *designParser) number(column, cell string) (v float64, ok bool) {
 	}
 	v, fault := parseNumber([]byte(cell), p.reader.mark)
 	if fault != "" {
-		expected, mend := fault.describe(cell, p.reader.mark)
-		p.problem(column, cell, expected, strings.ReplaceAll(mend, ", or say --decimal comma if the whole file has decimal commas", ", or part the cells by semicolons"))
+		expected, mend := fault.describe(p.reader.mark, inDesigns)
+		p.problem(column, cell, expected, mend)
 		return 0, false
 	}
 	return v, true
@@ -107,7 +107,7 @@ func (p *designParser) temperature(column, cell string, degC float64) {
 	switch {
 	case degC < -zeroC:
 		p.problem(column, cell, "a temperature above absolute zero", "")
-	case degC < -80 || degC > 120:
+	case oddTemperature(degC):
 		p.notice(column, "a design temperature of %.0f °C is unusual: check its unit", degC)
 	}
 }

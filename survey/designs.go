@@ -4,7 +4,6 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"math"
 	"os"
 	"strings"
 
@@ -305,19 +304,17 @@ func (d *designReader) columnUnit(h designHeader, name, cell, unitText string) b
 	return true
 }
 
+// nearestColumn is the known column with the most similar name.
 func nearestColumn(name string) string {
-	best, at := "", math.MaxInt
-	consider := func(c string) {
-		if n := editDistance(name, c); n < at || (n == at && c < best) {
-			best, at = c, n
+	known := map[string]bool{}
+	for c, col := range designColumns {
+		known[c] = true
+		if col.dim != Fraction {
+			known["u_"+c] = true
 		}
 	}
-	for c := range designColumns {
-		consider(c)
-		consider("u_" + c)
-	}
 	for _, c := range plainColumns {
-		consider(c)
+		known[c] = true
 	}
-	return best
+	return nearestOf(name, known)
 }

@@ -3,12 +3,15 @@ package survey
 import (
 	"bufio"
 	"bytes"
+	"compress/flate"
 	"compress/gzip"
 	"crypto/sha256"
 	"encoding/hex"
+	"errors"
 	"fmt"
 	"hash"
 	"io"
+	"strings"
 	"unicode/utf8"
 
 	"golang.org/x/text/encoding/charmap"
@@ -41,20 +44,27 @@ func open(r io.Reader, name, encoding string) (*source, error) {
 	s := &source{sum: sha256.New()}
 	s.raw = io.TeeReader(r, s.sum)
 	in := bufio.NewReaderSize(s.raw, headSize)
+	if err := noText(in, name); err != nil {
+		return nil, err
+	}
 	if magic, _ := in.Peek(2); bytes.Equal(magic, []byte{0x1f, 0x8b}) {
 		z, err := gzip.NewReader(in)
 		if err != nil {
-			return nil, fmt.Errorf("%s: cannot unpack: %w", name, err)
+			return nil, &InputError{Problems: []Problem{{File: name, Line: 1, Expected: "a gzip file", Mend: "it looks cut off or damaged: fetch it again"}}}
 		}
 		in = bufio.NewReaderSize(z, headSize)
 	}
 	head, err := in.Peek(headSize)
+	if cutShort(err) {
+		err = io.EOF // the reader of the rows tells it, with the line
+	}
 	if err != nil && err != io.EOF {
 		return nil, fmt.Errorf("%s: cannot read: %w", name, err)
 	}
 	if len(head) == 0 {
 		return nil, &InputError{Problems: []Problem{{File: name, Expected: "a survey or a table", Mend: "the file is empty"}}}
 	}
+	encoding = strings.ToLower(encoding)
 	if encoding == "" {
 		encoding, s.guesses = guessEncoding(head)
 	}
@@ -81,6 +91,31 @@ func open(r io.Reader, name, encoding string) (*source, error) {
 		return nil, fmt.Errorf("%s: unknown encoding %s, expected utf-8, utf-16le, utf-16be or windows-1252", name, quote(encoding))
 	}
 	return s, nil
+}
+
+// binaries are the first bytes of files that are often handed over in place of a text, and what to do about each.
+var binaries = []struct{ magic, what, mend string }{
+	{"PK\x03\x04", "a zip archive or a spreadsheet", "save the sheet as CSV, or unpack the archive"},
+	{"\xd0\xcf\x11\xe0", "an old spreadsheet or document", "save the sheet as CSV"},
+	{"%PDF", "a PDF", "ask for the table as CSV"},
+	{"LASF", "a laser point file", "export the points as CSV"},
+	{"\x28\xb5\x2f\xfd", "compressed with zstd", "unpack it first; only gzip is read straight"},
+}
+
+// noText refuses well-known binary files by name.
+func noText(in *bufio.Reader, name string) error {
+	for _, b := range binaries {
+		if head, _ := in.Peek(len(b.magic)); string(head) == b.magic {
+			return &InputError{Problems: []Problem{{File: name, Line: 1, Found: b.what, Expected: "text", Mend: b.mend}}}
+		}
+	}
+	return nil
+}
+
+// cutShort reports whether an error is that of a compressed file that ends too early or is damaged.
+func cutShort(err error) bool {
+	var corrupt flate.CorruptInputError
+	return errors.Is(err, io.ErrUnexpectedEOF) || errors.Is(err, gzip.ErrChecksum) || errors.Is(err, gzip.ErrHeader) || errors.As(err, &corrupt)
 }
 
 // guessEncoding goes by the byte-order mark, then by whether the head is valid UTF-8.

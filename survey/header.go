@@ -46,7 +46,7 @@ var headerFields = func() map[string]field {
 			m[n] = f
 		}
 	}
-	for f, names := range map[field][]string{fieldUEasting: {"e", "x", "east", "easting"}, fieldUNorthing: {"n", "y", "north", "northing"},
+	for f, names := range map[field][]string{fieldUEasting: {"e", "x", "east", "easting", "station"}, fieldUNorthing: {"n", "y", "north", "northing"},
 		fieldUElevation: {"z", "h", "elev", "elevation", "height"}} {
 		for _, p := range uPrefixes {
 			for _, n := range names {
@@ -102,6 +102,16 @@ func isHeader(cells []string) bool {
 		}
 	}
 	return numbers == 0 && (known >= 1 || len(cells) >= 2)
+}
+
+// namesPoint reports whether a header names all that a point needs.
+func namesPoint(cells []string) bool {
+	var has [fieldCount]bool
+	for _, c := range cells {
+		name, _ := cutUnit(c)
+		has[headerFields[bare(name)]] = true
+	}
+	return has[fieldElevation] && (has[fieldStation] || has[fieldEasting] && has[fieldNorthing])
 }
 
 // readHeader maps the cells of a header row to fields.
@@ -162,6 +172,12 @@ func (p *PointReader) checkFields(seen map[field]string, place func(col, found, 
 		place("", "", "either station or easting and northing", "rename one of them, for example to \"unused\"")
 	}
 	u := []bool{has(fieldUEasting), has(fieldUNorthing), has(fieldUElevation)}
+	if has(fieldStation) && u[2] && !u[0] {
+		p.guess("accuracy of the station", "exact", "the file gives a standard deviation for the elevation alone", "a column u_station")
+	}
+	if has(fieldStation) && u[0] && !u[2] {
+		place("", "", "a standard deviation for the elevation beside that of the station", "")
+	}
 	if slices.Contains(u, true) && slices.Contains(u, false) && !has(fieldStation) {
 		place("", "", "standard deviations for easting, northing and elevation, or for none", "")
 	}

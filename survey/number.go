@@ -3,6 +3,7 @@ package survey
 import (
 	"math"
 	"strconv"
+	"unicode"
 )
 
 // numberFault says why a text is not a number of a survey; "" when it is one.
@@ -115,31 +116,55 @@ func slowNumber(cell []byte, mark byte) (float64, numberFault) {
 	return v, ""
 }
 
-// wordFault tells NaN and Inf, which other parsers take, from plain text.
+// wordFault tells NaN and Inf, which other parsers take, and grouped digits from plain text.
 func wordFault(cell []byte) numberFault {
 	if v, err := strconv.ParseFloat(string(cell), 64); err == nil && (math.IsNaN(v) || math.IsInf(v, 0)) {
 		return faultNotFinite
 	}
+	grouped := false
+	for _, r := range string(cell) {
+		switch {
+		case r >= '0' && r <= '9', r == '.', r == ',', r == '-', r == '+':
+		case r == '_', r == '\'', r == '\u2019', unicode.IsSpace(r):
+			grouped = true
+		default:
+			return faultNotNumber
+		}
+	}
+	if grouped {
+		return faultGrouped
+	}
 	return faultNotNumber
 }
 
-// describe gives expectation and remedy for a fault in a cell.
-func (f numberFault) describe(cell string, mark byte) (expected, mend string) {
+// numberPlace is where a number stands: what mends it differs.
+type numberPlace int
+
+const (
+	inPoints numberPlace = iota
+	inDesigns
+	inText // a condition or a flag
+)
+
+// describe gives expectation and remedy for a fault in a number.
+func (f numberFault) describe(mark byte, at numberPlace) (expected, mend string) {
 	expected = "a number with a decimal point"
 	if mark == ',' {
 		expected = "a number with a decimal comma"
 	}
 	switch f {
 	case faultEmpty:
-		return "a number", "fill the cell or take the row out"
+		return "a number", [...]string{"fill the cell or take the row out", "fill the cell", ""}[at]
 	case faultComma:
-		return expected, "write a point for the comma, or say --decimal comma if the whole file has decimal commas"
+		return expected, "write a point for the comma" +
+			[...]string{", or say --decimal comma if the whole file has decimal commas", ", or part the cells by semicolons", ""}[at]
 	case faultPoint:
-		return expected, "write a comma for the point, or say --decimal point if the whole file has decimal points"
+		return expected, "write a comma for the point" +
+			[...]string{", or say --decimal point if the whole file has decimal points", "", ""}[at]
 	case faultGrouped:
 		return expected, "write it without grouping marks"
 	case faultNotFinite:
-		return "a finite number", "take the row out or measure the point again"
+		return "a finite number", [...]string{"take the row out or measure the point again", "empty the cell if the value is not known", ""}[at]
 	}
 	return expected, ""
 }

@@ -10,11 +10,12 @@ import (
 	"strings"
 )
 
-// PointOptions say how a point file is to be understood. Empty fields are found from the file and reported as guesses.
+// PointOptions say how a point file is to be understood. Empty fields are found from the file and reported as guesses; what is
+// given here counts over what a comment line of the file says, and a contradiction is reported as a notice.
 type PointOptions struct {
 	Name      string     // of the file, for messages
-	Order     string     // columns of a headerless file: letters P N E Z D S and -
-	Separator string     // comma, semicolon, tab or blanks
+	Order     string     // columns of a headerless file: letters P N E Z D S and -; with a header that is understood it is not used
+	Separator string     // comma, semicolon, tab or blanks, or the character itself
 	Decimal   string     // point or comma
 	Encoding  string     // utf-8, utf-16le, utf-16be or windows-1252
 	Unit      string     // of lengths whose column does not say it: m, mm, cm, ft, us-ft; "" = m
@@ -27,6 +28,10 @@ type PointOptions struct {
 
 // farthest is the largest coordinate, m, that a survey can hold.
 const farthest = 1e8
+
+// leastSigma is the smallest standard deviation, m, that is taken as one: no instrument is better, and squares of much smaller ones
+// vanish.
+const leastSigma = 1e-9
 
 // PointReader reads a point file row by row and holds one row at a time, whatever the size of the file.
 type PointReader struct {
@@ -46,22 +51,28 @@ type PointReader struct {
 	rows       int
 	flat       bool
 	hasCodes   bool
-	code       []byte // of the last point, valid until the next
+	settled    bool              // columns and units are settled: conditions that would change them come too late
+	above      string            // the last comment line before the first row
+	codes      map[string]string // codes seen, so that a row with a known code allocates nothing
+	last       [2]int            // bytes in the last cell of the row in hand and of the one before
 }
+
+// mostCodes is the number of different codes that are kept for reuse; a column of free text has no end of them.
+const mostCodes = 10_000
 
 func (p *PointReader) guess(what, taken, why, setBy string) {
 	p.guesses = append(p.guesses, Guess{What: what, Taken: taken, Why: why, SetBy: setBy})
 }
 
-// NewPointReader opens a point file: encoding, separator, header and units are settled before it returns. Conditions at the
-// top of the file are read; those further down are read as they come. The error is an *InputError for a file that is not
-// understood.
+// NewPointReader opens a point file: encoding, separator, header and units are settled before it returns, and with them every
+// guess. Conditions at the top of the file are read; those further down are read as they come. The error is an *InputError for
+// a file that is not understood and another error for an option that is not.
 func NewPointReader(r io.Reader, o PointOptions) (*PointReader, error) {
 	src, err := open(r, o.Name, o.Encoding)
 	if err != nil {
 		return nil, err
 	}
-	p := &PointReader{opts: o, src: src, rec: newRecords(src.text, o.Name), guesses: src.guesses}
+	p := &PointReader{opts: o, src: src, rec: newRecords(src.text, o.Name), guesses: src.guesses, codes: map[string]string{}}
 	if err := p.settleDialect(); err != nil {
 		return nil, err
 	}
@@ -75,7 +86,11 @@ func NewPointReader(r io.Reader, o PointOptions) (*PointReader, error) {
 	if err := p.settleColumns(cells); err != nil {
 		return nil, err
 	}
-	return p, p.settleUnit()
+	if err := p.settleUnit(); err != nil {
+		return nil, err
+	}
+	p.settled = true
+	return p, nil
 }
 
 func (p *PointReader) settleDialect() error {
@@ -116,20 +131,26 @@ func (p *PointReader) settleColumns(cells [][]byte) error {
 	}
 	header := isHeader(text)
 	switch {
-	case header:
+	case header && (p.opts.Order == "" || namesPoint(text)):
 		if p.opts.Order != "" {
-			p.notices = append(p.notices, Notice{File: p.opts.Name, Line: p.rec.line, Text: "the file has a header: --order is not used"})
+			p.notice(p.rec.line, "", "the file has a header: --order is not used")
 		}
 		if err := p.readHeader(text); err != nil {
 			return err
 		}
 	case p.opts.Order != "":
+		if header {
+			p.notice(p.rec.line, "", "the first row %s is no header that is known: it is passed over and --order counts", quote(strings.Join(text, ", ")))
+		}
 		if err := p.useOrder(p.opts.Order, len(cells)); err != nil {
 			return err
 		}
 	case len(cells) == 2:
 		p.columns = []column{{field: fieldStation}, {field: fieldElevation}}
 		p.guess("columns", "station, elevation", "there is no header and there are two columns of numbers", "a header, or --order SZ")
+	case p.headerAbove(len(cells)):
+		return &InputError{Problems: []Problem{{File: p.opts.Name, Line: p.rec.line, Found: shown(cells, p.dialect.separator), Expected: "a header that names the columns",
+			Mend: "the comment line " + quote(p.above) + " looks like one: take its # away"}}}
 	default:
 		return &InputError{Problems: []Problem{{File: p.opts.Name, Line: p.rec.line, Found: shown(cells, p.dialect.separator), Expected: "a header that names the columns",
 			Mend: "add one (for example point,northing,easting,elevation,code), or say the order, for example " + suggestOrder(text)}}}
@@ -145,6 +166,20 @@ func (p *PointReader) settleColumns(cells [][]byte) error {
 		p.hasCodes = p.hasCodes || c.field == fieldCode
 	}
 	return nil
+}
+
+// headerAbove reports whether the last comment line before the first row names as many columns as the row has.
+func (p *PointReader) headerAbove(cells int) bool {
+	rec := &records{separator: p.dialect.separator}
+	var names []string
+	for _, c := range rec.split([]byte(strings.TrimLeft(p.above, "# \t"))) {
+		names = append(names, string(c))
+	}
+	return len(names) == cells && namesPoint(names)
+}
+
+func (p *PointReader) notice(line int, column, format string, args ...any) {
+	p.notices = append(p.notices, Notice{File: p.opts.Name, Line: line, Column: column, Text: fmt.Sprintf(format, args...)})
 }
 
 // suggestOrder is an order that fits the count and kind of cells of a first row.
@@ -170,6 +205,12 @@ func (p *PointReader) settleUnit() error {
 		if c.factor == 0 && (c.field >= fieldEasting && c.field <= fieldStation || c.field >= fieldUEasting) {
 			bareColumns++
 		}
+	}
+	if written := p.conditions.unit; written != "" && p.opts.Unit != "" && !sameUnit(written, p.opts.Unit) {
+		p.notice(0, "", "--unit %s replaces the unit %s that the file names", p.opts.Unit, written)
+	}
+	if p.unitName != "" && bareColumns == 0 {
+		p.notice(0, "", "every column has its unit in the header: unit %s is not used", p.unitName)
 	}
 	if p.unitName == "" {
 		p.unitName = "m"
@@ -197,15 +238,33 @@ func (p *PointReader) settleUnit() error {
 	return nil
 }
 
+// sameUnit reports whether two spellings are of one unit of length.
+func sameUnit(a, b string) bool {
+	u, _ := findUnit(a, Length)
+	v, _ := findUnit(b, Length)
+	return u == v
+}
+
+// settling are the conditions on which the meaning of the rows rests; they cannot change below the first row.
+var settling = map[string]bool{"unit": true, "units": true, "structure": true, "cable": true, "span": true}
+
 // comment reads a "# key: value" line.
 func (p *PointReader) comment(line int, text []byte) {
-	key, value, ok := strings.Cut(strings.TrimSpace(strings.TrimLeft(string(text), "#")), ":")
+	words := strings.TrimSpace(strings.TrimLeft(string(text), "#"))
+	if !p.settled {
+		p.above = string(text)
+	}
+	key, value, ok := strings.Cut(words, ":")
 	if !ok {
 		return // plain words
 	}
 	key = strings.ToLower(strings.TrimSpace(key))
 	if !conditionKeys[key] {
-		p.conditions.Notes = append(p.conditions.Notes, strings.TrimSpace(strings.TrimLeft(string(text), "#")))
+		p.unknownKey(line, key, words)
+		return
+	}
+	if p.settled && settling[key] && !p.conditions.set[key] {
+		p.problems.add(Problem{File: p.opts.Name, Line: line, Column: key, Found: words, Expected: "this line above the header", Mend: "move it to the top: the rows above it were read without it"})
 		return
 	}
 	value = strings.TrimSpace(value)
@@ -217,23 +276,38 @@ func (p *PointReader) comment(line int, text []byte) {
 	}
 }
 
-// Next is the next good point, or io.EOF at the end. Rows with problems are collected and passed over; Close tells them.
-// The point's Code is only set when withCode asked for it through the reader's owner; ids are copied.
+// unknownKey keeps a line as a note. One whose key is almost that of a condition was meant to count.
+func (p *PointReader) unknownKey(line int, key, words string) {
+	p.conditions.Notes = append(p.conditions.Notes, words)
+	if near := nearestOf(key, conditionKeys); len(key) <= 40 && editDistance(key, near) <= 2 && len(near) > 3 {
+		p.notice(line, "", "%s is kept as a note and counts nowhere: did you mean %s?", quote(words), quote(near+":"))
+	} else if len(p.conditions.Notes) <= mostListed {
+		p.notice(line, "", "%s is no condition that is known: kept as a note", quote(words))
+	}
+}
+
+// Next is the next good point, in metres. Rows with problems are passed over and collected: after the last row Next returns an
+// *InputError that lists them, or io.EOF when there are none, and returns the same again if it is asked again. An input that
+// cannot be read ends with its own error. One row is held at a time; in the steady state nothing is allocated but the id.
 func (p *PointReader) Next() (Point, error) {
+	pt, err := p.next()
+	if err == io.EOF {
+		if problems := p.problems.orNil(); problems != nil {
+			return pt, problems
+		}
+	}
+	return pt, err
+}
+
+// next is Next without the problems.
+func (p *PointReader) next() (Point, error) {
 	for {
 		cells, line := p.first, p.firstLine
 		p.first = nil
 		if cells == nil {
 			var err error
 			if cells, err = p.rec.read(p.comment); err != nil {
-				var input *InputError
-				if !errors.As(err, &input) {
-					return Point{}, err
-				}
-				for _, problem := range input.Problems {
-					p.problems.add(problem)
-				}
-				return Point{}, io.EOF // after a broken line the rows cannot be trusted
+				return Point{}, p.ending(err)
 			}
 			line = p.rec.line
 		}
@@ -244,13 +318,61 @@ func (p *PointReader) Next() (Point, error) {
 	}
 }
 
+// ending turns the error that ended the rows into io.EOF or into what the caller is told.
+func (p *PointReader) ending(err error) error {
+	var input *InputError
+	switch {
+	case err == io.EOF:
+		return err
+	case errors.As(err, &input): // after a broken line the rows cannot be trusted
+		p.problems.join(input)
+		p.rec.stop()
+		return io.EOF
+	case cutShort(err):
+		p.problems.add(Problem{File: p.opts.Name, Line: p.rec.line, Expected: "the rest of the compressed file", Mend: "it looks cut off or damaged: fetch it again"})
+		p.rec.stop()
+		return io.EOF
+	}
+	return fmt.Errorf("%s: cannot read: %w", p.opts.Name, err)
+}
+
+// Header says how each column of the file was understood, in file order.
+func (p *PointReader) Header() (out []HeaderUse) {
+	for i, c := range p.columns {
+		out = append(out, HeaderUse{Column: i + 1, Name: c.name, Field: fieldNames[c.field], Unit: c.unit})
+	}
+	return out
+}
+
+// Conditions are the circumstances of the visit as far as the file has been read.
+func (p *PointReader) Conditions() Conditions { return p.conditions }
+
+// Guesses are what the reader had to infer; they do not change after NewPointReader.
+func (p *PointReader) Guesses() []Guess { return p.guesses }
+
+// Notices are what deserves a look, as far as the file has been read.
+func (p *PointReader) Notices() []Notice { return p.notices }
+
+// Rows is the number of data rows read, good and bad.
+func (p *PointReader) Rows() int { return p.rows }
+
+// SHA256 is the digest of all bytes of the input as received, hexadecimal. What is left unread is read first, so it is
+// asked for after the last point. The error is one of reading.
+func (p *PointReader) SHA256() (string, error) {
+	sum, err := p.src.hashed()
+	if err != nil {
+		return "", fmt.Errorf("%s: cannot read: %w", p.opts.Name, err)
+	}
+	return sum, nil
+}
+
 // point makes a point of a row.
 func (p *PointReader) point(cells [][]byte, line int) (pt Point, ok bool) {
 	if len(cells) != len(p.columns) {
 		return pt, p.badRow(cells, line)
 	}
 	pt.Line = line
-	p.code = nil
+	p.last[1], p.last[0] = p.last[0], len(cells[len(cells)-1])
 	var u [3]float64
 	bad := len(p.problems.Problems) + p.problems.More
 	for i, c := range p.columns {
@@ -260,7 +382,7 @@ func (p *PointReader) point(cells [][]byte, line int) (pt Point, ok bool) {
 		case fieldID:
 			pt.ID = string(cell)
 		case fieldCode:
-			p.code = cell
+			pt.Code = p.codeOf(cell)
 		default:
 			v := p.number(cell, c, i, line)
 			switch c.field {
@@ -273,7 +395,7 @@ func (p *PointReader) point(cells [][]byte, line int) (pt Point, ok bool) {
 			default:
 				u[c.field-fieldUEasting] = v
 				pt.HasCov = true
-				if !(v > 0) {
+				if !(v >= leastSigma) {
 					p.trouble(line, c, i, string(cell), "a standard deviation above 0", "")
 				}
 			}
@@ -283,10 +405,22 @@ func (p *PointReader) point(cells [][]byte, line int) (pt Point, ok bool) {
 	return pt, len(p.problems.Problems)+p.problems.More == bad
 }
 
+// codeOf is a code as a string, one for all rows that carry it.
+func (p *PointReader) codeOf(cell []byte) string {
+	code, ok := p.codes[string(cell)]
+	if !ok {
+		code = string(cell)
+		if len(p.codes) < mostCodes {
+			p.codes[code] = code
+		}
+	}
+	return code
+}
+
 func (p *PointReader) number(cell []byte, c column, i, line int) float64 {
 	v, fault := parseNumber(cell, p.dialect.mark)
 	if fault != "" {
-		expected, mend := fault.describe(string(cell), p.dialect.mark)
+		expected, mend := fault.describe(p.dialect.mark, inPoints)
 		if fault == faultEmpty {
 			p.trouble(line, c, i, "", expected+", the cell is empty", mend)
 		} else {
@@ -315,6 +449,8 @@ func (p *PointReader) badRow(cells [][]byte, line int) bool {
 	switch {
 	case len(cells) < len(p.columns) && p.rec.ended:
 		problem.Mend = "the file ends here without a line end: it looks cut off, fetch it again"
+	case len(cells) > len(p.columns) && emptyBeyond(cells, len(p.columns)):
+		problem.Mend = "name the empty columns in the header too, or take the separators at the end of the row away"
 	case len(cells) > len(p.columns) && p.dialect.separator == ',':
 		problem.Mend = "a comma inside a cell needs quotes; for decimal commas the separator must be a semicolon or a tab"
 	case len(cells) > len(p.columns) && p.dialect.separator == ' ':
@@ -324,8 +460,18 @@ func (p *PointReader) badRow(cells [][]byte, line int) bool {
 	return false
 }
 
+func emptyBeyond(cells [][]byte, n int) bool {
+	for _, c := range cells[n:] {
+		if len(c) > 0 {
+			return false
+		}
+	}
+	return true
+}
+
 // ReadPoints reads a whole survey: points sorted by cable, span and role, with everything that was assumed. The error is an
-// *InputError that lists every problem with its place; nothing is returned then.
+// *InputError that lists every problem with its place; nothing is returned then. Every data row ends in exactly one place of the survey: the points
+// or a support of a span, Control, Ground or Ignored.
 func ReadPoints(r io.Reader, o PointOptions) (*Survey, error) {
 	p, err := NewPointReader(r, o)
 	if err != nil {

@@ -78,6 +78,14 @@ func (e *InputError) add(p Problem) {
 	}
 }
 
+// join adds the problems of another error.
+func (e *InputError) join(other *InputError) {
+	for _, p := range other.Problems {
+		e.add(p)
+	}
+	e.More += other.More
+}
+
 // orNil is the error, or nil when there is no problem.
 func (e *InputError) orNil() error {
 	if len(e.Problems) == 0 {

@@ -10,6 +10,9 @@ import (
 // longestLine is the limit on one line, bytes; a longer one is no survey.
 const longestLine = 1 << 20
 
+// endOfText is the character (Ctrl-Z) with which old instruments and editors close a text file.
+const endOfText = 0x1a
+
 // records splits text into lines and lines into cells. It keeps the number of the file's line, whatever the line ends, and
 // hands out slices that are valid until the next record: nothing is allocated for a plain row.
 type records struct {
@@ -58,6 +61,9 @@ func (r *records) readLine() ([]byte, error) {
 	return bytes.TrimSuffix(line, []byte("\r")), nil
 }
 
+// stop makes every further read end.
+func (r *records) stop() { r.in.Reset(bytes.NewReader(nil)) }
+
 // fault is a problem of a line as a whole.
 func (r *records) fault(expected, mend string) error {
 	return &InputError{Problems: []Problem{{File: r.name, Line: r.line, Expected: expected, Mend: mend}}}
@@ -72,7 +78,7 @@ func (r *records) read(comment func(line int, text []byte)) ([][]byte, error) {
 			return nil, err
 		}
 		text := bytes.TrimSpace(line)
-		if len(text) == 0 {
+		if len(text) == 0 || text[0] == endOfText && len(text) == 1 {
 			continue
 		}
 		if text[0] == '#' {
@@ -106,7 +112,8 @@ func (r *records) split(line []byte) [][]byte {
 	for {
 		i := bytes.IndexByte(line, r.separator)
 		if i < 0 {
-			return append(r.cells, trim(line))
+			r.cells = append(r.cells, trim(line))
+			return r.cells
 		}
 		r.cells = append(r.cells, trim(line[:i]))
 		line = line[i+1:]
@@ -145,7 +152,7 @@ func trim(cell []byte) []byte {
 // quoted parts a record with quoted cells by RFC 4180; a quoted cell may hold separators, doubled quotes and line ends.
 func (r *records) quoted(line []byte) ([][]byte, error) {
 	r.joined = append(r.joined[:0], line...)
-	for bytes.Count(r.joined, []byte{'"'})%2 == 1 {
+	for quotes := bytes.Count(line, []byte{'"'}); quotes%2 == 1; {
 		if len(r.joined) > longestLine {
 			return nil, r.fault("a closing quote", "add it")
 		}
@@ -157,6 +164,7 @@ func (r *records) quoted(line []byte) ([][]byte, error) {
 			return nil, err
 		}
 		r.joined = append(append(r.joined, '\n'), more...)
+		quotes += bytes.Count(more, []byte{'"'})
 	}
 	r.cells, r.unquoted = r.cells[:0], r.unquoted[:0]
 	rest := r.joined

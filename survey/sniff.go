@@ -15,7 +15,7 @@ var separatorNames = map[byte]string{',': "comma", ';': "semicolon", '\t': "tab"
 
 func separatorByName(name string) (byte, bool) {
 	for b, n := range separatorNames {
-		if n == name {
+		if n == name || string(rune(b)) == name {
 			return b, true
 		}
 	}
@@ -26,7 +26,7 @@ func separatorByName(name string) (byte, bool) {
 // cells and the most columns of numbers wins; then the mark that the numbers use.
 func sniff(head []byte, returns bool) (dialect, bool) {
 	lines := sampleLines(head, returns)
-	best, bestScore := dialect{',', '.'}, -1
+	best, bestScore := dialect{',', '.'}, 0
 	for _, sep := range []byte{'\t', ';', ',', ' '} {
 		d, score := weigh(lines, sep)
 		if score > bestScore {
@@ -48,7 +48,7 @@ func sampleLines(head []byte, returns bool) (out []string) {
 	}
 	for _, l := range lines {
 		l = strings.TrimRight(l, "\r")
-		if t := strings.TrimSpace(l); t == "" || t[0] == '#' {
+		if t := strings.TrimSpace(l); t == "" || t[0] == '#' || t == string(rune(endOfText)) {
 			continue
 		}
 		if out = append(out, l); len(out) == 200 {

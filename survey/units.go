@@ -33,23 +33,43 @@ const (
 	fahrenFac = 5.0 / 9
 )
 
-// units is the one table of units: every spelling that a header, a flag or a condition may use.
+// units is the one table of units: every spelling that a header, a flag or a condition may use, in lower case and without
+// blanks. Factors are exact by definition: NIST SP 811 (2008), app. B, and NIST HB 44, app. C, for the US survey foot.
 var units = map[Dimension]map[string]unit{
-	Length: {"m": {1, 0}, "mm": {1e-3, 0}, "cm": {1e-2, 0}, "km": {1e3, 0}, "ft": {foot, 0}, "us-ft": {surveyFt, 0}, "usft": {surveyFt, 0},
-		"ftus": {surveyFt, 0}, "in": {foot / 12, 0}},
-	Force: {"n": {1, 0}, "kn": {1e3, 0}, "mn": {1e6, 0}, "lbf": {poundF, 0}, "lb": {poundF, 0}, "kip": {1e3 * poundF, 0}, "kgf": {gravity, 0}},
-	ForcePerLength: {"n/m": {1, 0}, "kn/m": {1e3, 0}, "kg/m": {gravity, 0}, "kgf/m": {gravity, 0}, "lbf/ft": {poundF / foot, 0},
-		"lb/ft": {poundF / foot, 0}, "kip/ft": {1e3 * poundF / foot, 0}},
-	Temperature:    {"degc": {1, 0}, "c": {1, 0}, "°c": {1, 0}, "degf": {fahrenFac, -32 * fahrenFac}, "f": {fahrenFac, -32 * fahrenFac}, "°f": {fahrenFac, -32 * fahrenFac}, "k": {1, -zeroC}},
-	PerTemperature: {"1/degc": {1, 0}, "1e-6/degc": {1e-6, 0}, "1/°c": {1, 0}, "1e-6/°c": {1e-6, 0}, "1/k": {1, 0}, "1e-6/k": {1e-6, 0}, "1/degf": {1 / fahrenFac, 0}, "1e-6/degf": {1e-6 / fahrenFac, 0}},
+	Length: {"m": {1, 0}, "metre": {1, 0}, "metres": {1, 0}, "meter": {1, 0}, "meters": {1, 0}, "mm": {1e-3, 0}, "cm": {1e-2, 0}, "km": {1e3, 0},
+		"ft": {foot, 0}, "foot": {foot, 0}, "feet": {foot, 0}, "ift": {foot, 0}, "intlft": {foot, 0}, "in": {foot / 12, 0}, "inch": {foot / 12, 0},
+		"us-ft": {surveyFt, 0}, "usft": {surveyFt, 0}, "ftus": {surveyFt, 0}, "sft": {surveyFt, 0}, "ussurveyft": {surveyFt, 0},
+		"ussurveyfoot": {surveyFt, 0}, "ussurveyfeet": {surveyFt, 0}},
+	Force: {"n": {1, 0}, "dan": {10, 0}, "kn": {1e3, 0}, "mn": {1e6, 0}, "lbf": {poundF, 0}, "lb": {poundF, 0}, "lbs": {poundF, 0},
+		"kip": {1e3 * poundF, 0}, "kips": {1e3 * poundF, 0}, "kgf": {gravity, 0}},
+	ForcePerLength: {"n/m": {1, 0}, "dan/m": {10, 0}, "kn/m": {1e3, 0}, "n/mm": {1e3, 0}, "kg/m": {gravity, 0}, "kgf/m": {gravity, 0},
+		"kg/km": {gravity / 1e3, 0}, "lbf/ft": {poundF / foot, 0}, "lb/ft": {poundF / foot, 0}, "plf": {poundF / foot, 0},
+		"kip/ft": {1e3 * poundF / foot, 0}, "klf": {1e3 * poundF / foot, 0}},
+	Temperature: {"degc": {1, 0}, "c": {1, 0}, "°c": {1, 0}, "degf": {fahrenFac, -32 * fahrenFac}, "f": {fahrenFac, -32 * fahrenFac},
+		"°f": {fahrenFac, -32 * fahrenFac}, "k": {1, -zeroC}},
+	PerTemperature: expansions(),
 	Fraction:       {"%": {0.01, 0}, "1": {1, 0}},
+}
+
+// expansions are the units of thermal expansion: a power of ten per degree, in the usual spellings.
+func expansions() map[string]unit {
+	m := map[string]unit{}
+	for degree, f := range map[string]float64{"degc": 1, "°c": 1, "k": 1, "degf": 1 / fahrenFac, "°f": 1 / fahrenFac} {
+		for _, one := range []string{"1/", "/"} {
+			m[one+degree] = unit{f, 0}
+		}
+		for _, millionth := range []string{"1e-6/", "10^-6/", "e-6/", "ppm/"} {
+			m[millionth+degree] = unit{1e-6 * f, 0}
+		}
+	}
+	return m
 }
 
 // spellings lists the units of a dimension for messages, in a fixed order.
 var spellings = map[Dimension]string{
 	Length:         "m, mm, cm, km, ft, us-ft or in",
-	Force:          "N, kN, MN, lbf, kip or kgf",
-	ForcePerLength: "N/m, kN/m, kg/m, lbf/ft or kip/ft (a mass counts with standard gravity 9.80665 m/s2)",
+	Force:          "N, daN, kN, MN, lbf, kip or kgf",
+	ForcePerLength: "N/m, daN/m, kN/m, kg/m, lbf/ft or kip/ft (a mass counts with standard gravity 9.80665 m/s2)",
 	Temperature:    "degC, degF or K",
 	PerTemperature: "1/degC, 1e-6/degC, 1/K, 1e-6/K or 1/degF",
 	Fraction:       "%",
@@ -68,34 +88,36 @@ func findUnit(text string, d Dimension) (unit, bool) {
 }
 
 // ParseQuantity reads a value with its unit and, if given, its standard uncertainty: "12 +- 2 degC", "50 N/m ± 2 %",
-// "3 mm". The unit must be of the given dimension and must be written; the result is in SI (temperatures in degC). The
-// uncertainty of a temperature is a difference: 2 degF is 1.1 degC.
+// "180 +/- 10 N/m", "3 mm". The unit must be of the given dimension and must be written; the result is in SI (temperatures in
+// degC) and finite. A value without +- has u = 0, which means exact. It may have a unit of its own of the same dimension ("1 kN +- 20 N"); for a temperature it
+// is a difference: 2 degF is 1.1 degC, 2 K is 2 degC, and % of a temperature means nothing and is refused. Nothing is guessed.
+// Errors say what was found, what was expected and how to mend it.
 func ParseQuantity(text string, d Dimension) (Quantity, error) {
 	value, spread, hasSpread := cutSpread(text)
 	number, name := splitUnit(value)
+	example := fmt.Sprintf("write for example \"12 %s\"", usual[d])
 	v, fault := parseNumber([]byte(number), '.')
 	if fault != "" {
-		expected, mend := fault.describe(number, '.')
+		expected, mend := fault.describe('.', inText)
+		if mend == "" {
+			mend = example
+		}
 		return Quantity{}, wrong(text, expected, mend)
 	}
 	var s float64
-	relative := false
+	var spreadUnit string
 	if hasSpread {
-		sn, su := splitUnit(spread)
+		var sn string
+		sn, spreadUnit = splitUnit(spread)
 		if s, fault = parseNumber([]byte(sn), '.'); fault != "" {
-			expected, mend := fault.describe(sn, '.')
+			expected, mend := fault.describe('.', inText)
 			return Quantity{}, wrong(text, expected+" after +-", mend)
 		}
-		if s < 0 {
+		if !(s >= 0) {
 			return Quantity{}, wrong(text, "an uncertainty of 0 or more", "")
 		}
-		switch {
-		case su == "%" && d != Fraction && name != "":
-			relative = true
-		case name == "":
-			name = su
-		case su != "" && !strings.EqualFold(su, name):
-			return Quantity{}, wrong(text, "one unit for value and uncertainty", "")
+		if name == "" {
+			name, spreadUnit = spreadUnit, ""
 		}
 	}
 	if name == "" {
@@ -105,9 +127,20 @@ func ParseQuantity(text string, d Dimension) (Quantity, error) {
 	if !ok {
 		return Quantity{}, wrong(text, "a unit of "+string(d)+" ("+spellings[d]+")", "")
 	}
-	q := Quantity{Value: v*u.factor + u.offset, U: s * u.factor}
-	if relative {
+	q := Quantity{Value: v*u.factor + u.offset}
+	switch {
+	case spreadUnit == "":
+		q.U = s * u.factor
+	case spreadUnit == "%" && d == Temperature:
+		return Quantity{}, wrong(text, "an uncertainty in degrees", "per cent of a temperature depends on where the scale begins")
+	case spreadUnit == "%" && d != Fraction:
 		q.U = math.Abs(q.Value) * s / 100
+	default:
+		su, ok := findUnit(spreadUnit, d)
+		if !ok {
+			return Quantity{}, wrong(text, "after +- a unit of "+string(d)+" ("+spellings[d]+") or none", "")
+		}
+		q.U = s * su.factor
 	}
 	if math.IsInf(q.Value, 0) || math.IsInf(q.U, 0) {
 		return Quantity{}, wrong(text, "a finite number", "")
@@ -128,7 +161,7 @@ func cutSpread(text string) (value, spread string, ok bool) {
 	return strings.TrimSpace(text), "", false
 }
 
-// splitUnit parts "12.5 kN/m" into number and unit; "1e-6/degC" style units begin after a blank.
+// splitUnit parts "12.5 kN/m" into number and unit; a unit that begins with a digit, such as 1e-6/degC, needs a blank before it.
 func splitUnit(text string) (number, name string) {
 	if i := strings.IndexAny(text, " \t"); i >= 0 {
 		return text[:i], strings.TrimSpace(text[i:])
