@@ -7,8 +7,19 @@ import (
 )
 
 // conditionKeys are the keys that a "# key: value" line of a survey file may have.
-var conditionKeys = map[string]bool{"structure": true, "date": true, "temperature": true, "cable temperature": true, "wind": true, "loads": true, "load": true, "reading": true,
-	"instrument": true, "accuracy": true, "crew": true, "unit": true, "units": true, "cable": true, "span": true, "note": true}
+var conditionKeys = map[string]bool{"structure": true, "date": true, "temperature": true, "wind": true, "loads": true, "load": true, "reading": true,
+	"instrument": true, "accuracy": true, "crew": true, "unit": true, "cable": true, "span": true, "note": true}
+
+// conditionKey is the one spelling of a key.
+func conditionKey(key string) string {
+	switch key = strings.ToLower(strings.TrimSpace(key)); key {
+	case "units":
+		return "unit"
+	case "cable temperature":
+		return "temperature"
+	}
+	return key
+}
 
 // Set gives one condition by its key, as it stands in a survey file or a flag:
 //
@@ -22,11 +33,10 @@ var conditionKeys = map[string]bool{"structure": true, "date": true, "temperatur
 //	unit          of coordinates
 //	cable, span   that all points of the file are on
 //
-// A key given twice with different values is refused, and so is a list of loads beside "as filed" or "not checked".
+// "cable temperature" and "units" are the same as temperature and unit. Quantities take the units of ParseQuantity; a value without
+// +- is exact. A load means "loads: listed". A key given twice with different values is refused, and so is a list of loads beside "as filed" or "not checked".
 func (c *Conditions) Set(key, value string) error {
-	if key == "cable temperature" {
-		key = "temperature"
-	}
+	key, value = conditionKey(key), strings.TrimSpace(value)
 	if key == "note" {
 		c.Notes = append(c.Notes, value)
 		return nil
@@ -38,7 +48,15 @@ func (c *Conditions) Set(key, value string) error {
 		c.set = map[string]bool{}
 	}
 	again := c.set[key]
+	if err := c.put(key, value, again); err != nil {
+		return err
+	}
 	c.set[key] = true
+	return nil
+}
+
+// put stores one condition; again is true when the key was given before.
+func (c *Conditions) put(key, value string, again bool) error {
 	switch key {
 	case "structure":
 		return words(&c.Structure, value, again, key)
@@ -52,7 +70,7 @@ func (c *Conditions) Set(key, value string) error {
 		return words(&c.cable, value, again, key)
 	case "span":
 		return words(&c.span, value, again, key)
-	case "unit", "units":
+	case "unit":
 		if _, ok := findUnit(value, Length); !ok {
 			return wrong(value, "a unit of length ("+spellings[Length]+")", "")
 		}
@@ -126,7 +144,10 @@ func (c *Conditions) setAccuracy(value string, again bool) error {
 		if err != nil {
 			return err
 		}
-		if !(q.Value > 0) || q.Value > 10 {
+		if q.U != 0 {
+			return wrong(part, "a standard deviation without one of its own", "write for example \"3 mm\"")
+		}
+		if !(q.Value >= leastSigma) || q.Value > 10 {
 			return wrong(part, "a standard deviation between 0 and 10 m", "")
 		}
 		for _, v := range into {
@@ -170,13 +191,8 @@ func (c *Conditions) addLoad(value string) error {
 	if len(parts) < 3 {
 		return wrong(value, form, "")
 	}
-	l := ListedLoad{Cable: parts[0]}
-	if l.Cable == "*" {
-		l.Cable = ""
-	}
-	if cable, span, ok := strings.Cut(l.Cable, "/"); ok {
-		l.Cable, l.Span = strings.TrimSpace(cable), strings.TrimSpace(span)
-	}
+	var l ListedLoad
+	l.Cable, l.Span = cutCable(parts[0])
 	q, err := ParseQuantity(parts[1], ForcePerLength)
 	if err != nil {
 		return err
@@ -193,9 +209,23 @@ func (c *Conditions) addLoad(value string) error {
 	if c.Loads != "" && c.Loads != LoadsListed {
 		return wrong(value, fmt.Sprintf("no list of loads beside \"loads: %s\"", c.Loads), "write \"loads: listed\", or take the load line out")
 	}
+	for _, other := range c.Listed {
+		if strings.EqualFold(other.Cable, l.Cable) && strings.EqualFold(other.Span, l.Span) && other.Load == l.Load && other.Spread == l.Spread && other.What == l.What {
+			return wrong(value, "each load once", "take one of the two out, or say in words what tells them apart")
+		}
+	}
 	c.Loads = LoadsListed
 	c.Listed = append(c.Listed, l)
 	return nil
+}
+
+// cutCable parts "CABLE/SPAN"; "*" is every cable.
+func cutCable(text string) (cable, span string) {
+	if text == "*" {
+		return "", ""
+	}
+	cable, span, _ = strings.Cut(text, "/")
+	return strings.TrimSpace(cable), strings.TrimSpace(span)
 }
 
 // addReading reads one direct reading of tension.
@@ -208,13 +238,8 @@ func (c *Conditions) addReading(value string) error {
 	if len(parts) < 3 {
 		return wrong(value, form, "")
 	}
-	r := Reading{Cable: parts[0], Of: ReadOf(strings.ReplaceAll(strings.ReplaceAll(strings.ToLower(parts[1]), "at a", "at A"), "at b", "at B"))}
-	if r.Cable == "*" {
-		r.Cable = ""
-	}
-	if cable, span, ok := strings.Cut(r.Cable, "/"); ok {
-		r.Cable, r.Span = strings.TrimSpace(cable), strings.TrimSpace(span)
-	}
+	r := Reading{Of: ReadOf(strings.ReplaceAll(strings.ReplaceAll(strings.ToLower(parts[1]), "at a", "at A"), "at b", "at B"))}
+	r.Cable, r.Span = cutCable(parts[0])
 	switch r.Of {
 	case HorizontalTension, TensionAtA, TensionAtB:
 	default:

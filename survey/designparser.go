@@ -28,7 +28,7 @@ func (p *designParser) notice(column, format string, args ...any) {
 func (p *designParser) parse() Design {
 	r := p.row
 	d := Design{Structure: r.Structure, Cable: r.Cable, Span: r.Span, Line: p.line}
-	if r.Cable == "" {
+	if plain(r.Cable) == "" {
 		p.problem("cable", "", "the id of the cable, the cell is empty", "")
 	}
 	d.SelfWeight = p.quantity("self_weight", r.SelfWeight, r.USelfWeight)
@@ -138,7 +138,7 @@ func (p *designParser) limit(column, cell string) *float64 {
 
 // load settles which load shapes the cable.
 func (p *designParser) load(d *Design) {
-	kind := LoadKind(strings.ToLower(p.row.Load))
+	kind := LoadKind(strings.NewReplacer("-", " ", "_", " ").Replace(strings.ToLower(p.row.Load)))
 	inferred := map[[2]bool]LoadKind{{true, false}: LoadSelfWeight, {false, true}: LoadDeck, {true, true}: LoadBoth}
 	have := [2]bool{d.SelfWeight != nil, d.DeckLoad != nil}
 	need := func(ok bool, column, cell string) {

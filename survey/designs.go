@@ -123,6 +123,9 @@ func ReadDesigns(r io.Reader, name string) ([]Design, []Notice, error) {
 	d := &designReader{rec: rec, name: name, fault: &InputError{}}
 	d.chooseSeparator(head)
 	first, err := d.Read()
+	if cutShort(err) {
+		return nil, nil, d.ending(err)
+	}
 	if err == io.EOF {
 		return nil, nil, &InputError{Problems: []Problem{{File: name, Expected: "a header and a line for each cable span", Mend: "the file holds no rows"}}}
 	}
@@ -133,16 +136,17 @@ func ReadDesigns(r io.Reader, name string) ([]Design, []Notice, error) {
 	if err := d.fault.orNil(); err != nil {
 		return nil, nil, err
 	}
+	notices = append(d.guessed(src.guesses), notices...)
 	var rows []designRow
 	if err := gocsv.UnmarshalCSV(d, &rows); err != nil && !errors.Is(err, gocsv.ErrEmptyCSVFile) {
-		return nil, nil, err
+		return nil, nil, d.ending(err)
 	}
 	var out []Design
-	seen := map[[3]string]int{}
+	seen := map[[2]string]int{}
 	for i, row := range rows {
 		p := designParser{header: h, row: row, line: d.lines[i], reader: d}
 		design := p.parse()
-		key := [3]string{strings.ToLower(design.Structure), strings.ToLower(design.Cable), strings.ToLower(design.Span)}
+		key := [2]string{strings.ToLower(design.Structure), plain(design.Cable, design.Span)}
 		if line, twice := seen[key]; twice {
 			p.problem("cable", design.Cable, fmt.Sprintf("each span once: line %d is the same structure, cable and span", line), "")
 		}
@@ -157,6 +161,37 @@ func ReadDesigns(r io.Reader, name string) ([]Design, []Notice, error) {
 		return nil, nil, err
 	}
 	return out, notices, nil
+}
+
+// guessed tells what the cells are parted by and how they are written, where that is not the usual way.
+func (d *designReader) guessed(guesses []Guess) (out []Notice) {
+	add := func(what, taken, why string) {
+		out = append(out, Notice{File: d.name, Text: fmt.Sprintf("%s taken as %s: %s", what, taken, why)})
+	}
+	for _, g := range guesses {
+		add(g.What, g.Taken, g.Why)
+	}
+	if d.rec.separator != ',' {
+		add("separator", separatorNames[d.rec.separator], "it parts the header into the most columns")
+	}
+	if d.mark == ',' {
+		add("decimal mark", "comma", "the numbers are written with it")
+	}
+	return out
+}
+
+// ending is the error with which the rows ended, beside the problems found before it.
+func (d *designReader) ending(err error) error {
+	var input *InputError
+	switch {
+	case errors.As(err, &input):
+		d.fault.join(input)
+	case cutShort(err):
+		d.fault.add(Problem{File: d.name, Line: d.rec.line, Expected: "the rest of the compressed file", Mend: "it looks cut off or damaged: fetch it again"})
+	default:
+		return fmt.Errorf("%s: cannot read: %w", d.name, err)
+	}
+	return d.fault
 }
 
 // OfStructure are the designs of one structure. Without a structure all are; a cables file that names no structures is for
@@ -247,15 +282,19 @@ func (d *designReader) readHeader(cells []string) (designHeader, []Notice) {
 	h := designHeader{units: map[string]unit{}, written: map[string]string{}, percent: map[string]bool{}}
 	var notices []Notice
 	for _, c := range cells {
-		name, unitText := cutUnit(c)
+		name, _ := cutUnit(c)
 		name = strings.ToLower(strings.ReplaceAll(strings.TrimSpace(name), " ", "_"))
 		d.header = append(d.header, name)
 		if first, twice := h.written[name]; twice {
 			d.fault.add(Problem{File: d.name, Line: d.rec.line, Column: c, Expected: "each column once", Mend: fmt.Sprintf("columns %s and %s have one name", quote(first), quote(c))})
 		}
 		h.written[name] = c
-		if !d.columnUnit(h, name, c, unitText) {
-			notices = append(notices, Notice{File: d.name, Line: d.rec.line, Column: c, Text: fmt.Sprintf("column %s is not used; nearest known name: %s", quote(c), nearestColumn(name))})
+	}
+	for _, uncertainties := range []bool{false, true} { // the unit of a u_ column may be that of its value
+		for i, c := range cells {
+			if _, unitText := cutUnit(c); strings.HasPrefix(d.header[i], "u_") == uncertainties && !d.columnUnit(h, d.header[i], c, unitText) {
+				notices = append(notices, Notice{File: d.name, Line: d.rec.line, Column: c, Text: fmt.Sprintf("column %s is not used; nearest known name: %s", quote(c), nearestColumn(d.header[i]))})
+			}
 		}
 	}
 	for _, must := range []string{"cable"} {
@@ -282,6 +321,9 @@ func (d *designReader) columnUnit(h designHeader, name, cell, unitText string) b
 		d.fault.add(Problem{File: d.name, Line: d.rec.line, Column: cell, Found: found, Expected: expected, Mend: mend})
 	}
 	switch {
+	case base != name && unitText == "%" && col.dim == Temperature:
+		problem(unitText, "a unit of temperature: "+spellings[col.dim], "per cent of a temperature depends on where the scale begins")
+		return true
 	case base != name && unitText == "%":
 		h.percent[name] = true
 		return true
