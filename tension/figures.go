@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"strconv"
+	"strings"
 )
 
 // Scale is a unit in which figures are printed: printed = SI value / Per.
@@ -38,8 +39,8 @@ func ForceScale(newtons float64) Scale {
 	}
 }
 
-// Decimals is the number of decimals at which U (in printed units) shows two significant digits; three significant
-// digits of the value when U is zero. It never goes below zero decimals.
+// Decimals is the decimal place at which U (in printed units) shows two significant digits; four of the value when U is zero. It is
+// negative where that place is left of the point: 8642 is known to hundreds, place -2.
 func Decimals(value, expanded float64) int {
 	lead, digits := math.Abs(expanded), 2
 	if !(lead > 0) || math.IsInf(lead, 0) {
@@ -50,11 +51,11 @@ func Decimals(value, expanded float64) int {
 	}
 	// Rounding may carry into a new leading digit (0.0996 prints as 0.10): count on the rounded text.
 	text := strconv.FormatFloat(lead, 'e', digits-1, 64)
-	exponent, err := strconv.Atoi(text[len(text)-3:])
+	exponent, err := strconv.Atoi(text[strings.IndexByte(text, 'e')+1:])
 	if err != nil {
-		exponent, _ = strconv.Atoi(text[len(text)-4:])
+		return 0
 	}
-	return min(max(digits-1-exponent, 0), 12)
+	return min(digits-1-exponent, 12)
 }
 
 // Figure prints a value with its expanded uncertainty U = 2 u (k = 2), U to two significant digits and the value to the
@@ -92,18 +93,15 @@ func (s Scale) suffix(text string) string {
 	}
 }
 
-// fixed is %.*f without a negative zero.
-func fixed(v float64, decimals int) string {
-	text := strconv.FormatFloat(v, 'f', decimals, 64)
-	if v <= 0 {
-		for _, r := range text {
-			if r >= '1' && r <= '9' {
-				return text
-			}
-		}
-		if text[0] == '-' {
-			return text[1:]
-		}
+// fixed prints a value at a decimal place, which may be left of the point, without a negative zero.
+func fixed(v float64, place int) string {
+	if place < 0 {
+		unit := math.Pow(10, float64(-place))
+		v = math.Round(v/unit) * unit
+	}
+	text := strconv.FormatFloat(v, 'f', max(place, 0), 64)
+	if strings.Trim(text, "-0.") == "" {
+		return strings.TrimPrefix(text, "-")
 	}
 	return text
 }

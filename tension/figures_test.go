@@ -17,7 +17,7 @@ func TestFigures(t *testing.T) {
 		{Newton, Quantity{Value: -0.02, U: 3}, "0.0 ± 6.0 N"},
 		{Metre, Quantity{Value: 8.12341, U: 0.0042}, "8.1234 ± 0.0084 m"},
 		{Metre, Quantity{Value: 1646.12, U: 1.44}, "1646.1 ± 2.9 m"},
-		{Newton, Quantity{Value: 123456, U: 4321}, "123456 ± 8642 N"},
+		{Newton, Quantity{Value: 123456, U: 4321}, "123500 ± 8600 N"},
 		{Kilonewton, Quantity{Value: 350000, U: 0}, "350.0 kN"},
 		{NewtonPerMetre, Quantity{Value: 10, U: 1e-14}, "10.00 N/m"},
 		{Degree, Quantity{Value: -5.005, U: 0.005}, "-5.005 ± 0.010°"},

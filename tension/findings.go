@@ -100,6 +100,9 @@ func (j *judgement) tellReading() {
 
 func (j *judgement) tellLength() {
 	l := j.a.UnstressedLength
+	if d := j.a.Direct; d != nil && math.Abs(d.OffRecord) > apart {
+		return // the load on record is not the load: the length that follows from it is none either
+	}
 	if l == nil || math.Abs(l.Difference.Value) <= l.Difference.Expanded() {
 		return
 	}

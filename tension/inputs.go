@@ -126,7 +126,7 @@ func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []sur
 		in.set(inDeckLoad, d.DeckLoad, "deck load on file", NewtonPerMetre)
 	}
 	in.set(inAxial, d.AxialStiffness, "axial stiffness", Meganewton)
-	in.set(inExpansion, d.Expansion, "expansion", Scale{"1e-6/°C", 1e-6})
+	in.set(inExpansion, d.Expansion, "expansion", Scale{"ppm/°C", 1e-6})
 	if d.Tension != nil {
 		in.set(inTension, d.Tension, "design tension", ForceScale(d.Tension.Value))
 	} else {

@@ -205,6 +205,7 @@ func stiffnessMeaning(s *Stiffness) string {
 	case s.SagPerLoad > 2*s.TensionPerLoad:
 		kind = "a taut cable: extra load shows in the sag and raises the tension less"
 	}
-	return fmt.Sprintf("Irvine's lambda squared is %.3g, %s. 10 %% more even load at unchanged length means %.1f %% more sag and %.1f %% more tension; 10 °C warmer means %.3g %s in tension.",
-		s.Lambda2, kind, 10*s.SagPerLoad, 10*s.TensionPerLoad, 10*s.TensionPerDegree, "N")
+	perTen := 10 * s.TensionPerDegree
+	return fmt.Sprintf("Irvine's lambda squared is %.3g, %s. 10 %% more even load at unchanged length means %.1f %% more sag and %.1f %% more tension; 10 °C warmer means %s in tension.",
+		s.Lambda2, kind, 10*s.SagPerLoad, 10*s.TensionPerLoad, ForceScale(perTen).About(perTen))
 }
