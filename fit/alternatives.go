@@ -7,6 +7,7 @@ import "math"
 // of the sums of squares: against the stated accuracy when it holds, else in logarithms. Correlated residuals count for
 // less. A shape that does not converge is left out.
 func (r *Result) compareShapes(w *workspace, share float64, o Options) {
+	per := r.Curve.ArcLength(r.A.Station, r.B.Station) / (r.B.Station - r.A.Station)
 	for _, alt := range []struct {
 		shape Shape
 		share float64
@@ -30,6 +31,10 @@ func (r *Result) compareShapes(w *workspace, share float64, o Options) {
 			sum += (v.Z - z) * (v.Z - z)
 		}
 		r.Alternatives = append(r.Alternatives, Alternative{Shape: alt.shape, Constant: other.Curve.Constant(), RMS: math.Sqrt(sum / n),
-			DeltaAICc: delta / (r.Widening * r.Widening), TensionOff: r.Curve.Curvature/other.Curve.Curvature - 1})
+			DeltaAICc: delta / (r.Widening * r.Widening), TensionOff: r.Curve.Curvature/other.Curve.Curvature*spread(share, per)/spread(alt.share, per) - 1})
 	}
 }
+
+// spread is the whole load on the span over that which its number of newtons per metre would be along the horizontal; per is arc
+// over horizontal length.
+func spread(share, per float64) float64 { return share*per + 1 - share }

@@ -111,5 +111,5 @@ type Alternative struct {
 	Constant   float64 `json:"constant_m"` // 1/Curvature, m
 	RMS        float64 `json:"rms_m"`
 	DeltaAICc  float64 `json:"delta_aicc"`         // AICc minus that of the chosen shape; negative: the alternative fits better
-	TensionOff float64 `json:"tension_difference"` // relative difference of load/Curvature against the chosen shape
+	TensionOff float64 `json:"tension_difference"` // relative difference of the horizontal tension under the same whole load on the span
 }
