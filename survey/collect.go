@@ -18,15 +18,14 @@ func (p *PointReader) collect() (*Survey, error) {
 		return nil, err
 	}
 	s := sorter{survey: sv, resolver: codes, reader: p, spans: map[[2]string]int{}, ids: map[string]seenPoint{}}
-	for {
-		pt, err := p.next()
-		if err == io.EOF {
-			break
+	var pt Point
+	for err == nil {
+		if err = p.next(&pt); err == nil {
+			s.place(&pt)
 		}
-		if err != nil {
-			return nil, err
-		}
-		s.place(pt)
+	}
+	if err != io.EOF {
+		return nil, err
 	}
 	if err := p.conditions.check(); err != nil {
 		p.problems.add(problemOf(err, p.opts.Name, 0, "loads"))
@@ -134,22 +133,22 @@ func (s *sorter) problem(line int, column, found, expected, mend string) {
 	s.reader.problems.add(Problem{File: s.survey.File, Line: line, Column: column, Found: found, Expected: expected, Mend: mend})
 }
 
-func (s *sorter) place(pt Point) {
-	if s.repeated(&pt) {
-		s.survey.Ignored = append(s.survey.Ignored, pt)
+func (s *sorter) place(pt *Point) {
+	if s.repeated(pt) {
+		s.survey.Ignored = append(s.survey.Ignored, *pt)
 		return
 	}
 	use := s.resolver.use(pt.Code)
 	switch use.Role {
 	case Control:
-		s.survey.Control = append(s.survey.Control, pt)
+		s.survey.Control = append(s.survey.Control, *pt)
 	case Ground:
-		s.survey.Ground = append(s.survey.Ground, pt)
+		s.survey.Ground = append(s.survey.Ground, *pt)
 	case Ignored:
 		s.refused(use, pt.Line)
-		s.survey.Ignored = append(s.survey.Ignored, pt)
+		s.survey.Ignored = append(s.survey.Ignored, *pt)
 	default:
-		s.onSpan(&pt, use)
+		s.onSpan(pt, use)
 	}
 }
 

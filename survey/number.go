@@ -18,49 +18,42 @@ const (
 	faultGrouped   numberFault = "grouped"
 )
 
-var powers = [...]float64{1, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22}
+// powers are the powers of ten that a short number can be divided by; all are float64 without rounding.
+var powers = [shortNumber]float64{1, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15}
+
+// shortNumber is the length up to which a number, sign apart, has at most 15 digits beside its mark, or 16 without one.
+const shortNumber = 16
 
 // parseNumber reads a plain decimal number: sign, digits, one decimal mark, optional exponent. Everything else that a
-// general parser takes (NaN, Inf, hexadecimal, underscores, grouping) is refused by name. Numbers of up to 15 digits are
-// exact by one division (Clinger 1990, How to read floating point numbers accurately); longer ones go to strconv.
+// general parser takes (NaN, Inf, hexadecimal, underscores, grouping) is refused by name. The result is the nearest float64: an
+// integer below 2^53 divided by a power of ten that is a float64 itself is rounded once (Clinger 1990, How to read floating
+// point numbers accurately); everything longer goes to strconv.
 func parseNumber(cell []byte, mark byte) (float64, numberFault) {
-	i, n := 0, len(cell)
-	if n == 0 {
-		return 0, faultEmpty
+	digits := cell
+	negative := false
+	if len(cell) > 0 && (cell[0] == '-' || cell[0] == '+') {
+		negative, digits = cell[0] == '-', cell[1:]
 	}
-	negative := cell[0] == '-'
-	if negative || cell[0] == '+' {
-		i++
+	if len(digits) == 0 || len(digits) > shortNumber {
+		return slowNumber(cell, mark)
 	}
 	var mantissa uint64
-	digits, decimals, seen := 0, -1, 0
-	for ; i < n; i++ {
-		c := cell[i]
-		switch {
-		case c >= '0' && c <= '9':
-			seen++
-			if mantissa > 0 || c != '0' {
-				digits++
-			}
-			if digits <= 18 {
-				mantissa = mantissa*10 + uint64(c-'0')
-			}
-			if decimals >= 0 {
-				decimals++
-			}
-			continue
-		case c == mark && decimals < 0:
-			decimals = 0
-			continue
+	at := -1 // of the mark
+	for i, c := range digits {
+		if d := c - '0'; d <= 9 {
+			mantissa = mantissa*10 + uint64(d)
+		} else if c == mark && at < 0 {
+			at = i
+		} else {
+			return slowNumber(cell, mark)
 		}
-		break
 	}
-	if i < n || seen == 0 || digits > 15 || decimals > 22 {
+	if at >= 0 && len(digits) == 1 || mantissa >= 1<<53 {
 		return slowNumber(cell, mark)
 	}
 	v := float64(mantissa)
-	if decimals > 0 {
-		v /= powers[decimals]
+	if at >= 0 {
+		v /= powers[len(digits)-1-at]
 	}
 	if negative {
 		v = -v
@@ -70,6 +63,9 @@ func parseNumber(cell []byte, mark byte) (float64, numberFault) {
 
 // slowNumber handles exponents and many digits, and finds the name of the fault.
 func slowNumber(cell []byte, mark byte) (float64, numberFault) {
+	if len(cell) == 0 {
+		return 0, faultEmpty
+	}
 	text := make([]byte, 0, len(cell))
 	marks, commas, points, digits := 0, 0, 0, 0
 	for i, c := range cell {

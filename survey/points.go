@@ -95,30 +95,32 @@ func NewPointReader(r io.Reader, o PointOptions) (*PointReader, error) {
 // *InputError that lists them, or io.EOF when there are none, and returns the same again if it is asked again. An input that
 // cannot be read ends with its own error. One row is held at a time; in the steady state nothing is allocated but the id.
 func (p *PointReader) Next() (Point, error) {
-	pt, err := p.next()
+	var pt Point
+	err := p.next(&pt)
 	if err == io.EOF {
 		if problems := p.problems.orNil(); problems != nil {
-			return pt, problems
+			return Point{}, problems
 		}
 	}
 	return pt, err
 }
 
-// next is Next without the problems.
-func (p *PointReader) next() (Point, error) {
+// next is Next without the problems, into pt.
+func (p *PointReader) next(pt *Point) error {
 	for {
 		cells, line := p.first, p.firstLine
 		p.first = nil
 		if cells == nil {
 			var err error
 			if cells, err = p.rec.read(p.comment); err != nil {
-				return Point{}, p.ending(err)
+				*pt = Point{}
+				return p.ending(err)
 			}
 			line = p.rec.line
 		}
 		p.rows++
-		if pt, ok := p.point(cells, line); ok {
-			return pt, nil
+		if p.point(cells, line, pt) {
+			return nil
 		}
 	}
 }
@@ -171,43 +173,37 @@ func (p *PointReader) SHA256() (string, error) {
 	return sum, nil
 }
 
-// point makes a point of a row.
-func (p *PointReader) point(cells [][]byte, line int) (pt Point, ok bool) {
+// point makes a point of a row; false when the row has a problem.
+func (p *PointReader) point(cells [][]byte, line int, pt *Point) bool {
 	if len(cells) != len(p.columns) {
-		return pt, p.badRow(cells, line)
+		return p.badRow(cells, line)
 	}
-	pt.Line = line
+	*pt = Point{Line: line}
 	p.last[1], p.last[0] = p.last[0], len(cells[len(cells)-1])
-	var u [3]float64
 	bad := len(p.problems.Problems) + p.problems.More
-	for i, c := range p.columns {
-		cell := cells[i]
+	for i := range p.columns {
+		c := &p.columns[i]
 		switch c.field {
 		case fieldUnused:
 		case fieldID:
-			pt.ID = string(cell)
+			pt.ID = string(cells[i])
 		case fieldCode:
-			pt.Code = p.codeOf(cell)
-		default:
-			v := p.number(cell, c, i, line)
-			switch c.field {
-			case fieldEasting, fieldStation:
-				pt.E = v
-			case fieldNorthing:
-				pt.N = v
-			case fieldElevation:
-				pt.Z = v
-			default:
-				u[c.field-fieldUEasting] = v
-				pt.HasCov = true
-				if !(v >= leastSigma) {
-					p.trouble(line, c, i, string(cell), "a standard deviation above 0", "")
-				}
-			}
+			pt.Code = p.codeOf(cells[i])
+		case fieldEasting, fieldStation:
+			pt.E = p.number(cells[i], i, line)
+		case fieldNorthing:
+			pt.N = p.number(cells[i], i, line)
+		case fieldElevation:
+			pt.Z = p.number(cells[i], i, line)
+		case fieldUEasting:
+			pt.Cov.EE, pt.HasCov = p.variance(cells[i], i, line), true
+		case fieldUNorthing:
+			pt.Cov.NN, pt.HasCov = p.variance(cells[i], i, line), true
+		case fieldUElevation:
+			pt.Cov.ZZ, pt.HasCov = p.variance(cells[i], i, line), true
 		}
 	}
-	pt.Cov = Cov3{EE: u[0] * u[0], NN: u[1] * u[1], ZZ: u[2] * u[2]}
-	return pt, len(p.problems.Problems)+p.problems.More == bad
+	return len(p.problems.Problems)+p.problems.More == bad
 }
 
 // codeOf is a code as a string, one for all rows that carry it.
@@ -222,30 +218,41 @@ func (p *PointReader) codeOf(cell []byte) string {
 	return code
 }
 
-func (p *PointReader) number(cell []byte, c column, i, line int) float64 {
+// number is the cell of column i in metres; what is wrong with it is collected.
+func (p *PointReader) number(cell []byte, i, line int) float64 {
 	v, fault := parseNumber(cell, p.dialect.mark)
 	if fault != "" {
 		expected, mend := fault.describe(p.dialect.mark, inPoints)
 		if fault == faultEmpty {
-			p.trouble(line, c, i, "", expected+", the cell is empty", mend)
-		} else {
-			p.trouble(line, c, i, string(cell), expected, mend)
+			expected += ", the cell is empty"
 		}
+		p.trouble(line, i, cell, expected, mend)
 		return 0
 	}
-	v *= c.factor
+	v *= p.columns[i].factor
 	if math.Abs(v) > farthest {
-		p.trouble(line, c, i, string(cell), "a coordinate below 100 000 km", "check the unit and the order of the columns")
+		p.trouble(line, i, cell, "a coordinate below 100 000 km", "check the unit and the order of the columns")
 	}
 	return v
 }
 
-func (p *PointReader) trouble(line int, c column, i int, found, expected, mend string) {
+// variance is the square of a standard deviation, m2.
+func (p *PointReader) variance(cell []byte, i, line int) float64 {
+	bad := len(p.problems.Problems) + p.problems.More
+	v := p.number(cell, i, line)
+	if len(p.problems.Problems)+p.problems.More == bad && !(v >= leastSigma) {
+		p.trouble(line, i, cell, "a standard deviation above 0", "")
+	}
+	return v * v
+}
+
+func (p *PointReader) trouble(line, i int, found []byte, expected, mend string) {
+	c := p.columns[i]
 	name := c.name
 	if name == "" {
 		name = fmt.Sprintf("%d (%s)", i+1, fieldNames[c.field])
 	}
-	p.problems.add(Problem{File: p.opts.Name, Line: line, Column: name, Found: found, Expected: expected, Mend: mend})
+	p.problems.add(Problem{File: p.opts.Name, Line: line, Column: name, Found: string(found), Expected: expected, Mend: mend})
 }
 
 // badRow reports a row with too few or too many cells.
