@@ -63,7 +63,7 @@ func TestBrokenSurveys(t *testing.T) {
 		t.Fatal(err)
 	}
 	needsKnown := map[string]bool{"span-missing.csv": true, "no-codes.csv": true, "wrong-structure.csv": true}
-	broken(t, "points", 45, func(path string) error {
+	broken(t, "points", 85, func(path string) error {
 		o := PointOptions{}
 		if needsKnown[filepath.Base(path)] {
 			o.Known = known
@@ -74,8 +74,18 @@ func TestBrokenSurveys(t *testing.T) {
 }
 
 func TestBrokenCablesFiles(t *testing.T) {
-	broken(t, "cables", 25, func(path string) error {
+	broken(t, "cables", 35, func(path string) error {
 		_, _, err := ReadDesignsFile(path)
 		return err
 	})
+}
+
+// A line beyond the limit is made here: a file of a megabyte is no example to keep.
+func TestLineBeyondLimit(t *testing.T) {
+	text := "x,y,z\n0,0,10\n1,0," + strings.Repeat("9", longestLine) + "\n"
+	_, err := ReadPoints(strings.NewReader(text), PointOptions{Name: "long.csv"})
+	const want = "long.csv:3: expected lines of at most 1 MiB; this is not a survey, or its line ends are lost"
+	if err == nil || err.Error() != want {
+		t.Errorf("message %v, want %s", err, want)
+	}
 }

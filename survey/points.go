@@ -241,7 +241,7 @@ func (p *PointReader) variance(cell []byte, i, line int) float64 {
 	bad := len(p.problems.Problems) + p.problems.More
 	v := p.number(cell, i, line)
 	if len(p.problems.Problems)+p.problems.More == bad && !(v >= leastSigma) {
-		p.trouble(line, i, cell, "a standard deviation above 0", "")
+		p.trouble(line, i, cell, "a standard deviation above 0 (1e-9 m at least)", "")
 	}
 	return v * v
 }
