@@ -195,14 +195,12 @@ func (r *records) quoted(line []byte) ([][]byte, error) {
 			r.unquoted = append(r.unquoted, '"')
 			cell = cell[1:]
 		}
-		cell = bytes.TrimLeft(cell, " \t")
+		cell = bytes.TrimLeft(cell, " ")
 		switch {
 		case len(cell) == 0:
 			more = false
 		case cell[0] == r.separator:
 			rest = cell[1:]
-		case r.separator == '\t' && len(cell) > 0:
-			return nil, r.fault("a tab after a quoted cell", "")
 		default:
 			return nil, r.fault("a separator after a quoted cell", "double a quote inside a quoted cell")
 		}
