@@ -1,0 +1,136 @@
+package survey
+
+import (
+	"strings"
+	"testing"
+)
+
+// knownOf makes designs of "cable/span" names.
+func knownOf(names ...string) (out []Design) {
+	for _, n := range names {
+		cable, span, _ := strings.Cut(n, "/")
+		out = append(out, Design{Cable: cable, Span: span})
+	}
+	return out
+}
+
+func rulesOf(t *testing.T, texts ...string) (out []CodeRule) {
+	t.Helper()
+	for _, text := range texts {
+		r, err := ParseCodeRule(text)
+		if err != nil {
+			t.Fatal(err)
+		}
+		out = append(out, r)
+	}
+	return out
+}
+
+// What each code stands for, by rule, by the cables file, by the usual words and by itself.
+func TestCodes(t *testing.T) {
+	for _, c := range []struct {
+		code  string
+		known string // names apart by commas
+		rule  string
+		cable string // --cable
+		want  string // role cable/span
+	}{
+		{"main-north", "main-north,main-south", "", "", "cable main-north/"},
+		{"MAIN-NORTH", "main-north,main-south", "", "", "cable main-north/"},
+		{"main-north A", "main-north,main-south", "", "", "support A main-north/"},
+		{"main-north/B", "main-north,main-south", "", "", "support B main-north/"},
+		{"main-north b", "main-north,main-south", "", "", "support B main-north/"},
+		{"main-north:2 A", "main-north/1,main-north/2", "", "", "support A main-north/2"},
+		{"main-north/2", "main-north/1,main-north/2", "", "", "cable main-north/2"},
+		{"main-north 1", "main-north/1,main-north/2", "", "", "cable main-north/1"},
+		{"main-north", "main-north/only", "", "", "cable main-north/only"},
+		{"A", "main-north", "", "", "support A main-north/"},
+		{"guy A", "guy,guy A", "", "", "cable guy A/"},
+		{"guy A B", "guy,guy A", "", "", "support B guy A/"},
+		{"main A", "main/A,main/B", "", "", "cable main/A"},
+		{"main-nrth", "main-north,main-south", "", "", "ignored /"},
+		{"", "main-north,main-south", "", "", "ignored /"},
+		{"ground wire", "ground wire,phase", "", "", "cable ground wire/"},
+		{"BM", "BM,phase", "", "", "cable BM/"},
+		{"CP", "phase", "", "", "control /"},
+		{"MC1", "main", "MC1=main/A", "", "support A main/"},
+		{"mc1", "main", "MC1=main", "", "cable main/"},
+		{"MC1", "main/2", "MC1=main", "", "cable main/2"},
+		{"MC1", "main/1,main/2", "MC1=main/2/B", "", "support B main/2"},
+		{"main", "main", "main=ignore", "", "ignored /"},
+		{"main", "main", "main=ground", "", "ground /"},
+		{"x", "main", "x=control", "", "control /"},
+		{"anything", "main/1", "", "main", "cable main/1"},
+		{"A", "main/1,other", "", "main", "support A main/1"},
+		{"BM2", "main/1,other", "", "main", "control /"},
+		{"w1", "", "", "", "cable w1/"},
+		{"w1 A", "", "", "", "support A w1/"},
+		{"w1/2", "", "", "", "cable w1/2"},
+		{"w1/2/B", "", "", "", "support B w1/2"},
+		{"hand cable left", "", "", "", "cable hand cable left/"},
+		{"A", "", "", "", "support A cable 1/"},
+		{"ctrl", "", "", "", "control /"},
+		{"TBM 3", "", "", "", "control /"},
+		{"BM7", "", "", "", "control /"},
+		{"CP-12", "", "", "", "control /"},
+		{"topo", "", "", "", "ground /"},
+		{"gnd 12", "", "", "", "ground /"},
+		{"ground wire", "", "", "", "cable ground wire/"},
+		{"control cable", "", "", "", "cable control cable/"},
+	} {
+		o := PointOptions{Cable: c.cable}
+		if c.known != "" {
+			o.Known = knownOf(strings.Split(c.known, ",")...)
+		}
+		if c.rule != "" {
+			o.Codes = rulesOf(t, c.rule)
+		}
+		r, err := newResolver(o, true)
+		if err != nil {
+			t.Fatal(err)
+		}
+		u := r.use(c.code)
+		if got := string(u.Role) + " " + u.Cable + "/" + u.Span; got != c.want {
+			t.Errorf("%q among %q: %s, want %s (%s)", c.code, c.known, got, c.want, u.How)
+		}
+		if u.How == "" || u.Points != 1 {
+			t.Errorf("%q: how %q, %d points", c.code, u.How, u.Points)
+		}
+	}
+}
+
+// Every form of a rule, and what is none.
+func TestParseCodeRule(t *testing.T) {
+	for _, c := range []struct {
+		text string
+		want CodeRule
+	}{
+		{"MC1=main", CodeRule{"MC1", OnCable, "main", ""}},
+		{" MC 1 = main / 2 / b ", CodeRule{"MC 1", SupportB, "main", "2"}},
+		{"MC1=main/A", CodeRule{"MC1", SupportA, "main", ""}},
+		{"A=A", CodeRule{"A", OnCable, "A", ""}},
+		{"7=Control", CodeRule{"7", Control, "", ""}},
+		{"7=GROUND", CodeRule{"7", Ground, "", ""}},
+		{"7=ignore", CodeRule{"7", Ignored, "", ""}},
+	} {
+		if got, err := ParseCodeRule(c.text); err != nil || got != c.want {
+			t.Errorf("%q: %+v, %v", c.text, got, err)
+		}
+	}
+	for _, text := range []string{"", "=", "a=", "=main", "main", "a=/", "a=main/", "a=main/1/2", "a=main//A", "a=main/1/2/A", "a= / "} {
+		if got, err := ParseCodeRule(text); err == nil {
+			t.Errorf("%q was taken as %+v", text, got)
+		}
+	}
+}
+
+// Two spellings of one id that differ by case are one cable, with or without a cables file.
+func TestCodesDifferByCase(t *testing.T) {
+	sv, err := ReadPoints(strings.NewReader("x,y,z,code\n1,2,3,Main\n2,2,3,main A\n3,2,3,MAIN\n"), PointOptions{Name: "c.csv", Unit: "m"})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(sv.Spans) != 1 || sv.Spans[0].Cable != "Main" || len(sv.Spans[0].Points) != 2 || sv.Spans[0].A == nil {
+		t.Errorf("spans %+v", sv.Spans)
+	}
+}
