@@ -103,9 +103,16 @@ func (p *PointReader) checkStructure() {
 	}
 }
 
+// cableNames are the cables of a survey for a message, ten at most.
 func cableNames(sv *Survey) (out []string) {
 	for _, sp := range sv.Spans {
-		out = append(out, sp.Cable)
+		switch {
+		case slices.Contains(out, sp.Cable):
+		case len(out) == 10:
+			return append(out, "...")
+		default:
+			out = append(out, sp.Cable)
+		}
 	}
 	return out
 }
@@ -237,7 +244,7 @@ func (s *sorter) finish() {
 		p.notice(0, "", "%s", text)
 	}
 	if n := count(sv.Ignored, func(p Point) bool { return p.Code == "" }); n > 0 && p.hasCodes {
-		p.notice(0, "", "%d points have no code and are set aside", n)
+		p.notice(0, "", "points without a code, set aside: %d", n)
 	}
 	p.lookCutOff()
 	index := IndexDesigns(s.resolver.known)

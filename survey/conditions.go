@@ -10,6 +10,9 @@ import (
 var conditionKeys = map[string]bool{"structure": true, "date": true, "temperature": true, "wind": true, "loads": true, "load": true, "reading": true,
 	"instrument": true, "accuracy": true, "crew": true, "unit": true, "cable": true, "span": true, "note": true}
 
+// keyList names the keys for a message.
+const keyList = "structure, date, temperature, wind, loads, load, reading, instrument, accuracy, crew, unit, cable, span or note"
+
 // conditionKey is the one spelling of a key.
 func conditionKey(key string) string {
 	switch key = strings.ToLower(strings.TrimSpace(key)); key {
@@ -37,6 +40,9 @@ func conditionKey(key string) string {
 // +- is exact. A load means "loads: listed". A key given twice with different values is refused, and so is a list of loads beside "as filed" or "not checked".
 func (c *Conditions) Set(key, value string) error {
 	key, value = conditionKey(key), strings.TrimSpace(value)
+	if !conditionKeys[key] {
+		return wrong(key, keyList, "")
+	}
 	if key == "note" {
 		c.Notes = append(c.Notes, value)
 		return nil
@@ -88,7 +94,7 @@ func (c *Conditions) put(key, value string, again bool) error {
 	case "reading":
 		return c.addReading(value)
 	}
-	return wrong(key, "structure, date, temperature, wind, loads, load, reading, instrument, accuracy, crew, unit, cable, span or note", "")
+	return wrong(key, keyList, "")
 }
 
 func words(into *string, value string, again bool, key string) error {

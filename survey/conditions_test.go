@@ -95,3 +95,16 @@ func TestConditionKeys(t *testing.T) {
 		t.Errorf("unknown key: %v", err)
 	}
 }
+
+// Every key that is listed is handled and named in the message for an unknown one.
+func TestConditionKeyList(t *testing.T) {
+	for key := range conditionKeys {
+		var c Conditions
+		if err := c.Set(key, "?"); err != nil && strings.Contains(err.Error(), keyList) {
+			t.Errorf("%s is not handled", key)
+		}
+		if !strings.Contains(" "+strings.ReplaceAll(keyList, ",", "")+" ", " "+key+" ") {
+			t.Errorf("%s is not named", key)
+		}
+	}
+}

@@ -22,7 +22,7 @@ func (p *designParser) problem(column, found, expected, mend string) {
 }
 
 func (p *designParser) notice(column, format string, args ...any) {
-	p.notices = append(p.notices, Notice{File: p.reader.name, Line: p.line, Column: column, Text: fmt.Sprintf(format, args...)})
+	p.notices = append(p.notices, Notice{File: p.reader.name, Line: p.line, Column: column, Text: harmless(fmt.Sprintf(format, args...))})
 }
 
 func (p *designParser) parse() Design {

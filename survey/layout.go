@@ -93,7 +93,7 @@ func (p *PointReader) headerAbove(cells int) bool {
 }
 
 func (p *PointReader) notice(line int, column, format string, args ...any) {
-	p.notices = append(p.notices, Notice{File: p.opts.Name, Line: line, Column: column, Text: fmt.Sprintf(format, args...)})
+	p.notices = append(p.notices, Notice{File: p.opts.Name, Line: line, Column: column, Text: harmless(fmt.Sprintf(format, args...))})
 }
 
 // suggestOrder is an order that fits the count and kind of cells of a first row.

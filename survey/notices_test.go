@@ -26,9 +26,9 @@ func TestNotices(t *testing.T) {
 		{"idle rule", "x,y,z,code\n1,2,3,main\n", PointOptions{Codes: []CodeRule{{Code: "zz", Role: Ground}}}, `no point has the code "zz" of --code`},
 		{"rule outside the cables file", "x,y,z,code\n1,2,3,q\n", PointOptions{Known: known, Codes: []CodeRule{{Code: "q", Role: OnCable, Cable: "guy"}}}, `--code names "guy", which is not in the cables file`},
 		{"other cable under --cable", "x,y,z,code\n1,2,3,hand/1\n", PointOptions{Known: known, Cable: "main"}, `code "hand/1" is another cable in the cables file`},
-		{"no code", "x,y,z,code\n1,2,3,main\n2,2,3,\n", PointOptions{Known: known}, `1 points have no code and are set aside`},
+		{"no code", "x,y,z,code\n1,2,3,main\n2,2,3,\n", PointOptions{Known: known}, `points without a code, set aside: 1`},
 		{"repeated rows", "id,x,y,z\n1,1,2,3\n2,2,2,3\n1,1,2,3\n2,2,2,3\n", PointOptions{}, `2 rows repeat an earlier one to the digit, this one first: used once`},
-		{"same place", "id,x,y,z\n1,1,2,3\n2,2,2,3\n3,1,2,3\n", PointOptions{}, `cable "cable 1": 1 points have the same coordinates as another one to the digit`},
+		{"same place", "id,x,y,z\n1,1,2,3\n2,2,2,3\n3,1,2,3\n", PointOptions{}, `cable "cable 1": points with the same coordinates as an earlier one to the digit: 1`},
 		{"cut off in the last cell", "x,y,z\n1,2,3.125\n2,2,3.1", PointOptions{}, `the file ends without a line end and the last cell is shorter than the one above it`},
 		{"hot cable", "# temperature: 150 degC\nx,y,z\n1,2,3\n", PointOptions{}, `a cable temperature of 150 °C is unusual: check its unit`},
 		{"chord in feet", strings.ReplaceAll(chord, "%", "328.08"), PointOptions{Known: known}, `the surveyed supports are apart by 328.080 m, the design span is 100.000 m: the file may be in feet: say --unit ft or us-ft`},
@@ -91,5 +91,15 @@ func TestManyUnknownCodes(t *testing.T) {
 	}
 	if len(sv.Ignored) != 500 || len(sv.Notices) != 21 || sv.Notices[20].Text != "480 more codes are not in the cables file: their points are set aside" {
 		t.Errorf("%d set aside, %d notices, last %+v", len(sv.Ignored), len(sv.Notices), sv.Notices[len(sv.Notices)-1])
+	}
+}
+
+// Codes that would make a terminal act come out harmless, one line a problem.
+func TestHostileCodes(t *testing.T) {
+	const hostile = "w\x1b[2J\u202ew"
+	_, err := ReadPoints(strings.NewReader("# load: z; 3 N/m; along cable\nx,y,z,code\n1,2,3,"+hostile+"\n"), PointOptions{Name: "h.csv"})
+	const want = `h.csv: column "load": found "z", expected a load on a cable of this survey; write the cable as in the codes: w�[2J�w`
+	if err == nil || err.Error() != strings.ReplaceAll(want, `\ufffd`, "\ufffd") {
+		t.Errorf("%v, want %s", err, want)
 	}
 }

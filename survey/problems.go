@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"strings"
+	"unicode"
 )
 
 // Problem is one thing in an input that must be mended before it can be used.
@@ -37,7 +38,18 @@ func (p Problem) Error() string {
 	if p.Mend != "" {
 		b.WriteString("; " + p.Mend)
 	}
-	return b.String()
+	return harmless(b.String())
+}
+
+// harmless is a text without characters that a terminal would act upon or that would break the line: ids and codes come
+// from files.
+func harmless(s string) string {
+	return strings.Map(func(r rune) rune {
+		if unicode.IsControl(r) || unicode.Is(unicode.Cf, r) || unicode.Is(unicode.Zl, r) || unicode.Is(unicode.Zp, r) {
+			return unicode.ReplacementChar
+		}
+		return r
+	}, s)
 }
 
 // quote makes text from a file safe and short for a message.
@@ -106,7 +118,7 @@ func (e *valueError) Error() string {
 	if e.mend != "" {
 		text += "; " + e.mend
 	}
-	return text
+	return harmless(text)
 }
 
 func wrong(found, expected, mend string) error { return &valueError{found, expected, mend} }

@@ -102,7 +102,7 @@ func (s *sorter) coinciding(sp SpanPoints) {
 		}
 	}
 	if n > 0 {
-		s.reader.notice(line, "", "cable %s: %d points have the same coordinates as another one to the digit: if the file holds a part twice, take it out", quote(sp.Cable), n)
+		s.reader.notice(line, "", "cable %s: points with the same coordinates as an earlier one to the digit: %d; if the file holds a part twice, take it out", quote(sp.Cable), n)
 	}
 }
 
