@@ -99,6 +99,30 @@ func TestCodes(t *testing.T) {
 	}
 }
 
+// A cable of several spans is never taken for one of them, however it is named; the message says how to write it.
+func TestSpanMustBeNamed(t *testing.T) {
+	const row = "x,y,z,code\n1,2,3,"
+	for _, c := range []struct {
+		text string
+		o    PointOptions
+		want string
+	}{
+		{row + "main\n", PointOptions{}, `s.csv:2: column "code": found "main", expected the span as well: cable "main" has 2 spans in the cables file; write main/1, or say --code`},
+		{row + "main A\n", PointOptions{}, `s.csv:2: column "code": found "main A", expected the span as well: cable "main" has 2 spans in the cables file; write main/1, or say --code`},
+		{row + "q\n", PointOptions{Codes: rulesOf(t, "q=main")}, `s.csv:2: column "code": found "q", expected the span as well: cable "main" has 2 spans in the cables file; write main/1, or say --code`},
+		{row + "q\n", PointOptions{Cable: "main"}, `s.csv:2: column "code": found "q", expected the span as well: cable "main" has 2 spans in the cables file; write main/1, or say --code`},
+		{"x,y,z\n1,2,3\n", PointOptions{Cable: "main"}, `s.csv: expected the span as well: cable "main" has 2 spans in the cables file; say --span 1`},
+		{"x,y,z\n1,2,3\n", PointOptions{}, `s.csv: expected the cable that the points are on; the file has no codes and the cables file 2 spans: say --cable ID, or add a line "# cable: ID" at the top`},
+		{row + "q\n", PointOptions{Codes: rulesOf(t, "q=main/1", "Q=main/2")}, `--code: found "Q" twice with different meanings, expected one meaning for each code; take one of the two out`},
+	} {
+		c.o.Name, c.o.Known = "s.csv", knownOf("main/1", "main/2")
+		_, err := ReadPoints(strings.NewReader(c.text), c.o)
+		if err == nil || err.Error() != c.want {
+			t.Errorf("%v\nwant %s", err, c.want)
+		}
+	}
+}
+
 // Every form of a rule, and what is none.
 func TestParseCodeRule(t *testing.T) {
 	for _, c := range []struct {

@@ -298,6 +298,8 @@ func TestFlatSurvey(t *testing.T) {
 	}{
 		{"chainage,elevation [m]\n0,10\n10,9.5\n", PointOptions{Unit: "m"}, "separator, cable"},
 		{"0;10\n10;9,5\n", PointOptions{}, "separator, decimal mark, columns, unit, cable"},
+		{"station [m],elevation [m],u_z [mm]\n0,10,3\n10,9.5,3\n", PointOptions{}, "separator, accuracy of the station, cable"},
+		{"station [m],elevation [m],u_z [mm],u_station [mm]\n0,10,3,3\n10,9.5,3,3\n", PointOptions{}, "separator, cable"},
 		{"10,0\n9.5,10\n", PointOptions{Order: "ZS", Unit: "m"}, "separator, cable"},
 	} {
 		c.o.Name = "flat.csv"

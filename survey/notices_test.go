@@ -67,7 +67,7 @@ func TestQuietFiles(t *testing.T) {
 		"id,easting [m],northing [m],elevation [m],code\n1,1000,0,5,main\n2,1100.2,0,5,main\n",
 		"# a survey\n# with plain words\nid,easting [m],northing [m],elevation [m],code\n1,0,-40,5,main\n2,0,50,5,main",
 	} {
-		sv, err := ReadPoints(strings.NewReader(text), PointOptions{Name: "q.csv", Known: []Design{{Cable: "main", SpanLength: &span}}})
+		sv, err := ReadPoints(strings.NewReader(text), PointOptions{Name: "q.csv", Known: []Design{{Cable: "main", SpanLength: &span}}, Codes: []CodeRule{{Code: "MAIN", Role: OnCable, Cable: "main"}}})
 		if err != nil {
 			t.Error(err)
 			continue

@@ -26,8 +26,8 @@ const shortNumber = 16
 
 // parseNumber reads a plain decimal number: sign, digits, one decimal mark, optional exponent. Everything else that a
 // general parser takes (NaN, Inf, hexadecimal, underscores, grouping) is refused by name. The result is the nearest float64: an
-// integer below 2^53 divided by a power of ten that is a float64 itself is rounded once (Clinger 1990, How to read floating
-// point numbers accurately); everything longer goes to strconv.
+// integer is rounded once by conversion, and one of at most 15 digits, which is exact, once by division through a power of ten
+// that is exact too (Clinger 1990, How to read floating point numbers accurately); everything longer goes to strconv.
 func parseNumber(cell []byte, mark byte) (float64, numberFault) {
 	digits := cell
 	negative := false
@@ -48,7 +48,7 @@ func parseNumber(cell []byte, mark byte) (float64, numberFault) {
 			return slowNumber(cell, mark)
 		}
 	}
-	if at >= 0 && len(digits) == 1 || mantissa >= 1<<53 {
+	if at >= 0 && len(digits) == 1 {
 		return slowNumber(cell, mark)
 	}
 	v := float64(mantissa)

@@ -40,6 +40,36 @@ func TestStreamTellsBadRows(t *testing.T) {
 	}
 }
 
+// After a line that ends the rows, such as one with NUL bytes, no later row comes out, however often it is asked for.
+func TestStreamStopsAtBrokenLine(t *testing.T) {
+	text := "x,y,z\n" + strings.Repeat("1000,2000,3000\n", 10_000) + "1,\x00,3\n4,5,6\n"
+	p, err := NewPointReader(strings.NewReader(text), PointOptions{Name: "s.csv"})
+	if err != nil {
+		t.Fatal(err)
+	}
+	n := 0
+	for ; err == nil; n++ {
+		_, err = p.Next()
+	}
+	for range 2 {
+		pt, again := p.Next()
+		if again == nil || again.Error() != err.Error() || pt != (Point{}) {
+			t.Errorf("asked again: %+v, %v, first %v", pt, again, err)
+		}
+	}
+	if n != 10_001 || !strings.HasPrefix(err.Error(), "s.csv:10002: expected text; the line holds NUL bytes") {
+		t.Errorf("%d rows, %v", n-1, err)
+	}
+}
+
+// The Ctrl-Z at the end of a file of an old instrument is no row.
+func TestEndOfTextMark(t *testing.T) {
+	sv, err := ReadPoints(strings.NewReader("x,y,z\r\n1,2,3\r\n\x1a"), PointOptions{Name: "z.csv"})
+	if err != nil || sv.PointsRead != 1 {
+		t.Errorf("%+v, %v", sv, err)
+	}
+}
+
 // A good stream ends with io.EOF; conditions, header, guesses and digest can be asked for.
 func TestStream(t *testing.T) {
 	const text = "# crew: one\nx,y,z,code\n1,2,3,w1\n# a word\n# wind: none\n4,5,6,w1\n"
@@ -114,8 +144,8 @@ func TestRowsAllocateNothing(t *testing.T) {
 	}
 }
 
-// A quote that is never closed costs one pass over the file, not one for each line.
-func TestOpenQuoteIsLinear(t *testing.T) {
+// A quote that is never closed swallows the rest of the file: that is told with the line where it was opened.
+func TestOpenQuoteOverManyLines(t *testing.T) {
 	text := "x,y,z\n" + strings.Repeat("1,2,3\n", 300) + "\"4,5,6\n" + strings.Repeat("1,2,3\n", 170_000)
 	_, err := ReadPoints(strings.NewReader(text), PointOptions{Name: "q.csv"})
 	if err == nil || !strings.HasPrefix(err.Error(), "q.csv:302: expected a closing quote") {

@@ -116,6 +116,39 @@ func TestQuantities(t *testing.T) {
 	}
 }
 
+// Every spelling of every unit, with one of it in SI; sources as above. Temperatures are given at 50 of the unit.
+func TestEveryUnit(t *testing.T) {
+	const lbf, ft, usft, g = 4.4482216152605, 0.3048, 0.3048006096012192, 9.80665
+	want := map[Dimension]map[float64]string{
+		Length:         {1: "m metre metres meter meters", 1e-3: "mm", 1e-2: "cm", 1e3: "km", ft: "ft foot feet ift intlft", 0.0254: "in inch", usft: "us-ft usft ftus sft ussurveyft ussurveyfoot ussurveyfeet"},
+		Force:          {1: "n", 10: "dan", 1e3: "kn", 1e6: "mn", lbf: "lbf lb lbs", 1e3 * lbf: "kip kips", g: "kgf"},
+		ForcePerLength: {1: "n/m", 10: "dan/m", 1e3: "kn/m n/mm", g: "kg/m kgf/m", g / 1e3: "kg/km", lbf / ft: "lbf/ft lb/ft plf", 1e3 * lbf / ft: "kip/ft klf"},
+		Temperature:    {50: "degc c °c", 10: "degf f °f", -223.15: "k"},
+		PerTemperature: {1: "1/degc 1/°c 1/k /degc /°c /k", 1e-6: "1e-6/degc 1e-6/°c 1e-6/k 10^-6/degc 10^-6/°c 10^-6/k e-6/degc e-6/°c e-6/k ppm/degc ppm/°c ppm/k",
+			1.8: "1/degf 1/°f /degf /°f", 1.8e-6: "1e-6/degf 1e-6/°f 10^-6/degf 10^-6/°f e-6/degf e-6/°f ppm/degf ppm/°f"},
+		Fraction: {0.01: "%", 1: "1"},
+	}
+	for d, table := range units {
+		seen := 0
+		for si, names := range want[d] {
+			for _, name := range strings.Fields(names) {
+				seen++
+				one := 1.0
+				if d == Temperature {
+					one = 50
+				}
+				u, ok := table[name]
+				if got := one*u.factor + u.offset; !ok || math.Abs(got-si) > 1e-14*(math.Abs(si)+math.Abs(u.offset)) {
+					t.Errorf("%s %q is %.17g, want %.17g", d, name, got, si)
+				}
+			}
+		}
+		if seen != len(table) {
+			t.Errorf("%s: %d units tested of %d", d, seen, len(table))
+		}
+	}
+}
+
 // What is no quantity is refused with what was expected.
 func TestQuantitiesRefused(t *testing.T) {
 	for _, c := range []struct {
