@@ -33,8 +33,8 @@ var benchForms = []struct {
 	}},
 }
 
-// BenchmarkNext streams 100 000 rows; rows/s and allocations per row are reported beside the usual figures.
-func BenchmarkNext(b *testing.B) {
+// overForms runs read over 100 000 rows in each form; nanoseconds a row are reported beside the usual figures.
+func overForms(b *testing.B, read func(text []byte) (rows int, err error)) {
 	const n = 100_000
 	for _, form := range benchForms {
 		b.Run(form.name, func(b *testing.B) {
@@ -42,12 +42,8 @@ func BenchmarkNext(b *testing.B) {
 			b.SetBytes(int64(len(text)))
 			b.ReportAllocs()
 			for b.Loop() {
-				p, err := NewPointReader(bytes.NewReader(text), PointOptions{Name: "bench"})
-				for err == nil {
-					_, err = p.Next()
-				}
-				if err != io.EOF {
-					b.Fatal(err)
+				if rows, err := read(text); rows != n || err != nil {
+					b.Fatal(rows, err)
 				}
 			}
 			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/n, "ns/row")
@@ -55,21 +51,52 @@ func BenchmarkNext(b *testing.B) {
 	}
 }
 
-// BenchmarkReadPoints reads 100 000 rows into a survey.
+// BenchmarkNext streams rows.
+func BenchmarkNext(b *testing.B) {
+	overForms(b, func(text []byte) (int, error) {
+		p, err := NewPointReader(bytes.NewReader(text), PointOptions{Name: "bench"})
+		for err == nil {
+			_, err = p.Next()
+		}
+		if err != io.EOF {
+			return 0, err
+		}
+		return p.Rows(), nil
+	})
+}
+
+// BenchmarkReadPoints reads rows into a survey.
 func BenchmarkReadPoints(b *testing.B) {
-	const n = 100_000
-	for _, form := range benchForms {
-		b.Run(form.name, func(b *testing.B) {
-			text := form.text(n)
-			b.SetBytes(int64(len(text)))
-			b.ReportAllocs()
+	overForms(b, func(text []byte) (int, error) {
+		sv, err := ReadPoints(bytes.NewReader(text), PointOptions{Name: "bench"})
+		if err != nil {
+			return 0, err
+		}
+		return sv.PointsRead, nil
+	})
+}
+
+// BenchmarkManySpans reads spans of 31 points that a cables file of as many lines knows.
+func BenchmarkManySpans(b *testing.B) {
+	for _, spans := range []int{1000, 10_000} {
+		b.Run(fmt.Sprint("spans=", spans), func(b *testing.B) {
+			var text bytes.Buffer
+			text.WriteString("x,y,z,code\n")
+			var known []Design
+			for i := range spans {
+				span := Exact(100)
+				known = append(known, Design{Cable: fmt.Sprint("c", i), SpanLength: &span})
+				for j := range 31 {
+					fmt.Fprintf(&text, "%d,%d,%d,c%d\n", i, j*3, j%7, i)
+				}
+			}
 			for b.Loop() {
-				sv, err := ReadPoints(bytes.NewReader(text), PointOptions{Name: "bench"})
-				if err != nil || sv.PointsRead != n {
+				sv, err := ReadPoints(bytes.NewReader(text.Bytes()), PointOptions{Name: "bench", Known: known})
+				if err != nil || len(sv.Spans) != spans {
 					b.Fatal(err)
 				}
 			}
-			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/n, "ns/row")
+			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/float64(31*spans), "ns/row")
 		})
 	}
 }
