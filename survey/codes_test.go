@@ -113,12 +113,23 @@ func TestSpanMustBeNamed(t *testing.T) {
 		{row + "q\n", PointOptions{Cable: "main"}, `s.csv:2: column "code": found "q", expected the span as well: cable "main" has 2 spans in the cables file; write main/1, or say --code`},
 		{"x,y,z\n1,2,3\n", PointOptions{Cable: "main"}, `s.csv: expected the span as well: cable "main" has 2 spans in the cables file; say --span 1`},
 		{"x,y,z\n1,2,3\n", PointOptions{}, `s.csv: expected the cable that the points are on; the file has no codes and the cables file 2 spans: say --cable ID, or add a line "# cable: ID" at the top`},
+		{"# span: 1\n" + row + "main/1\n", PointOptions{}, `s.csv: column "span": found "1", expected the cable of that span as well; say --cable ID, or add a line "# cable: ID" at the top`},
 		{row + "q\n", PointOptions{Codes: rulesOf(t, "q=main/1", "Q=main/2")}, `--code: found "Q" twice with different meanings, expected one meaning for each code; take one of the two out`},
 	} {
 		c.o.Name, c.o.Known = "s.csv", knownOf("main/1", "main/2")
 		_, err := ReadPoints(strings.NewReader(c.text), c.o)
 		if err == nil || err.Error() != c.want {
 			t.Errorf("%v\nwant %s", err, c.want)
+		}
+	}
+}
+
+// The span that the file names goes with its cable, also when a flag names the same cable; another cable leaves it behind.
+func TestSpanOfFile(t *testing.T) {
+	for _, c := range []struct{ flag, want string }{{"", "main/2"}, {"MAIN", "main/2"}, {"guy", "guy/"}} {
+		sv, err := ReadPoints(strings.NewReader("# cable: main\n# span: 2\nx,y,z\n1,2,3\n"), PointOptions{Name: "s.csv", Known: knownOf("main/1", "main/2", "guy"), Cable: c.flag})
+		if err != nil || sv.Spans[0].Cable+"/"+sv.Spans[0].Span != c.want {
+			t.Errorf("--cable %q: %+v, %v", c.flag, sv, err)
 		}
 	}
 }

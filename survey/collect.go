@@ -52,15 +52,18 @@ func (p *PointReader) overrule() {
 	if p.opts.Structure == "" {
 		p.opts.Structure = c.Structure
 	}
+	if c.cable != "" && p.opts.Cable != "" && !strings.EqualFold(c.cable, p.opts.Cable) {
+		p.notice(0, "", "--cable %s replaces the cable %s that the file names", p.opts.Cable, c.cable)
+		c.span = ""
+	}
 	if p.opts.Cable == "" {
 		p.opts.Cable = c.cable
-		if p.opts.Span == "" {
-			p.opts.Span = c.span
-		}
-		return
 	}
-	if c.cable != "" && !strings.EqualFold(c.cable, p.opts.Cable) {
-		p.notice(0, "", "--cable %s replaces the cable %s that the file names", p.opts.Cable, c.cable)
+	if p.opts.Span == "" {
+		p.opts.Span = c.span
+	}
+	if p.opts.Span != "" && p.opts.Cable == "" {
+		p.problems.add(Problem{File: p.opts.Name, Column: "span", Found: p.opts.Span, Expected: "the cable of that span as well", Mend: "say --cable ID, or add a line \"# cable: ID\" at the top"})
 	}
 }
 
