@@ -79,6 +79,9 @@ func NewPointReader(r io.Reader, o PointOptions) (*PointReader, error) {
 		return nil, &InputError{Problems: []Problem{{File: o.Name, Expected: "rows of points", Mend: "the file holds only comments"}}}
 	}
 	if err != nil {
+		if err = p.ending(err); err == io.EOF {
+			err = &p.problems
+		}
 		return nil, err
 	}
 	if err := p.settleColumns(cells); err != nil {
