@@ -1,6 +1,9 @@
 package fit
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // compareShapes fits the catenary and the parabola beside the chosen shape and weighs them by the corrected information
 // criterion of Akaike (Hurvich and Tsai 1989, Biometrika 76, 297-307). All have three parameters, so the difference is that
@@ -15,7 +18,7 @@ func (r *Result) compareShapes(w *workspace, share float64, o Options) {
 		if alt.share == share {
 			continue
 		}
-		other := Result{A: r.A, B: r.B, Observations: r.Observations, APriori: r.APriori}
+		other := Result{A: r.A, B: r.B, Observations: r.Observations, APriori: r.APriori, locals: slices.Clone(r.locals)}
 		if err := other.solve(w, alt.share, o); err != nil {
 			continue
 		}

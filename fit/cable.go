@@ -28,7 +28,7 @@ var workspaces = sync.Pool{New: func() any { return new(workspace) }}
 type workspace struct {
 	solver  Solver
 	problem curveProblem
-	cov     [9]float64
+	cov     [len(gradient{}) * len(gradient{})]float64
 
 	quantiles quantiles
 }
@@ -47,25 +47,54 @@ func InPlane(obs []Observation, frame Frame, a, b End, o Options) (*Result, erro
 	if err != nil {
 		return nil, err
 	}
-	err = r.solve(w, share, o)
-	if o.RejectBeyond > 0 && (err == nil || len(obs) > 5) {
-		err = r.reject(w, share, o, err)
+	if r.locals, err = o.locals(a, b); err != nil {
+		return nil, err
 	}
-	bad, named := r.nameGross(w, o, err)
-	if err != nil && named {
-		return nil, fmt.Errorf("%w; point %q (line %d) is about %.3g m off in height: leave it out", err, bad.ID, bad.Line, bad.Residual)
+	first := *r
+	first.Observations, first.locals = slices.Clone(r.Observations), slices.Clone(r.locals)
+	err = r.adjust(w, share, o, false)
+	if o.FindLoads > 0 && len(r.Rejected) > 1 {
+		// What was dropped point by point may have been a local load: the other order is tried, and the one that keeps more points wins.
+		if first.adjust(w, share, o, true) == nil && len(first.locals) > len(r.locals) && len(first.Rejected) < len(r.Rejected) {
+			*r, err = first, nil
+		}
 	}
 	if err != nil {
 		return nil, err
 	}
+	if err := r.solve(w, share, o); err != nil { // the workspace may hold the other one
+		return nil, err
+	}
+	r.Suspects = nil
 	r.judge(w, o)
-	if named && !slices.ContainsFunc(r.Suspects, func(s Suspect) bool { return s.Station == bad.Station && s.ID == bad.ID }) {
+	if err := r.tellLoads(w); err != nil {
+		return nil, err
+	}
+	if bad, named := r.nameGross(w, o, nil); named && !slices.ContainsFunc(r.Suspects, func(s Suspect) bool { return s.Station == bad.Station && s.ID == bad.ID }) {
 		r.Suspects = append(r.Suspects, bad)
 	}
 	if !o.NoAlternatives {
 		r.compareShapes(w, share, o)
 	}
 	return r, nil
+}
+
+// adjust fits the curve, drops gross errors and searches for local loads, in that order or with the search first.
+func (r *Result) adjust(w *workspace, share float64, o Options, searchFirst bool) error {
+	err := r.solve(w, share, o)
+	if searchFirst && err == nil {
+		err = r.search(w, share, o)
+	}
+	if o.RejectBeyond > 0 && (err == nil || len(r.Observations) > 5) {
+		err = r.reject(w, share, o, err)
+	}
+	if err != nil {
+		if bad, named := r.nameGross(w, o, err); named {
+			return fmt.Errorf("%w; point %q (line %d) is about %.3g m off in height: leave it out", err, bad.ID, bad.Line, bad.Residual)
+		}
+		return err
+	}
+	return r.search(w, share, o)
 }
 
 // share is the share of self weight that the shape stands for.
@@ -152,64 +181,123 @@ func (r *Result) solve(w *workspace, share float64, o Options) error {
 		z0 += r.Observations[i].Z
 	}
 	z0 /= float64(len(r.Observations))
-	w.problem = curveProblem{obs: r.Observations, base: Curve{S1: lo, S2: hi, SelfShare: share}, z0: z0}
-	var start [3]float64
-	w.problem.start(start[:])
+	p := &w.problem
+	*p = curveProblem{obs: r.Observations, base: Curve{S1: lo, S2: hi, SelfShare: share}, z0: z0, n: 3, cusps: p.cusps}
+	var start gradient
+	if r.locals == nil {
+		p.start(start[:])
+	} else if err := r.prepareLoads(p, start[:]); err != nil {
+		return err
+	}
 	w.solver.MaxIterations = o.MaxIterations
-	sol := w.solver.Solve(&w.problem, start[:])
+	sol := w.solver.Solve(p, start[:p.n])
 	r.Iterations, r.Converged = sol.Iterations, sol.Status.Err() == nil
 	if err := sol.Status.Err(); err != nil {
 		return err
 	}
-	condition, err := w.solver.Covariance(w.cov[:])
+	condition, err := w.solver.Covariance(w.cov[:p.n*p.n])
 	r.ConditionNumber = condition
 	if err != nil {
 		return err
 	}
-	r.DegreesOfFreedom = len(r.Observations) - 3
+	r.DegreesOfFreedom = len(r.Observations) - p.n
 	r.VarianceFactor = sol.Sum / float64(r.DegreesOfFreedom)
-	r.refer(w.problem.curve(sol.Theta), z0, w.cov)
+	r.n, r.columns = p.n, p.columns
+	c := p.curve(sol.Theta)
+	if r.locals != nil {
+		c.Cusps = slices.Clone(c.Cusps)
+		r.keep(p.columns, sol.Theta)
+	}
+	r.refer(c, z0, w.cov[:p.n*p.n])
 	return nil
 }
 
+// prepareLoads sets the local loads of the problem and a first guess.
+func (r *Result) prepareLoads(p *curveProblem, start []float64) error {
+	var err error
+	p.loads = r.locals
+	if p.columns, p.n, err = layout(r.locals); err != nil {
+		return err
+	}
+	if len(p.obs) <= p.n {
+		return fmt.Errorf("fit: %d points; a curve with these local loads needs %d and one more to check it", len(p.obs), p.n)
+	}
+	return p.startLoaded(start[:p.n])
+}
+
 // refer moves the defining heights of the curve to the chord ends and carries the covariance along.
-func (r *Result) refer(c Curve, z0 float64, cov [9]float64) {
-	var ga, gb [3]float64
-	c.Gradient(r.A.Station, &ga)
-	c.Gradient(r.B.Station, &gb)
-	t := [3][3]float64{ga, gb, {0, 0, 1}}
-	for i := range 3 {
-		for j := range 3 {
-			sum := 0.0
-			for k := range 3 {
-				for l := range 3 {
-					sum += t[i][k] * cov[3*k+l] * t[j][l]
-				}
-			}
-			r.Cov[i][j] = sum
+func (r *Result) refer(c Curve, z0 float64, cov []float64) {
+	e := c.evaluatorBy(r.columns)
+	var ga, gb gradient
+	e.at(r.A.Station, &ga)
+	e.at(r.B.Station, &gb)
+	n := r.n
+	if cap(r.Full) < n*n {
+		r.Full = make([]float64, n*n)
+	}
+	r.Full = r.Full[:n*n]
+	// Full = T cov T^T, where T is the identity but for the first two rows.
+	copy(r.Full, cov)
+	for j := range n {
+		var a, b float64
+		for k := range n {
+			a += ga[k] * cov[n*k+j]
+			b += gb[k] * cov[n*k+j]
 		}
+		r.Full[j], r.Full[n+j] = a, b
+	}
+	for i := range n {
+		var a, b float64
+		for k, v := range r.Full[n*i : n*i+n] {
+			a += ga[k] * v
+			b += gb[k] * v
+		}
+		r.Full[n*i], r.Full[n*i+1] = a, b
+	}
+	for i := range 3 {
+		copy(r.Cov[i][:], r.Full[n*i:n*i+3])
 	}
 	c = c.Rebase(r.A.Station, r.B.Station)
 	c.Z1, c.Z2 = c.Z1+z0, c.Z2+z0
 	r.Curve = c
 }
 
-// Propagate is the standard uncertainty of a figure whose gradient by (Z1, Z2, Curvature) is given.
-func (r *Result) Propagate(g [3]float64) float64 {
+// evaluator is that of the fitted curve with heights relative to z0 and derivatives by every parameter.
+func (r *Result) evaluator(z0 float64) evaluator {
+	c := r.Curve
+	c.Z1, c.Z2 = c.Z1-z0, c.Z2-z0
+	return c.evaluatorBy(r.columns)
+}
+
+// variance is that of a figure with the given gradient by all parameters.
+func (r *Result) variance(g *gradient) float64 {
 	sum := 0.0
-	for i := range 3 {
-		for j := range 3 {
-			sum += g[i] * r.Cov[i][j] * g[j]
+	for i := range r.n {
+		for j := range r.n {
+			sum += g[i] * r.Full[i*r.n+j] * g[j]
 		}
 	}
-	return math.Sqrt(max(sum, 0))
+	return max(sum, 0)
+}
+
+// scaleCovariance multiplies all covariances.
+func (r *Result) scaleCovariance(factor float64) {
+	for i := range r.Full {
+		r.Full[i] *= factor
+	}
+	for i := range 3 {
+		for j := range 3 {
+			r.Cov[i][j] *= factor
+		}
+	}
 }
 
 // HeightU is the standard uncertainty of the fitted elevation at a station, m.
 func (r *Result) HeightU(s float64) float64 {
-	var g [3]float64
-	r.Curve.Gradient(s, &g)
-	return r.Propagate(g)
+	e := r.evaluator(0)
+	var g gradient
+	e.at(s, &g)
+	return math.Sqrt(r.variance(&g))
 }
 
 // Hangs reports whether the curvature is known to be positive: above two standard uncertainties.

@@ -69,7 +69,7 @@ func (c Curve) prepare() catenaryTerms {
 }
 
 // at is height, slope and second derivative at station s; g, when not nil, gets the gradient of the height.
-func (e *catenaryTerms) at(station float64, g *[3]float64) (z, slope, bend float64) {
+func (e *catenaryTerms) at(station float64, g *gradient) (z, slope, bend float64) {
 	v := station - e.m
 	u := e.k * v
 	s, c, r := even(u)

@@ -31,13 +31,13 @@ func (r *Result) correlation() {
 	v := make([]float64, n)
 	scores := make([][3]float64, n)
 	e := r.Curve.evaluator()
-	var g [3]float64
+	var g gradient
 	for i, k := range order {
 		o := r.Observations[k]
 		_, slope, _ := e.at(o.S, &g)
 		sigma := math.Sqrt(o.VarZ - 2*slope*o.CovSZ + slope*slope*o.VarS)
 		v[i] = r.Residuals[k] / sigma
-		for j := range g {
+		for j := range scores[i] {
 			scores[i][j] = g[j] / sigma * v[i]
 		}
 	}

@@ -29,6 +29,9 @@ func (c Curve) chord() float64  { return (c.Z2 - c.Z1) / (c.S2 - c.S1) }
 //
 //	z - line = t (s-m) (S(u) - S(l))/S(l) + cosh(psi) (k/2) (s-S1)(s-S2) S((u+l)/2) S((u-l)/2)
 func (c Curve) above(s float64) float64 {
+	if len(c.Cusps) > 0 {
+		return c.partAt(s).Z(s) - c.Z1 - c.chord()*(s-c.S1)
+	}
 	k := c.Curvature
 	bow := k / 2 * (s - c.S1) * (s - c.S2)
 	switch c.Shape() {
@@ -77,8 +80,11 @@ func (c Curve) Z(s float64) float64 {
 	return (c.Z1+c.Z2)/2 + c.chord()*(s-c.middle()) + c.above(s)
 }
 
-// Slope is dz/ds at a station, dimensionless.
+// Slope is dz/ds at a station, dimensionless; at a local load that on the side of greater stations.
 func (c Curve) Slope(s float64) float64 {
+	if len(c.Cusps) > 0 {
+		return c.partAt(s).Slope(s)
+	}
 	switch c.Shape() {
 	case Parabola:
 		return c.chord() + c.Curvature*(s-c.middle())
@@ -94,6 +100,9 @@ func (c Curve) Slope(s float64) float64 {
 func (c Curve) LowPoint() (station, elevation float64, ok bool) {
 	if !(c.Curvature > 0) {
 		return 0, 0, false
+	}
+	if len(c.Cusps) > 0 {
+		return c.lowestOf()
 	}
 	station = c.whereSlope(0)
 	return station, c.Z(station), true
@@ -113,6 +122,12 @@ func (c Curve) whereSlope(t float64) float64 {
 
 // ArcLength is the length of the curve between two stations, m, negative when sb < sa.
 func (c Curve) ArcLength(sa, sb float64) float64 {
+	if len(c.Cusps) > 0 {
+		if sb < sa {
+			return -c.arcOf(sb, sa)
+		}
+		return c.arcOf(sa, sb)
+	}
 	switch c.Shape() {
 	case Parabola:
 		ta, tb := c.Slope(sa), c.Slope(sb)
@@ -144,7 +159,7 @@ func parabolaArc(run, ta, tb, d float64) float64 {
 
 // Rebase is the same curve, defined by its heights at two other stations sa < sb.
 func (c Curve) Rebase(sa, sb float64) Curve {
-	return Curve{S1: sa, Z1: c.Z(sa), S2: sb, Z2: c.Z(sb), Curvature: c.Curvature, SelfShare: c.SelfShare}
+	return Curve{S1: sa, Z1: c.Z(sa), S2: sb, Z2: c.Z(sb), Curvature: c.Curvature, SelfShare: c.SelfShare, Cusps: c.Cusps}
 }
 
 // Sag is the vertical distance at station s from the chord between stations sa and sb down to the curve, m.
@@ -154,6 +169,9 @@ func (c Curve) Sag(s, sa, sb float64) float64 { return -c.Rebase(sa, sb).above(s
 // is parallel to the chord.
 func (c Curve) GreatestSag(sa, sb float64) (station, sag float64) {
 	b := c.Rebase(sa, sb)
+	if len(c.Cusps) > 0 {
+		return b.greatestSagOf()
+	}
 	station = b.middle()
 	if c.Curvature != 0 {
 		station = min(max(b.whereSlope(b.chord()), sa), sb)
@@ -161,16 +179,16 @@ func (c Curve) GreatestSag(sa, sb float64) (station, sag float64) {
 	return station, -b.above(station)
 }
 
-// Gradient fills g with dz/d(Z1, Z2, Curvature) at station s: dimensionless, dimensionless, m2.
+// Gradient fills g with dz/d(Z1, Z2, Curvature) at station s, the kinks of local loads held: dimensionless, dimensionless, m2.
 func (c Curve) Gradient(s float64, g *[3]float64) {
-	switch c.Shape() {
-	case Parabola:
-		part := (s - c.S1) / c.length()
-		g[0], g[1], g[2] = 1-part, part, (s-c.S1)*(s-c.S2)/2
-	case Mixed:
-		c.gradientMixed(s, g)
-	default:
-		e := c.prepare()
-		e.at(s, g)
-	}
+	var all gradient
+	e := c.evaluator()
+	e.at(s, &all)
+	copy(g[:], all[:3])
+}
+
+// gradientParabola is Gradient of a parabola.
+func (c Curve) gradientParabola(s float64, g *gradient) {
+	part := (s - c.S1) / c.length()
+	g[0], g[1], g[2] = 1-part, part, (s-c.S1)*(s-c.S2)/2
 }

@@ -168,7 +168,7 @@ func TestMixedCurveHasItsLimits(t *testing.T) {
 
 // The parabola's arc against Simpson's rule on a fine grid, independent of the closed form.
 func TestParabolaArcAgainstQuadrature(t *testing.T) {
-	for _, c := range []Curve{{0, 0, 100, 0, 1e-7, 0}, {0, 0, 100, 40, 1e-3, 0}, {0, 0, 100, -170, 0.02, 0}} {
+	for _, c := range []Curve{{S2: 100, Curvature: 1e-7}, {S2: 100, Z2: 40, Curvature: 1e-3}, {S2: 100, Z2: -170, Curvature: 0.02}} {
 		n, sum := 20000, 0.0
 		for i := 0; i <= n; i++ {
 			w := 4.0 - 2*float64(1-i%2)

@@ -6,26 +6,41 @@ import "math"
 // from the curve in units of its standard deviation across the curve, signed, at the foot point where that distance is
 // least (orthogonal distance regression: Boggs, Byrd and Schnabel 1987, SIAM J. Sci. Stat. Comput. 8, 1052-1078). With
 // errors in height alone it is vertical least squares. Heights are held relative to z0 so that none of their digits are lost.
+//
+// Parameters are the heights at both ends of the base, the curvature, and then the free sizes and places of local loads.
 type curveProblem struct {
 	obs  []Observation
 	base Curve // stations and shape; heights and curvature come from theta
 	z0   float64
+
+	loads   []local
+	columns []column
+	n       int // number of parameters
+	cusps   []Cusp
 }
 
-func (p *curveProblem) Size() (m, n int) { return len(p.obs), 3 }
+func (p *curveProblem) Size() (m, n int) { return len(p.obs), p.n }
 
 func (p *curveProblem) curve(theta []float64) Curve {
 	c := p.base
 	c.Z1, c.Z2, c.Curvature = theta[0], theta[1], theta[2]
+	if p.loads != nil {
+		p.cusps = cuspsOf(p.loads, p.columns, theta, p.cusps)
+		c.Cusps = p.cusps
+	}
 	return c
 }
 
 // foot is the point of the curve nearest to the observation in the metric of its covariance: its distance in standard
 // deviations and the standard deviation across the curve there; g gets the gradient of the height at the foot.
-func (e *evaluator) foot(o *Observation, z0 float64, g *[3]float64) (r, sigma float64) {
+func (e *evaluator) foot(o *Observation, z0 float64, g *gradient) (r, sigma float64) {
 	dz := o.Z - z0
+	if e.loads != nil { // the foot is sought on the part that holds the point: at a cusp there is no tangent
+		e.hold = e.loads.pieceAt(o.S)
+	}
 	if o.VarS == 0 {
 		z, _, _ := e.at(o.S, g)
+		e.hold = -1
 		sigma = math.Sqrt(o.VarZ)
 		return (dz - z) / sigma, sigma
 	}
@@ -56,6 +71,7 @@ func (e *evaluator) foot(o *Observation, z0 float64, g *[3]float64) (r, sigma fl
 		}
 	}
 	z, slope, _ := e.at(t, g)
+	e.hold = -1
 	sigma = math.Sqrt(o.VarZ - 2*o.CovSZ*slope + o.VarS*slope*slope)
 	return (dz - z - slope*(o.S-t)) / sigma, sigma
 }
@@ -63,7 +79,7 @@ func (e *evaluator) foot(o *Observation, z0 float64, g *[3]float64) (r, sigma fl
 // Evaluate: at the foot the derivative by the foot's own station vanishes, so that of the distance is exactly that of the
 // height there over the standard deviation across the curve.
 func (p *curveProblem) Evaluate(theta, r, j []float64) {
-	e := p.curve(theta).evaluator()
+	e := p.curve(theta).evaluatorBy(p.columns)
 	if j == nil {
 		for i := range p.obs {
 			r[i], _ = e.foot(&p.obs[i], p.z0, nil)
@@ -71,12 +87,15 @@ func (p *curveProblem) Evaluate(theta, r, j []float64) {
 		return
 	}
 	m := len(p.obs)
-	var g [3]float64
+	var g gradient
 	var sigma float64
 	for i := range p.obs {
 		r[i], sigma = e.foot(&p.obs[i], p.z0, &g)
 		weight := -1 / sigma
 		j[i], j[m+i], j[2*m+i] = weight*g[0], weight*g[1], weight*g[2]
+		for k := 3; k < p.n; k++ {
+			j[k*m+i] = weight * g[k]
+		}
 	}
 }
 

@@ -9,10 +9,20 @@ type evaluator struct {
 	cat catenaryTerms
 	mix mixedCurve
 	ok  bool // mix is usable
+
+	loads *cusped // for a curve with local loads, else nil
+	hold  int     // the part of it on whose smooth continuation all stations are taken, -1 = the part that holds the station
 }
 
-func (c Curve) evaluator() evaluator {
-	e := evaluator{c: c}
+func (c Curve) evaluator() evaluator { return c.evaluatorBy(nil) }
+
+// evaluatorBy is evaluator with derivatives by sizes and places of local loads as well, in the given columns.
+func (c Curve) evaluatorBy(columns []column) evaluator {
+	e := evaluator{c: c, hold: -1}
+	if len(c.Cusps) > 0 {
+		e.loads = c.cusped(columns)
+		return e
+	}
 	switch c.Shape() {
 	case Catenary:
 		e.cat = c.prepare()
@@ -23,14 +33,20 @@ func (c Curve) evaluator() evaluator {
 }
 
 // at is height, slope and second derivative at station s; g, when not nil, gets the gradient of the height.
-func (e *evaluator) at(s float64, g *[3]float64) (z, slope, bend float64) {
+func (e *evaluator) at(s float64, g *gradient) (z, slope, bend float64) {
 	c := &e.c
 	switch {
+	case e.loads != nil:
+		i := e.hold
+		if i < 0 {
+			i = e.loads.pieceAt(s)
+		}
+		return e.loads.at(i, s, g)
 	case c.SelfShare == 1:
 		return e.cat.at(s, g)
 	case c.SelfShare == 0:
 		if g != nil {
-			c.Gradient(s, g)
+			c.gradientParabola(s, g)
 		}
 		return c.Z(s), c.Slope(s), c.Curvature
 	case !e.ok:

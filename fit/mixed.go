@@ -25,7 +25,7 @@ func (c Curve) mixed() (m mixedCurve, ok bool) {
 	if math.Abs(c.Curvature*c.length()) < straight {
 		return m, false
 	}
-	m.eq = hanging.Equation{KW: c.Curvature * c.SelfShare, KQ: c.Curvature * (1 - c.SelfShare), G: 1}
+	m.eq = c.equation()
 	up, sign := m.eq, 1.0
 	if c.Curvature < 0 {
 		up.KW, up.KQ, sign = -m.eq.KW, -m.eq.KQ, -1
@@ -38,6 +38,11 @@ func (c Curve) mixed() (m mixedCurve, ok bool) {
 	}
 	m.psi1, m.psi2 = sign*psi1, sign*psi2
 	return m, true
+}
+
+// equation is the differential equation of the curve.
+func (c Curve) equation() hanging.Equation {
+	return hanging.Equation{KW: c.Curvature * c.SelfShare, KQ: c.Curvature * (1 - c.SelfShare), G: 1}
 }
 
 // at is the tangent angle measure at a station.
@@ -83,7 +88,7 @@ func (c Curve) arcMixed(sa, sb float64) float64 {
 
 // gradientMixed uses the symmetries of the curve: shifting it and enlarging it (by 1 + e the curvature falls by e) leave it
 // a solution, so every neighbouring solution is z + A z' + B + C (z - s z').
-func (c Curve) gradientMixed(s float64, g *[3]float64) {
+func (c Curve) gradientMixed(s float64, g *gradient) {
 	m, ok := c.mixed()
 	if !ok {
 		part, f := (s-c.S1)/c.length(), c.bend(c.chord())
@@ -94,7 +99,7 @@ func (c Curve) gradientMixed(s float64, g *[3]float64) {
 }
 
 // gradient is gradientMixed for known tangents.
-func (m mixedCurve) gradient(c Curve, s, psi float64, g *[3]float64) {
+func (m mixedCurve) gradient(c Curve, s, psi float64, g *gradient) {
 	t1, t2, t := math.Sinh(m.psi1), math.Sinh(m.psi2), math.Sinh(psi)
 	part := (t - t1) / (t2 - t1)
 	g[0], g[1] = 1-part, part

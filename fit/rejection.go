@@ -100,7 +100,7 @@ func (x *rejection) dropGross(solved error) error {
 
 // heights are the observations with errors in height alone.
 func (r *Result) heights() *Result {
-	h := Result{A: r.A, B: r.B, Observations: slices.Clone(r.Observations)}
+	h := Result{A: r.A, B: r.B, Observations: slices.Clone(r.Observations), locals: slices.Clone(r.locals)}
 	for i := range h.Observations {
 		h.Observations[i].VarS, h.Observations[i].CovSZ = 0, 0
 	}
@@ -198,11 +198,8 @@ func equivalent(t SingleTest) float64 {
 
 // prediction is the residual of a point that is not in the fit across the curve, and its standard deviation, m.
 func (r *Result) prediction(v Observation, z0, scale float64) (residual, sd float64) {
-	c := r.Curve
-	c.Z1, c.Z2 = c.Z1-z0, c.Z2-z0
-	e := c.evaluator()
-	var g [3]float64
+	e := r.evaluator(z0)
+	var g gradient
 	q, sigma := e.foot(&v, z0, &g)
-	u := r.Propagate(g)
-	return q * sigma, math.Sqrt(scale * (sigma*sigma + u*u))
+	return q * sigma, math.Sqrt(scale * (sigma*sigma + r.variance(&g)))
 }

@@ -61,16 +61,14 @@ func (q *quantiles) region(k float64) (low, high float64) {
 // singleTests are the tests of all points against the last solution in w.
 func (r *Result) singleTests(w *workspace) []SingleTest {
 	n := len(r.Observations)
-	c := r.Curve
-	c.Z1, c.Z2 = c.Z1-w.problem.z0, c.Z2-w.problem.z0
-	e := c.evaluator()
+	e := r.evaluator(w.problem.z0)
 	f := float64(r.DegreesOfFreedom)
 	sum := r.VarianceFactor * f
 	out := make([]SingleTest, n)
-	var g [3]float64
+	var g gradient
 	for i := range r.Observations {
 		v, sigma := e.foot(&r.Observations[i], w.problem.z0, &g)
-		left := 1 - r.Propagate(g)*r.Propagate(g)/(sigma*sigma) // share of the point's variance left in its residual
+		left := 1 - r.variance(&g)/(sigma*sigma) // share of the point's variance left in its residual
 		if left < 1e-6 {
 			out[i] = SingleTest{Dof: math.Inf(1), unchecked: true}
 			continue
@@ -121,18 +119,25 @@ func (r *Result) scale(w *workspace) float64 {
 	return 1
 }
 
-// judge fills everything that is said about the final fit and scales its covariance.
-func (r *Result) judge(w *workspace, o Options) {
-	n := len(r.Observations)
-	tests := r.singleTests(w)
-	r.W = make([]float64, n)
-	r.Residuals = make([]float64, n)
-	sum := 0.0
+// residuals fills the vertical residuals and returns the sum of their squares, m2.
+func (r *Result) residuals() (sum float64) {
+	r.Residuals = make([]float64, len(r.Observations))
 	e := r.Curve.evaluator()
 	for i, v := range r.Observations {
 		z, _, _ := e.at(v.S, nil)
 		r.Residuals[i] = v.Z - z
 		sum += r.Residuals[i] * r.Residuals[i]
+	}
+	return sum
+}
+
+// judge fills everything that is said about the final fit and scales its covariance.
+func (r *Result) judge(w *workspace, o Options) {
+	n := len(r.Observations)
+	tests := r.singleTests(w)
+	r.W = make([]float64, n)
+	sum := r.residuals()
+	for i, v := range r.Observations {
 		r.W[i] = tests[i].W
 		if crit := w.quantiles.critical(tests[i], o.alpha()); math.Abs(tests[i].W) > crit {
 			r.Suspects = append(r.Suspects, r.suspect(v, tests[i], crit, fmt.Sprintf("|w| = %.2f > %.2f", math.Abs(tests[i].W), crit)))
@@ -143,9 +148,5 @@ func (r *Result) judge(w *workspace, o Options) {
 	r.ScaledBy = r.scale(w)
 	r.correlation()
 	factor := r.ScaledBy * r.Widening * r.Widening
-	for i := range 3 {
-		for j := range 3 {
-			r.Cov[i][j] *= factor
-		}
-	}
+	r.scaleCovariance(factor)
 }

@@ -23,6 +23,7 @@ type Curve struct {
 	S1, Z1, S2, Z2 float64
 	Curvature      float64
 	SelfShare      float64
+	Cusps          []Cusp // local loads by station, nil = none; shared by copies, never changed in place
 }
 
 // Observation is one point in the plane of the cable: station and elevation in m with their covariance in m2.
@@ -61,6 +62,9 @@ type Options struct {
 	Alpha          float64 // significance from which a point is listed as suspect, two-sided; 0 = 0.001 (Baarda 1968)
 	MaxIterations  int     // 0 = 200
 	NoAlternatives bool    // do not fit the other shapes
+
+	Loads     []LocalLoad // local loads that are known to hang on the span, any order
+	FindLoads int         // search for as many local loads at most that nobody told; 0 = do not search
 }
 
 // Suspect is one point that the single-point test speaks against.
@@ -78,8 +82,10 @@ type Suspect struct {
 type Result struct {
 	Curve Curve         // through the two ends of the chord: S1 = A.Station, S2 = B.Station
 	Cov   [3][3]float64 // covariance of (Z1, Z2, Curvature), scaled as ScaledBy says
+	Full  []float64     // the same with the free kinks and places of local loads after it, in the order of Loads, row by row
 	Frame Frame
 	A, B  End
+	Loads []LoadResult // local loads, those told and those found, by station
 
 	Observations []Observation // those used, in order of input
 	Residuals    []float64     // vertical residual of each, measured minus fitted at the same station, m
@@ -103,6 +109,10 @@ type Result struct {
 	Converged        bool
 	ConditionNumber  float64 // of the column-scaled weighted Jacobian
 	Alternatives     []Alternative
+
+	locals  []local
+	columns []column
+	n       int // number of parameters
 }
 
 // Alternative is another shape through the same points.
