@@ -75,6 +75,9 @@ func (p *PointReader) matchConditions(sv *Survey) {
 	for _, l := range sv.UnmatchedLoads() {
 		unmatched("load", l.Cable, "a load on a cable of this survey")
 	}
+	for _, l := range sv.UnmatchedLocal() {
+		unmatched("load", l.Cable, "a load on a cable of this survey")
+	}
 	for _, r := range sv.UnmatchedReadings() {
 		unmatched("reading", r.Cable, "a reading on a cable of this survey")
 	}

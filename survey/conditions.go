@@ -31,6 +31,7 @@ func conditionKey(key string) string {
 //	temperature   of the cable: 12 +- 2 degC
 //	loads         as filed | listed | not checked
 //	load          CABLE[/SPAN]; 180 +- 10 N/m; along cable | along deck; what it is   (may be given several times)
+//	load          CABLE[/SPAN]; 3.2 +- 0.2 kN | unknown; at 12.4 m; what it is   (hangs at one place, that far from support A along the chord)
 //	reading       CABLE[/SPAN]; tension at A | tension at B | horizontal tension; 30.7 +- 0.5 kN; load cell   (one a span)
 //	accuracy      standard deviation of a point: 3 mm, or horizontal 3 mm, vertical 2 mm
 //	unit          of coordinates
@@ -193,9 +194,15 @@ func (c *Conditions) addLoad(value string) error {
 	for i := range parts {
 		parts[i] = strings.TrimSpace(parts[i])
 	}
-	const form = "CABLE; 180 +- 10 N/m; along cable (or along deck); what it is"
+	const form = "CABLE; 180 +- 10 N/m; along cable (or along deck); what it is, or CABLE; 3.2 +- 0.2 kN; at 12.4 m; what it is"
 	if len(parts) < 3 {
 		return wrong(value, form, "")
+	}
+	if c.Loads != "" && c.Loads != LoadsListed {
+		return wrong(value, fmt.Sprintf("no list of loads beside \"loads: %s\"", c.Loads), "write \"loads: listed\", or take the load line out")
+	}
+	if place, ok := strings.CutPrefix(strings.ToLower(parts[2]), "at "); ok {
+		return c.addLocal(value, parts, place)
 	}
 	var l ListedLoad
 	l.Cable, l.Span = cutCable(parts[0])
@@ -207,13 +214,10 @@ func (c *Conditions) addLoad(value string) error {
 	switch l.Spread = Spread(strings.ToLower(parts[2])); l.Spread {
 	case AlongCable, AlongDeck:
 	default:
-		return wrong(parts[2], "along cable or along deck in the third place: "+form, "")
+		return wrong(parts[2], "along cable, along deck or a place such as at 12.4 m in the third place: "+form, "")
 	}
 	if len(parts) == 4 {
 		l.What = parts[3]
-	}
-	if c.Loads != "" && c.Loads != LoadsListed {
-		return wrong(value, fmt.Sprintf("no list of loads beside \"loads: %s\"", c.Loads), "write \"loads: listed\", or take the load line out")
 	}
 	for _, other := range c.Listed {
 		if strings.EqualFold(other.Cable, l.Cable) && strings.EqualFold(other.Span, l.Span) && other.Load == l.Load && other.Spread == l.Spread && other.What == l.What {
@@ -222,6 +226,38 @@ func (c *Conditions) addLoad(value string) error {
 	}
 	c.Loads = LoadsListed
 	c.Listed = append(c.Listed, l)
+	return nil
+}
+
+// addLocal reads one load that hangs at one place.
+func (c *Conditions) addLocal(value string, parts []string, place string) error {
+	l := LocalLoad{}
+	l.Cable, l.Span = cutCable(parts[0])
+	at, err := ParseQuantity(place, Length)
+	if err != nil {
+		return err
+	}
+	if !(at.Value > 0) || at.U != 0 {
+		return wrong(place, "the distance from support A along the chord, above 0 and without +-", "write for example \"at 12.4 m\"")
+	}
+	l.Station = at.Value
+	if !strings.EqualFold(parts[1], "unknown") {
+		q, err := ParseQuantity(parts[1], Force)
+		if err != nil {
+			return err
+		}
+		l.P = &q
+	}
+	if len(parts) == 4 {
+		l.What = parts[3]
+	}
+	for _, other := range c.Local {
+		if strings.EqualFold(other.Cable, l.Cable) && strings.EqualFold(other.Span, l.Span) && other.Station == l.Station {
+			return wrong(value, "one local load at one place", "add the two up, or give the second its own place")
+		}
+	}
+	c.Loads = LoadsListed
+	c.Local = append(c.Local, l)
 	return nil
 }
 
@@ -273,7 +309,7 @@ func (c *Conditions) addReading(value string) error {
 
 // check finds contradictions that only show at the end.
 func (c *Conditions) check() error {
-	if c.Loads == LoadsListed && len(c.Listed) == 0 {
+	if c.Loads == LoadsListed && len(c.Listed)+len(c.Local) == 0 {
 		return wrong("", "a load line beside \"loads: listed\"", "add \"# load: CABLE; 180 +- 10 N/m; along cable; service pipe\", or write \"loads: as filed\" if nothing hangs there")
 	}
 	return nil

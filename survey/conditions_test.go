@@ -1,6 +1,7 @@
 package survey
 
 import (
+	"math"
 	"strings"
 	"testing"
 	"time"
@@ -105,6 +106,37 @@ func TestConditionKeyList(t *testing.T) {
 		}
 		if !strings.Contains(" "+strings.ReplaceAll(keyList, ",", "")+" ", " "+key+" ") {
 			t.Errorf("%s is not named", key)
+		}
+	}
+}
+
+func TestLocalLoads(t *testing.T) {
+	var c Conditions
+	for _, v := range []string{"main-left; 3.2 +- 0.2 kN; at 12.4 m; signal box", "main-left; unknown; At 20 ft; branch", "*; 40 N/m; along cable; ice"} {
+		if err := c.Set("load", v); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if c.Loads != LoadsListed || len(c.Local) != 2 || len(c.Listed) != 1 {
+		t.Fatalf("%+v", c)
+	}
+	box, branch := c.Local[0], c.Local[1]
+	if box.Cable != "main-left" || box.Station != 12.4 || *box.P != (Quantity{3200, 200}) || box.What != "signal box" {
+		t.Errorf("%+v", box)
+	}
+	if branch.P != nil || math.Abs(branch.Station-6.096) > 1e-12 {
+		t.Errorf("%+v", branch)
+	}
+	for value, part := range map[string]string{
+		"main-left; 3.2 kN; at 12.4 m; again":      "one local load at one place",
+		"main-left; 3.2 kN; at -2 m; box":          "above 0",
+		"main-left; 3.2 kN; at 2 +- 0.1 m; box":    "without +-",
+		"main-left; 3.2 kN/m; at 2 m; box":         "force",
+		"main-left; 3.2 kN; at half; box":          "number",
+		"main-left; 3.2 kN/m; halfway along; stay": "at 12.4 m",
+	} {
+		if err := c.Set("load", value); err == nil || !strings.Contains(err.Error(), part) {
+			t.Errorf("%q: %v, want %q in it", value, err, part)
 		}
 	}
 }

@@ -92,6 +92,11 @@ func (sv *Survey) UnmatchedLoads() []ListedLoad {
 	return slices.DeleteFunc(slices.Clone(sv.Conditions.Listed), func(l ListedLoad) bool { return sv.holds(l.On) })
 }
 
+// UnmatchedLocal are the listed local loads that are on no span of the survey.
+func (sv *Survey) UnmatchedLocal() []LocalLoad {
+	return slices.DeleteFunc(slices.Clone(sv.Conditions.Local), func(l LocalLoad) bool { return sv.holds(l.On) })
+}
+
 // UnmatchedReadings are the direct readings that are of no span of the survey.
 func (sv *Survey) UnmatchedReadings() []Reading {
 	return slices.DeleteFunc(slices.Clone(sv.Conditions.Readings), func(r Reading) bool { return sv.holds(r.On) })
@@ -104,6 +109,9 @@ func (sv *Survey) holds(on func(cable, span string) bool) bool {
 
 // On reports whether the load concerns a span.
 func (l ListedLoad) On(cable, span string) bool { return meant(l.Cable, l.Span, cable, span) }
+
+// On reports whether the load concerns a span.
+func (l LocalLoad) On(cable, span string) bool { return meant(l.Cable, l.Span, cable, span) }
 
 // On reports whether the reading is of a span.
 func (r Reading) On(cable, span string) bool { return meant(r.Cable, r.Span, cable, span) }
@@ -148,6 +156,14 @@ type ListedLoad struct {
 	What        string // free text, for example "service pipe"
 }
 
+// LocalLoad is a load seen on the day that hangs at one place of a span.
+type LocalLoad struct {
+	Cable, Span string    // "" = every cable, every span
+	Station     float64   // horizontal distance from support A along the chord, m
+	P           *Quantity // N, downwards; nil: its size is not known
+	What        string    // free text, for example "signal box"
+}
+
 // ReadOf says what a direct reading of tension is of.
 type ReadOf string
 
@@ -180,6 +196,7 @@ type Conditions struct {
 	Wind             string
 	Loads            LoadStatus // "" means not stated, which counts as LoadsNotChecked
 	Listed           []ListedLoad
+	Local            []LocalLoad
 	Readings         []Reading
 	Instrument       string
 	Accuracy         *Accuracy

@@ -114,6 +114,7 @@ func (s *LoadedState) settle(part float64) error {
 	jac, miss := mat.NewDense(n+2, n+2, nil), mat.NewVecDense(n+2, nil)
 	var step mat.VecDense
 	var lu mat.LU
+	s.connect(part)
 	for range 60 {
 		size := s.linearise(part, jac, miss)
 		lu.Factorize(jac)

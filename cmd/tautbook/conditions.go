@@ -75,6 +75,9 @@ func (f *conditionFlags) matched(surveys []*survey.Survey) error {
 			for _, l := range sv.UnmatchedLoads() {
 				misses[[2]string{"load", l.Cable}]++
 			}
+			for _, l := range sv.UnmatchedLocal() {
+				misses[[2]string{"load", l.Cable}]++
+			}
 		}
 		if len(f.reads) > 0 {
 			for _, r := range sv.UnmatchedReadings() {
@@ -116,8 +119,8 @@ func (f *conditionFlags) over(cmd *cobra.Command, sv *survey.Survey, given surve
 		c.Wind = given.Wind
 	}
 	if changed("loads") || changed("load") {
-		replaced("loads", c.Loads != "" && (c.Loads != given.Loads || len(c.Listed)+len(given.Listed) > 0))
-		c.Loads, c.Listed = given.Loads, given.Listed
+		replaced("loads", c.Loads != "" && (c.Loads != given.Loads || len(c.Listed)+len(c.Local)+len(given.Listed)+len(given.Local) > 0))
+		c.Loads, c.Listed, c.Local = given.Loads, given.Listed, given.Local
 	}
 	if changed("reading") {
 		replaced("reading", len(c.Readings) > 0)
