@@ -216,6 +216,9 @@ func loadGroup(a *tension.Assessment) group {
 	for _, e := range l.Listed {
 		g.Rows = append(g.Rows, row{"Seen on the day", tension.NewtonPerMetre.Figure(e.Load) + " " + string(e.Spread) + ": " + clean(e.What)})
 	}
+	for _, e := range l.Local {
+		g.Rows = append(g.Rows, row{"At one place", localLoad(e)})
+	}
 	if l.Hanging.Value > 0 {
 		g.Rows = append(g.Rows, row{"All, per metre as it hangs", tension.NewtonPerMetre.Figure(l.Hanging)})
 	} else {
@@ -228,6 +231,19 @@ func loadGroup(a *tension.Assessment) group {
 	temperature := or(a.Temperature, tension.DegreeCelsius.Figure, "not recorded")
 	g.Rows = append(g.Rows, row{"Record of loads", record}, row{"Cable temperature", temperature})
 	return g
+}
+
+// localLoad is one local load with where it hangs and how it is known.
+func localLoad(l tension.LocalLoad) string {
+	size := "size not known"
+	if l.Load != nil {
+		size = tension.ForceScale(l.Load.Value).Figure(*l.Load)
+	}
+	text := fmt.Sprintf("%s at station %s, %s", size, tension.Metre.Figure(l.Station), l.From)
+	if l.What != "" {
+		text += ": " + clean(l.What)
+	}
+	return text
 }
 
 func shapeGroup(a *tension.Assessment) group {
@@ -261,7 +277,11 @@ func shapeGroup(a *tension.Assessment) group {
 		g.Rows = append(g.Rows, row{"Low point", unknown(tooFlat)})
 	}
 	for _, alt := range f.Alternatives {
-		g.Rows = append(g.Rows, row{"As a " + string(alt.Shape), fmt.Sprintf("H %+.2f %%, %s", 100*alt.TensionOff, fitsAsWell(alt))})
+		label := "As a " + string(alt.Shape)
+		if alt.LocalLoads < len(a.Load.Local) {
+			label = "Without the load found"
+		}
+		g.Rows = append(g.Rows, row{label, fmt.Sprintf("H %+.2f %%, %s", 100*alt.TensionOff, fitsAsWell(alt))})
 	}
 	return g
 }

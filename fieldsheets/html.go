@@ -190,6 +190,9 @@ func fileViewOf(f SurveyFile) fileView {
 	for _, l := range c.Listed {
 		v.Conditions = append(v.Conditions, row{"load seen", together(listedText(l))})
 	}
+	for _, l := range c.Local {
+		v.Conditions = append(v.Conditions, row{"load seen", together(localText(l))})
+	}
 	for _, n := range c.Notes {
 		v.Conditions = append(v.Conditions, row{"note", clean(n)})
 	}

@@ -74,6 +74,7 @@ type Conditions struct {
 	AccuracyV   *float64          `json:"accuracy_vertical_m"`
 	Crew        string            `json:"crew"`
 	Listed      []RecordedLoad    `json:"listed_loads"` // seen on the day beside the filed loads
+	Local       []RecordedLocal   `json:"local_loads"`  // seen on the day, hanging at one place
 	Notes       []string          `json:"notes"`
 }
 
@@ -84,6 +85,15 @@ type RecordedLoad struct {
 	Load   survey.Quantity `json:"load_N_per_m"`
 	Spread survey.Spread   `json:"spread"`
 	What   string          `json:"what"`
+}
+
+// RecordedLocal is one line of the record of loads for a load at one place, as it was read; P is nil when its size is not known.
+type RecordedLocal struct {
+	Cable   string           `json:"cable"`
+	Span    string           `json:"span"`
+	Station float64          `json:"station_m"`
+	P       *survey.Quantity `json:"load_N"`
+	What    string           `json:"what"`
 }
 
 // Input is what a report is made of beside the assessments.
@@ -121,9 +131,12 @@ func NewSurveyFile(sv *survey.Survey) SurveyFile {
 	f := SurveyFile{File: sv.File, SHA256: sv.SHA256, Encoding: sv.Encoding, Separator: sv.Separator, Decimal: sv.Decimal, LengthUnit: sv.LengthUnit,
 		PointsRead: sv.PointsRead, Columns: noNil(sv.Header), Codes: noNil(sv.Codes), Guesses: noNil(sv.Guesses), Notices: noNil(sv.Notices),
 		Conditions: Conditions{Structure: c.Structure, Temperature: c.CableTemperature, Wind: c.Wind, Loads: c.Loads, Instrument: c.Instrument,
-			Crew: c.Crew, Listed: []RecordedLoad{}, Notes: noNil(c.Notes)}}
+			Crew: c.Crew, Listed: []RecordedLoad{}, Local: []RecordedLocal{}, Notes: noNil(c.Notes)}}
 	for _, l := range c.Listed {
 		f.Conditions.Listed = append(f.Conditions.Listed, RecordedLoad(l))
+	}
+	for _, l := range c.Local {
+		f.Conditions.Local = append(f.Conditions.Local, RecordedLocal(l))
 	}
 	if !c.Date.IsZero() {
 		f.Conditions.Date = c.Date.Format(time.DateOnly)

@@ -178,6 +178,9 @@ func (p *textPrinter) conditions(f SurveyFile) {
 	for _, l := range c.Listed {
 		p.wrapped("  load     ", listedText(l))
 	}
+	for _, l := range c.Local {
+		p.wrapped("  load     ", localText(l))
+	}
 	for _, n := range c.Notes {
 		p.wrapped("  note     ", clean(n))
 	}
@@ -185,11 +188,23 @@ func (p *textPrinter) conditions(f SurveyFile) {
 
 // listedText is one load of the record, with the cable that it hangs on.
 func listedText(l RecordedLoad) string {
-	on := "every cable"
-	if l.Cable != "" {
-		on = clean(l.Cable) + prefixed("/", clean(l.Span))
+	return fmt.Sprintf("%s on %s, %s: %s", tension.NewtonPerMetre.Figure(l.Load), onCable(l.Cable, l.Span), l.Spread, orWords(l.What))
+}
+
+// localText is one load at one place, with the cable that it hangs on.
+func localText(l RecordedLocal) string {
+	size := "size not known"
+	if l.P != nil {
+		size = tension.ForceScale(l.P.Value).Figure(*l.P)
 	}
-	return fmt.Sprintf("%s on %s, %s: %s", tension.NewtonPerMetre.Figure(l.Load), on, l.Spread, orWords(l.What))
+	return fmt.Sprintf("%s on %s, %.3f m from A: %s", size, onCable(l.Cable, l.Span), l.Station, orWords(l.What))
+}
+
+func onCable(cable, span string) string {
+	if cable == "" {
+		return "every cable"
+	}
+	return clean(cable) + prefixed("/", clean(span))
 }
 
 func orWords(s string) string {

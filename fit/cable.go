@@ -190,7 +190,20 @@ func (r *Result) solve(w *workspace, share float64, o Options) error {
 		return err
 	}
 	w.solver.MaxIterations = o.MaxIterations
-	sol := w.solver.Solve(p, start[:p.n])
+	if err := r.minimise(w, start[:p.n]); err != nil || r.locals == nil {
+		return err
+	}
+	if p.records = r.records(); p.records == nil {
+		return nil
+	}
+	r.startFrom(start[:], z0, lo, hi)
+	return r.minimise(w, start[:p.n])
+}
+
+// minimise solves the problem in w from start and keeps the solution.
+func (r *Result) minimise(w *workspace, start []float64) error {
+	p := &w.problem
+	sol := w.solver.Solve(p, start)
 	r.Iterations, r.Converged = sol.Iterations, sol.Status.Err() == nil
 	if err := sol.Status.Err(); err != nil {
 		return err
@@ -200,7 +213,7 @@ func (r *Result) solve(w *workspace, share float64, o Options) error {
 	if err != nil {
 		return err
 	}
-	r.DegreesOfFreedom = len(r.Observations) - p.n
+	r.DegreesOfFreedom = len(p.obs) + len(p.records) - p.n
 	r.VarianceFactor = sol.Sum / float64(r.DegreesOfFreedom)
 	r.n, r.columns = p.n, p.columns
 	c := p.curve(sol.Theta)
@@ -208,8 +221,21 @@ func (r *Result) solve(w *workspace, share float64, o Options) error {
 		c.Cusps = slices.Clone(c.Cusps)
 		r.keep(p.columns, sol.Theta)
 	}
-	r.refer(c, z0, w.cov[:p.n*p.n])
+	r.refer(c, p.z0, w.cov[:p.n*p.n])
 	return nil
+}
+
+// startFrom is the parameter vector of the present curve over the base from lo to hi.
+func (r *Result) startFrom(theta []float64, z0, lo, hi float64) {
+	theta[0], theta[1], theta[2] = r.Curve.Z(lo)-z0, r.Curve.Z(hi)-z0, r.Curve.Curvature
+	for i, l := range r.locals {
+		if c := r.columns[i]; c.kink > 0 {
+			theta[c.kink] = l.kink
+			if c.place > 0 {
+				theta[c.place] = l.station
+			}
+		}
+	}
 }
 
 // prepareLoads sets the local loads of the problem and a first guess.

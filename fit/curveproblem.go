@@ -17,9 +17,10 @@ type curveProblem struct {
 	columns []column
 	n       int // number of parameters
 	cusps   []Cusp
+	records []record
 }
 
-func (p *curveProblem) Size() (m, n int) { return len(p.obs), p.n }
+func (p *curveProblem) Size() (m, n int) { return len(p.obs) + len(p.records), p.n }
 
 func (p *curveProblem) curve(theta []float64) Curve {
 	c := p.base
@@ -84,9 +85,10 @@ func (p *curveProblem) Evaluate(theta, r, j []float64) {
 		for i := range p.obs {
 			r[i], _ = e.foot(&p.obs[i], p.z0, nil)
 		}
+		p.recordRows(theta, r, nil)
 		return
 	}
-	m := len(p.obs)
+	m := len(p.obs) + len(p.records)
 	var g gradient
 	var sigma float64
 	for i := range p.obs {
@@ -96,6 +98,22 @@ func (p *curveProblem) Evaluate(theta, r, j []float64) {
 		for k := 3; k < p.n; k++ {
 			j[k*m+i] = weight * g[k]
 		}
+	}
+	p.recordRows(theta, r, j)
+}
+
+// recordRows fills the rows of what is on record of the sizes of local loads; they stand after those of the points.
+func (p *curveProblem) recordRows(theta, r, j []float64) {
+	m, first := len(p.obs)+len(p.records), len(p.obs)
+	for i, rec := range p.records {
+		r[first+i] = rec.weight * (rec.ratio*theta[2] - theta[rec.kink])
+		if j == nil {
+			continue
+		}
+		for k := range p.n {
+			j[k*m+first+i] = 0
+		}
+		j[2*m+first+i], j[rec.kink*m+first+i] = rec.weight*rec.ratio, -rec.weight
 	}
 }
 

@@ -342,3 +342,57 @@ func TestLocalLoadIsNotDroppedAsBlunders(t *testing.T) {
 		}
 	}
 }
+
+// ByRatio is the derivative of the fitted curve by the told size, but for the residuals times second derivatives, as all of the covariance.
+func TestByRatioIsTheDerivative(t *testing.T) {
+	c := hang(80, 0.1, 0.05)
+	c.Cusps = []Cusp{{30, 0.05}, {55, 0.02}}
+	obs := noisy(rand.New(rand.NewPCG(6, 6)), c, 25, 0.004, true)
+	at := func(ratio float64) *Result {
+		r, err := InPlane(obs, Frame{}, End{}, End{Station: 80}, Options{Loads: []LocalLoad{{Station: 30, Ratio: ratio}, {Station: 55, SizeFree: true}}, NoAlternatives: true})
+		if err != nil {
+			t.Fatal(err)
+		}
+		return r
+	}
+	ratio := 0.05 / c.Curvature
+	step := ratio * 1e-4
+	mid, up, down := at(ratio), at(ratio+step), at(ratio-step)
+	for i, q := range [3][2]float64{{up.Curve.Z1, down.Curve.Z1}, {up.Curve.Z2, down.Curve.Z2}, {up.Curve.Curvature, down.Curve.Curvature}} {
+		want := (q[0] - q[1]) / (2 * step)
+		if got := mid.Loads[0].ByRatio[i]; !(math.Abs(got-want) <= 3e-3*math.Abs(want)) {
+			t.Errorf("parameter %d: %g, by differences %g", i, got, want)
+		}
+	}
+}
+
+// A record of the size and the shape together: between the two, sharper than either, and the disagreement is told.
+func TestSizeIsAdjustedWithTheRecord(t *testing.T) {
+	c := hang(80, 0.1, 0.05)
+	c.Cusps = []Cusp{{30, 0.05}}
+	for _, stated := range []bool{true, false} {
+		obs := noisy(rand.New(rand.NewPCG(6, 7)), c, 25, 0.004, stated)
+		fitted := func(l LocalLoad) *Result {
+			r, err := InPlane(obs, Frame{}, End{}, End{Station: 80}, Options{Loads: []LocalLoad{l}, NoAlternatives: true})
+			if err != nil {
+				t.Fatal(err)
+			}
+			return r
+		}
+		alone := fitted(LocalLoad{Station: 30, SizeFree: true})
+		size := alone.Loads[0].Kink / alone.Curve.Curvature
+		u := alone.Loads[0].UKink / alone.Curve.Curvature
+		told := size + 3*u
+		both := fitted(LocalLoad{Station: 30, Ratio: told, URatio: u})
+		got := both.Loads[0].Kink / both.Curve.Curvature
+		if !(got > size+0.8*u && got < told-0.8*u) {
+			t.Errorf("stated %v: shape %.4g, record %.4g, both %.4g", stated, size, told, got)
+		}
+		if both.Loads[0].UKink > 0.9*alone.Loads[0].UKink*math.Sqrt(both.ScaledBy/alone.ScaledBy) {
+			t.Errorf("stated %v: u of the kink %.3g, by the shape alone %.3g", stated, both.Loads[0].UKink, alone.Loads[0].UKink)
+		}
+		if off := both.Loads[0].OffTold; off > -1.5 || off < -3 {
+			t.Errorf("stated %v: shape differs from the record by %.2f u, expected about -2", stated, off)
+		}
+	}
+}

@@ -13,7 +13,8 @@ import (
 type LocalLoad struct {
 	Station  float64 // m from A
 	Ratio    float64 // P / (w + q), m: the kink is Ratio times Curvature; not used when SizeFree
-	SizeFree bool    // the size is fitted
+	URatio   float64 // its standard uncertainty, m: above 0 the size is adjusted, shape and record together; 0 = exact
+	SizeFree bool    // nothing is known of the size: it comes from the shape alone
 }
 
 // LoadResult is a local load as it went into the fit.
@@ -22,7 +23,8 @@ type LoadResult struct {
 	UStation float64 `json:"u_station_m"`
 	Kink     float64 `json:"kink"` // P/H: jump of the slope, positive for a load that hangs
 	UKink    float64 `json:"u_kink"`
-	Fitted   bool    `json:"fitted"` // the size comes from the shape, not from the record
+	Fitted   bool    `json:"fitted"` // the size comes from the shape, with that of the record if it has an uncertainty
+	OffTold  float64 `json:"off"`    // size by the shape alone less that of the record, in standard uncertainties; 0 when there is only one
 	Found    bool    `json:"found"`  // the place too, by a search
 	Chance   float64 `json:"chance"` // probability of so strong a kink anywhere on the span without a load, when found
 
@@ -34,6 +36,8 @@ type LoadResult struct {
 type local struct {
 	station, kink, ratio float64 // kink is the last estimate, also when it is ratio times curvature
 	sizeFree, placeFree  bool
+	uRatio               float64 // of a size that is adjusted with the record, else 0
+	off                  float64 // of the shape alone from the record
 	chance               float64
 }
 
@@ -44,10 +48,14 @@ func (o Options) locals(a, b End) ([]local, error) {
 		if !(l.Station > a.Station && l.Station < b.Station) {
 			return nil, fmt.Errorf("fit: local load at station %.3f m: expected between the ends of the span, %.3f and %.3f m", l.Station, a.Station, b.Station)
 		}
-		if !l.SizeFree && !(math.Abs(l.Ratio) < math.Inf(1)) {
-			return nil, fmt.Errorf("fit: local load at station %.3f m: the ratio to the even load is %g m, expected a finite length", l.Station, l.Ratio)
+		if !l.SizeFree && !(math.Abs(l.Ratio) < math.Inf(1) && l.URatio >= 0 && l.URatio < math.Inf(1)) {
+			return nil, fmt.Errorf("fit: local load at station %.3f m: the ratio to the even load is %g m, u %g m, expected finite lengths", l.Station, l.Ratio, l.URatio)
 		}
-		out = append(out, local{station: l.Station, ratio: l.Ratio, sizeFree: l.SizeFree})
+		told := local{station: l.Station, ratio: l.Ratio, sizeFree: l.SizeFree || l.URatio > 0}
+		if !l.SizeFree {
+			told.uRatio = l.URatio
+		}
+		out = append(out, told)
 	}
 	slices.SortStableFunc(out, func(a, b local) int { return cmp.Compare(a.station, b.station) })
 	return out, nil
@@ -150,6 +158,35 @@ func (p *curveProblem) startLoaded(theta []float64) error {
 	return nil
 }
 
+// record is what the record says of the size of one load, as one more observation: kink - ratio times curvature is zero within its
+// uncertainty.
+type record struct {
+	kink   int // column
+	ratio  float64
+	weight float64 // 1 / standard deviation of the kink, on the scale of the residuals
+}
+
+// records are the sizes that are adjusted with the record. The scale is the curvature and the scatter of the fit by the shape alone, in
+// r; how far that is from the record is kept.
+func (r *Result) records() (out []record) {
+	scale := 1.0
+	if !r.APriori {
+		scale = math.Sqrt(r.VarianceFactor)
+	}
+	k := r.Curve.Curvature
+	for i := range r.locals {
+		l, c := &r.locals[i], r.columns[i]
+		if !(l.uRatio > 0) || c.kink == 0 || k == 0 {
+			continue
+		}
+		told := math.Abs(k) * l.uRatio
+		own := r.Full[c.kink*r.n+c.kink] - 2*l.ratio*r.Full[c.kink*r.n+2] + l.ratio*l.ratio*r.Full[2*r.n+2]
+		l.off = (l.kink - l.ratio*k) / math.Sqrt(told*told+own*scale*scale)
+		out = append(out, record{kink: c.kink, ratio: l.ratio, weight: scale / told})
+	}
+	return out
+}
+
 // keep stores the estimates of the free sizes and places.
 func (r *Result) keep(columns []column, theta []float64) {
 	for i := range r.locals {
@@ -169,7 +206,7 @@ func (r *Result) tellLoads(w *workspace) error {
 	r.Loads = nil
 	for i, l := range r.locals {
 		c := r.columns[i]
-		out := LoadResult{Station: l.station, Kink: l.kink, Fitted: l.sizeFree, Found: l.placeFree, Chance: l.chance}
+		out := LoadResult{Station: l.station, Kink: l.kink, Fitted: l.sizeFree, OffTold: l.off, Found: l.placeFree, Chance: l.chance}
 		if c.kink > 0 {
 			out.UKink = math.Sqrt(r.Full[c.kink*r.n+c.kink])
 		} else {

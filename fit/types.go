@@ -118,7 +118,8 @@ type Result struct {
 // Alternative is another shape through the same points.
 type Alternative struct {
 	Shape      Shape   `json:"shape"`
-	Constant   float64 `json:"constant_m"` // 1/Curvature, m
+	LocalLoads int     `json:"local_loads"` // with so many local loads
+	Constant   float64 `json:"constant_m"`  // 1/Curvature, m
 	RMS        float64 `json:"rms_m"`
 	DeltaAICc  float64 `json:"delta_aicc"`         // AICc minus that of the chosen shape; negative: the alternative fits better
 	TensionOff float64 `json:"tension_difference"` // relative difference of the horizontal tension under the same whole load on the span

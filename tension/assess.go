@@ -28,12 +28,12 @@ type Case struct {
 // Assess fits the shape that the load asks for and works out forces, the comparison with the design, verdict, findings and
 // budget. It fails only when no curve can be fitted; everything else that is missing is a finding.
 func Assess(c Case) (Assessment, error) {
-	listed := c.listedHere()
-	r, err := c.fit(listed)
+	listed, told := c.listedHere(), c.localHere()
+	r, err := c.fit(listed, told)
 	if err != nil {
 		return Assessment{}, fmt.Errorf("cable %q, span %q: %w", c.Points.Cable, c.Points.Span, err)
 	}
-	j := c.judgement(r, listed)
+	j := c.judgement(r, listed, told)
 	j.fill()
 	j.compare()
 	j.decide()
@@ -44,9 +44,26 @@ func Assess(c Case) (Assessment, error) {
 }
 
 // fit puts the curve of the load on the day through the points.
-func (c Case) fit(listed []survey.ListedLoad) (*fit.Result, error) {
+func (c Case) fit(listed []survey.ListedLoad, told []survey.LocalLoad) (*fit.Result, error) {
 	opts := c.Fit
-	opts.Shape, opts.SelfShare = shapeFor(c.Design, listed)
+	own, deck, u := evenLoad(c.Design, listed)
+	opts.Shape, opts.SelfShare = shapeFor(own, deck)
+	if len(told) > 0 && c.Points.A == nil {
+		return nil, fmt.Errorf("the local load %q is placed by its distance from support A, and A was not surveyed: survey A and code it, or take the load line out", told[0].What)
+	}
+	opts.Loads = localOptions(told, Quantity{Value: own + deck, U: u})
+	fitted := opts.FindLoads
+	for _, l := range opts.Loads {
+		if l.SizeFree {
+			fitted++
+		}
+	}
+	if fitted > mostFitted {
+		opts.FindLoads = max(0, opts.FindLoads-(fitted-mostFitted))
+		if fitted-opts.FindLoads > mostFitted {
+			return nil, fmt.Errorf("%d local loads of unknown size on one span, at most %d can be told apart: give the size of some", fitted-opts.FindLoads, mostFitted)
+		}
+	}
 	if acc := c.Conditions.Accuracy; acc != nil {
 		opts.SigmaAlong, opts.SigmaUp = acc.Horizontal, acc.Vertical
 	}
@@ -66,6 +83,19 @@ func (c Case) listedHere() (out []survey.ListedLoad) {
 	return out
 }
 
+// localHere are the local loads on record that hang on this span.
+func (c Case) localHere() (out []survey.LocalLoad) {
+	if c.Conditions.Loads != survey.LoadsListed {
+		return nil
+	}
+	for _, l := range c.Conditions.Local {
+		if l.On(c.Points.Cable, c.Points.Span) {
+			out = append(out, l)
+		}
+	}
+	return out
+}
+
 // readingHere is the direct reading of this span.
 func (c Case) readingHere() *survey.Reading {
 	for i, r := range c.Conditions.Readings {
@@ -76,24 +106,30 @@ func (c Case) readingHere() *survey.Reading {
 	return nil
 }
 
-// shapeFor is the shape under the load on the day: a catenary when nothing says otherwise.
-func shapeFor(d *survey.Design, listed []survey.ListedLoad) (fit.Shape, float64) {
-	var own, deck float64
-	if d != nil {
-		if d.SelfWeight != nil && d.Load != survey.LoadDeck {
-			own = d.SelfWeight.Value
-		}
-		if d.DeckLoad != nil && d.Load != survey.LoadSelfWeight {
-			deck = d.DeckLoad.Value
-		}
-		for _, l := range listed {
-			if l.Spread == survey.AlongCable {
-				own += l.Load.Value
-			} else {
-				deck += l.Load.Value
-			}
+// evenLoad is the load on the day along the cable and along the deck and the standard uncertainty of both together, N/m.
+func evenLoad(d *survey.Design, listed []survey.ListedLoad) (own, deck, u float64) {
+	if d == nil {
+		return 0, 0, 0
+	}
+	if d.SelfWeight != nil && d.Load != survey.LoadDeck {
+		own, u = d.SelfWeight.Value, d.SelfWeight.U
+	}
+	if d.DeckLoad != nil && d.Load != survey.LoadSelfWeight {
+		deck, u = d.DeckLoad.Value, math.Hypot(u, d.DeckLoad.U)
+	}
+	for _, l := range listed {
+		u = math.Hypot(u, l.Load.U)
+		if l.Spread == survey.AlongCable {
+			own += l.Load.Value
+		} else {
+			deck += l.Load.Value
 		}
 	}
+	return own, deck, u
+}
+
+// shapeFor is the shape under the load on the day: a catenary when nothing says otherwise.
+func shapeFor(own, deck float64) (fit.Shape, float64) {
 	switch {
 	case deck <= 0:
 		return fit.Catenary, 1
@@ -105,17 +141,20 @@ func shapeFor(d *survey.Design, listed []survey.ListedLoad) (fit.Shape, float64)
 }
 
 // judgement lays out the inputs and works out every figure with its uncertainty.
-func (c Case) judgement(r *fit.Result, listed []survey.ListedLoad) *judgement {
+func (c Case) judgement(r *fit.Result, listed []survey.ListedLoad, told []survey.LocalLoad) *judgement {
 	j := &judgement{Case: c, r: r, d: c.Design, record: c.Conditions.Loads}
 	if j.record == "" {
 		j.record = survey.LoadsNotChecked
+	}
+	if j.record != survey.LoadsNotChecked && unlistedLocal(r) {
+		j.doubted, j.record = j.record, survey.LoadsNotChecked
 	}
 	temperature := c.Conditions.CableTemperature
 	if temperature == nil && c.Design != nil && c.Design.Temperature != nil {
 		j.temperatureAssumed = true
 		temperature = &Quantity{Value: c.Design.Temperature.Value, U: unknownTemperatureU}
 	}
-	j.in = gather(r, c.Design, temperature, listed)
+	j.in = gather(r, c.Design, temperature, listed, told)
 	j.reading = c.readingHere()
 	j.in.read(j.reading)
 	j.p = j.in.propagate()
@@ -133,6 +172,7 @@ type judgement struct {
 	r                  *fit.Result
 	d                  *survey.Design
 	record             survey.LoadStatus
+	doubted            survey.LoadStatus // what was recorded, when the shape shows a local load that the record does not name
 	temperatureAssumed bool
 	reading            *survey.Reading // direct reading of this span, nil when there is none
 	in                 *inputs
@@ -168,14 +208,17 @@ func (j *judgement) fill() {
 	j.a.Fit, j.a.Reactions = f, []Reaction{}
 	j.a.Load = j.loadSummary()
 	if !p.known(outH) {
+		j.a.Load.Local = j.localSummary()
 		return
 	}
 	if !hangs {
+		j.a.Load.Local = j.localSummary()
 		j.a.HorizontalTensionAtLeast = j.atLeast()
 		return
 	}
 	h := p.must(outH)
 	j.a.HorizontalTension = &h
+	j.a.Load.Local = j.localSummary()
 	j.a.Reactions = []Reaction{
 		j.reaction("A", r.A, outVerticalA, outTensionA, outSlopeA, r.Curve.Z1),
 		j.reaction("B", r.B, outVerticalB, outTensionB, outSlopeB, r.Curve.Z2),

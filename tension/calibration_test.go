@@ -213,10 +213,10 @@ func TestCommonInputsCancel(t *testing.T) {
 // judged runs a case up to the decision and keeps the inside of it.
 func judged(t *testing.T, c Case) *judgement {
 	t.Helper()
-	r, err := c.fit(nil)
+	r, err := c.fit(nil, nil)
 	if err != nil {
 		t.Fatal(err)
 	}
-	j := c.judgement(r, nil)
+	j := c.judgement(r, nil, nil)
 	return j
 }

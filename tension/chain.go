@@ -53,7 +53,8 @@ const (
 	outReadRatio  // to the expected tension under the filed load
 	outReadFactor // load that the reading implies / load on record
 	outReadUse
-	outCount
+	outLocal // sizes of the local loads that the shape gives, N
+	outCount = outLocal + mostFitted
 )
 
 type outputs [outCount]float64
@@ -74,6 +75,7 @@ func (in *inputs) evaluate(x []float64) (y outputs, lacks []lack) {
 	c.Z1, c.Z2, c.Curvature = x[inZA], x[inZB], x[inCurvature]
 	c.S1, c.S2 = in.x[inStationA], in.x[inStationB] // the curve stays where it was measured when a support station moves
 	load := in.load(x)
+	c.Cusps = in.cusps(x, load)
 	in.geometry(&y, c, x)
 	if !(load.self+load.deck > 0) {
 		return y, []lack{{"horizontal tension", "no self_weight or deck_load on file"}}
@@ -90,7 +92,7 @@ func (in *inputs) evaluate(x []float64) (y outputs, lacks []lack) {
 	day := st.Cable
 	day.SelfWeight, day.DeckLoad = load.self, load.deck
 	dt := x[inTemperature] - x[inDesignTemp]
-	if err := in.today(&y, x, day, ch, dt); err != nil {
+	if err := in.today(&y, x, c, day, ch, dt); err != nil {
 		lacks = append(lacks, lack{"expected tension", err.Error()})
 	}
 	in.rival(&y, x, c, day, ch, dt)
@@ -154,6 +156,13 @@ func (in *inputs) statics(y *outputs, c fit.Curve, x []float64, l carried) {
 	}
 	ta, tb := c.Slope(x[inStationA]), c.Slope(x[inStationB])
 	y[outH] = h
+	fitted := 0
+	for _, e := range in.local {
+		if e.fitted {
+			y[outLocal+fitted] = x[e.at] * h
+			fitted++
+		}
+	}
 	y[outHanging] = h * x[inCurvature]
 	y[outVerticalA], y[outVerticalB] = -h*ta, h*tb
 	y[outTensionA], y[outTensionB] = h*math.Hypot(1, ta), h*math.Hypot(1, tb)
@@ -226,6 +235,9 @@ const sameSpan = 0.2
 // why there is none.
 func (in *inputs) chordToday(x []float64, c fit.Curve) (Chord, string) {
 	covered := x[inStationB] - x[inStationA]
+	if len(in.local) > 0 && !in.frame.surveyed {
+		return Chord{}, "with local loads on the span both supports must be surveyed"
+	}
 	if in.frame.surveyed {
 		if in.have[inSpan] && math.Abs(covered/x[inSpan]-1) > sameSpan {
 			return Chord{}, fmt.Sprintf("the surveyed supports are %.4g m apart and the design span is %.4g m: not the same span, or another unit", covered, x[inSpan])
@@ -242,14 +254,23 @@ func (in *inputs) chordToday(x []float64, c fit.Curve) (Chord, string) {
 }
 
 // today fills the state of the designer's cable on the day, the comparison, and today's cable at the design temperature.
-func (in *inputs) today(y *outputs, x []float64, day Cable, ch Chord, dt float64) error {
-	exp, err := day.atLengthFrom(in.near[outHExpected], y[outS0Design], ch, dt)
+func (in *inputs) today(y *outputs, x []float64, c fit.Curve, day Cable, ch Chord, dt float64) error {
+	var s0, greatest float64
+	var points []PointLoad
+	var flat error
+	if y[outH] > 0 {
+		s0, greatest, points, flat = in.measured(day, x, y[outH], ch, dt)
+	}
+	if len(in.local) > 0 && points == nil {
+		return fmt.Errorf("the curve is too flat to say where on the cable the local loads hang")
+	}
+	exp, err := in.under(day, in.near[outHExpected], y[outS0Design], ch, dt, points)
 	if err != nil {
 		return fmt.Errorf("the designed cable has no state on the day: %w", err)
 	}
 	filed := carried{x[inSelfWeight], x[inDeckLoad]}
-	y[outHFiled] = exp.H
-	if len(in.listed) > 0 {
+	y[outHFiled] = exp.h
+	if len(in.listed)+len(in.local) > 0 {
 		alone := day
 		alone.SelfWeight, alone.DeckLoad = filed.self, filed.deck
 		if st, err := alone.atLengthFrom(in.near[outHFiled], y[outS0Design], ch, dt); err == nil {
@@ -257,33 +278,30 @@ func (in *inputs) today(y *outputs, x []float64, day Cable, ch Chord, dt float64
 		}
 	}
 	k := x[inCurvature]
-	y[outHExpected], y[outSagExpected] = exp.H, exp.SagMid()
-	y[outSagToday] = in.sagOver(ch, k)
+	y[outHExpected], y[outSagExpected] = exp.h, exp.sag
+	y[outSagToday] = in.sagOver(ch, k, c.Cusps)
 	hang := y[outHanging]
-	y[outInverse] = exp.H * k / hang
+	y[outInverse] = exp.h * k / hang
 	y[outInverseNaive] = y[outHDesign] * k / hang
 	y[outDesignHanging] = in.hanging(x, filed, y[outHFiled], math.Hypot(1, ch.Rise/ch.Length))
-	y[outLoadRatio] = (day.SelfWeight + day.DeckLoad) / (filed.self + filed.deck)
-	y[outImpliedExpected] = exp.H * k
-	if !(y[outH] > 0) {
-		return nil
-	}
-	now, err := day.AtTension(y[outH], ch, dt)
-	if err != nil {
+	y[outLoadRatio] = in.whole(carried{day.SelfWeight, day.DeckLoad}, ch.Length, points) / in.whole(filed, ch.Length, nil)
+	y[outImpliedExpected] = exp.h * k
+	if !(y[outH] > 0) || flat != nil {
 		return nil // the figures below stay unknown; H itself stands
 	}
-	y[outS0Today] = now.Unstressed
-	y[outS0Difference] = now.Unstressed - y[outS0Design]
-	y[outGreatestT] = math.Max(y[outGreatestT], now.GreatestTension())
-	if ref, err := day.atLengthFrom(in.near[outHReference], now.Unstressed, ch, 0); err == nil {
-		y[outHReference] = ref.H
+	y[outS0Today] = s0
+	y[outS0Difference] = s0 - y[outS0Design]
+	y[outGreatestT] = math.Max(y[outGreatestT], greatest)
+	if ref, err := in.under(day, in.near[outHReference], s0, ch, 0, points); err == nil {
+		y[outHReference] = ref.h
 	}
 	return nil
 }
 
 // sagOver is the sag at mid-span of a cable with curvature k over a chord, m.
-func (in *inputs) sagOver(ch Chord, k float64) float64 {
+func (in *inputs) sagOver(ch Chord, k float64, cusps []fit.Cusp) float64 {
 	c := in.curve
+	c.Cusps = cusps
 	c.S1, c.Z1, c.S2, c.Z2, c.Curvature = 0, 0, ch.Length, ch.Rise, k
 	return c.Sag(ch.Length/2, 0, ch.Length)
 }
@@ -304,6 +322,9 @@ func (in *inputs) rival(y *outputs, x []float64, c fit.Curve, day Cable, ch Chor
 	length := func(h float64) (float64, error) {
 		hang := in.hanging(x, l, h, per)
 		e := hanging.Equation{KW: l.self * k / hang, KQ: l.deck * k / hang, Eta: h / x[inAxial], G: 1 + x[inExpansion]*dt}
+		if len(c.Cusps) > 0 {
+			return kinkedLength(e, ch, c.Cusps, in.x[inStationA])
+		}
 		a, b := e.Start(ch.Length, ch.Rise)
 		a, b, err := e.Span(ch.Length, ch.Rise, a, b)
 		if err != nil {

@@ -194,9 +194,15 @@ func (j *judgement) stiffness() *Stiffness {
 	}
 	load := j.in.load(x)
 	dt := x[inTemperature] - x[inDesignTemp]
-	at := func(factor, dt float64) (State, bool) {
-		c := Cable{SelfWeight: load.self * factor, DeckLoad: load.deck * factor, AxialStiffness: x[inAxial], Expansion: x[inExpansion]}
-		st, err := c.AtLength(y[outS0Today], ch, dt)
+	day := Cable{SelfWeight: load.self, DeckLoad: load.deck, AxialStiffness: x[inAxial], Expansion: x[inExpansion]}
+	_, _, points, err := j.in.measured(day, x, y[outH], ch, dt)
+	if err != nil {
+		return nil
+	}
+	at := func(factor, dt float64) (dayState, bool) {
+		c := day
+		c.SelfWeight, c.DeckLoad = load.self*factor, load.deck*factor
+		st, err := j.in.under(c, 0, y[outS0Today], ch, dt, points)
 		return st, err == nil
 	}
 	now, ok := at(1, dt)
@@ -205,10 +211,10 @@ func (j *judgement) stiffness() *Stiffness {
 	if !ok || !ok1 || !ok2 {
 		return nil
 	}
-	s := &Stiffness{Lambda2: now.Lambda2(), SagPerLoad: (more.SagMid()/now.SagMid() - 1) / 0.01, TensionPerLoad: (more.H/now.H - 1) / 0.01,
-		TensionPerDegree: warm.H - now.H}
+	s := &Stiffness{Lambda2: State{Cable: day, Chord: ch, DT: dt, H: now.h}.Lambda2(), SagPerLoad: (more.sag/now.sag - 1) / 0.01, TensionPerLoad: (more.h/now.h - 1) / 0.01,
+		TensionPerDegree: warm.h - now.h}
 	limit := 2 * j.p.uDifference(outSagToday, outSagExpected)
-	s.HiddenLoad = hiddenLoad(func(f float64) (float64, bool) { st, ok := at(f, dt); return st.SagMid() - now.SagMid() - limit, ok }, y[outHanging])
+	s.HiddenLoad = hiddenLoad(func(f float64) (float64, bool) { st, ok := at(f, dt); return st.sag - now.sag - limit, ok }, y[outHanging])
 	s.Meaning = stiffnessMeaning(s)
 	return s
 }

@@ -19,6 +19,7 @@ func (j *judgement) tell() {
 	j.a.Reason, j.a.NextStep = j.reason(), j.nextStep()
 	j.tellStrength()
 	j.tellLoads()
+	j.tellLocal()
 	j.tellReading()
 	j.tellLength()
 	j.tellTemperature()
@@ -69,6 +70,33 @@ func (j *judgement) tellLoads() {
 	}
 	if v := j.a.Rival; v != nil && v.Excluded && j.record == survey.LoadsNotChecked {
 		j.add("rival-refuted", Note, "The load alone cannot explain the shape; excluded by %s. Length and load may still both have changed.", v.ExcludedBy)
+	}
+}
+
+// tellLocal says what hangs at one place, and what it is worth in H to know it.
+func (j *judgement) tellLocal() {
+	for _, l := range j.a.Load.Local {
+		if l.OffTold != nil && math.Abs(*l.OffTold) > 3 {
+			j.add("local-load-off", Look, "The kink at station %s does not agree with the %s on record for %s: by the shape alone the load differs by %+.1f standard uncertainties. Weigh it, or check its place.",
+				Metre.Figure(l.Station), force(*l.Told), orUnnamed(l.What), *l.OffTold)
+		}
+		size := "of unknown size"
+		if l.Load != nil {
+			size = force(*l.Load)
+		}
+		switch {
+		case l.From != FoundInShape:
+			j.add("local-load", Note, "Local load on record at station %s: %s, %s (%s).", Metre.Figure(l.Station), orUnnamed(l.What), size, l.From)
+		case l.Kink.Value > 0:
+			j.add("local-load-found", Act, "The shape has a kink at station %s: a local load of %s hangs there that no record names (probability of such a kink by chance: %s). Go and look. Every force here counts it in.",
+				Metre.Figure(l.Station), size, Probability(*l.Chance))
+		default:
+			j.add("local-lift-found", Act, "The shape has an upward kink at station %s: something holds the cable up there (a prop, a branch, a stay) with %s (probability by chance: %s). Go and look.",
+				Metre.Figure(l.Station), strings.TrimPrefix(size, "-"), Probability(*l.Chance))
+		}
+	}
+	if j.doubted != "" {
+		j.add("record-doubted", Act, "The record of loads says %q, but a local load was found that it does not name: the record was not relied on.", j.doubted)
 	}
 }
 
@@ -213,11 +241,16 @@ func (j *judgement) expectedAt(design int) float64 {
 	}
 	l := j.in.load(x)
 	c := Cable{SelfWeight: l.self, DeckLoad: l.deck, AxialStiffness: x[inAxial], Expansion: x[inExpansion]}
-	st, err := c.AtLength(y[outS0Design], ch, x[inTemperature]-x[inDesignTemp])
+	dt := x[inTemperature] - x[inDesignTemp]
+	_, _, points, err := j.in.measured(c, x, y[outH], Chord{Length: y[outChord], Rise: y[outRise]}, dt)
 	if err != nil {
 		return 0
 	}
-	return st.H
+	st, err := j.in.under(c, 0, y[outS0Design], ch, dt, points)
+	if err != nil {
+		return 0
+	}
+	return st.h
 }
 
 func (j *judgement) tellSurvey() {

@@ -39,6 +39,7 @@ type inputs struct {
 	have    []bool
 	sources []source
 	listed  []survey.ListedLoad // those that concern this span
+	local   []localInput        // loads that hang at one place
 	readOf  survey.ReadOf       // what inReading is of
 	curve   fit.Curve           // shape family and share; its numbers are overwritten from x
 	frame   spanFrame
@@ -97,9 +98,9 @@ func (in *inputs) uncertain(at int) bool {
 }
 
 // gather lays out the vector for one span.
-func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []survey.ListedLoad) *inputs {
-	n := inFixed + len(listed)
-	in := &inputs{x: make([]float64, n), have: make([]bool, n), listed: listed, curve: r.Curve, few: 1}
+func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []survey.ListedLoad, told []survey.LocalLoad) *inputs {
+	local, n, shape := layLocal(r, told, inFixed+len(listed))
+	in := &inputs{local: local, x: make([]float64, n), have: make([]bool, n), listed: listed, curve: r.Curve, few: 1}
 	in.frame.surveyed = r.A.Surveyed && r.B.Surveyed
 	if !r.APriori || r.ScaledBy != 1 {
 		// Student's t with few degrees of freedom has longer tails than k = 2 covers: u is widened so that 2 u covers 95.45 %
@@ -113,7 +114,7 @@ func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []sur
 	}
 	in.sources = append(in.sources, source{name: "shape of the cable (survey)",
 		value: fmt.Sprintf("%d points", len(r.Observations)), u: "rms " + Millimetre.About(r.RMS),
-		directions: cholesky(r.Cov, in.few), survey: true})
+		directions: cholesky(r.Full, shape, in.few), survey: true})
 	in.ends(r)
 	in.set(inTemperature, temperature, "cable temperature on the day", DegreeCelsius)
 	if d == nil {
@@ -140,6 +141,7 @@ func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []sur
 		load := l.Load
 		in.set(inFixed+i, &load, "load seen: "+l.What, NewtonPerMetre)
 	}
+	in.setLocal(r)
 	return in
 }
 
@@ -158,30 +160,31 @@ func (in *inputs) ends(r *fit.Result) {
 	}
 }
 
-// cholesky splits the covariance of (Z_A, Z_B, curvature) into three independent moves, each a factor times one sigma.
-func cholesky(c [3][3]float64, factor float64) [][]step {
-	var l [3][3]float64
-	for i := range 3 {
+// cholesky splits the covariance c (row by row) of what the survey determines, standing at the given places of the vector, into
+// independent moves, each a factor times one sigma.
+func cholesky(c []float64, at []int, factor float64) [][]step {
+	n := len(at)
+	l := make([]float64, n*n)
+	for i := range n {
 		for j := range i + 1 {
-			sum := c[i][j]
+			sum := c[i*n+j]
 			for k := range j {
-				sum -= l[i][k] * l[j][k]
+				sum -= l[i*n+k] * l[j*n+k]
 			}
 			switch {
 			case i == j:
-				l[i][i] = math.Sqrt(math.Max(sum, 0))
-			case l[j][j] > 0:
-				l[i][j] = sum / l[j][j]
+				l[i*n+i] = math.Sqrt(math.Max(sum, 0))
+			case l[j*n+j] > 0:
+				l[i*n+j] = sum / l[j*n+j]
 			}
 		}
 	}
 	var out [][]step
-	at := [3]int{inZA, inZB, inCurvature}
-	for j := range 3 {
+	for j := range n {
 		var d []step
-		for i := j; i < 3; i++ {
-			if l[i][j] != 0 {
-				d = append(d, step{at[i], factor * l[i][j]})
+		for i := j; i < n; i++ {
+			if l[i*n+j] != 0 {
+				d = append(d, step{at[i], factor * l[i*n+j]})
 			}
 		}
 		if d != nil {

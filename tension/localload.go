@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 
+	"tautbook/fit"
 	"tautbook/fit/hanging"
 )
 
@@ -97,6 +98,22 @@ func kinked(e hanging.Equation, ch Chord, kinks []StationLoad) (from, to []float
 	return nil, nil, fmt.Errorf("%w: with %d local loads over chord %.6g m, rise %.6g m", ErrNoState, len(kinks), ch.Length, ch.Rise)
 }
 
+// kinkedLength is the unstressed length, m, of a curve with the given kinks over a chord that starts at station a.
+func kinkedLength(e hanging.Equation, ch Chord, cusps []fit.Cusp, a float64) (s float64, err error) {
+	kinks := make([]StationLoad, len(cusps))
+	for i, c := range cusps {
+		kinks[i] = StationLoad{c.Station - a, c.Kink}
+	}
+	from, to, err := kinked(e, ch, kinks)
+	if err != nil {
+		return 0, err
+	}
+	for i := range from {
+		s += e.Between(from[i], to[i]).S
+	}
+	return s, nil
+}
+
 // SagMid is the vertical distance from the chord down to the cable at mid-span, m.
 func (s LoadedState) SagMid() float64 { return s.Below(s.Chord.Length / 2) }
 
@@ -107,4 +124,9 @@ func (s LoadedState) GreatestTension() float64 {
 		most = math.Max(most, s.H*math.Max(math.Cosh(s.from[i]), math.Cosh(s.to[i])))
 	}
 	return most
+}
+
+// Height is the elevation of the cable above support A at a station (m from A, within the span), m.
+func (s LoadedState) Height(station float64) float64 {
+	return s.Chord.Rise*station/s.Chord.Length - s.Below(station)
 }

@@ -91,6 +91,7 @@ type LoadSummary struct {
 	SelfWeight *Quantity         `json:"self_weight_N_per_m,omitempty"` // as filed, per metre of unstressed cable
 	DeckLoad   *Quantity         `json:"deck_load_N_per_m,omitempty"`   // as filed, per metre of horizontal
 	Listed     []ListedLoad      `json:"listed,omitempty"`              // seen on the day beside the filed load
+	Local      []LocalLoad       `json:"local,omitempty"`               // hanging at one place of the span
 	Hanging    Quantity          `json:"hanging_N_per_m"`               // all of it, per metre as it hangs: H = hanging x a
 	Record     survey.LoadStatus `json:"record"`                        // not checked, as filed, listed
 }
@@ -100,6 +101,28 @@ type ListedLoad struct {
 	Load   Quantity      `json:"load_N_per_m"`
 	Spread survey.Spread `json:"spread"`
 	What   string        `json:"what"`
+}
+
+// LoadSource says how a local load came into the assessment.
+type LoadSource string
+
+// A local load is told with its size, told and its size fitted to the shape, or found in the shape.
+const (
+	OnRecord      LoadSource = "on record"
+	FittedToShape LoadSource = "on record, size from the shape"
+	FoundInShape  LoadSource = "found in the shape"
+)
+
+// LocalLoad is a load that hangs at one place of the span.
+type LocalLoad struct {
+	Station Quantity   `json:"station_m"`                        // from the end A of the chord
+	Load    *Quantity  `json:"load_N"`                           // nil when its size is not known
+	Told    *Quantity  `json:"told_N,omitempty"`                 // as recorded; Load is then the adjusted size
+	OffTold *float64   `json:"shape_less_record_in_u,omitempty"` // size by the shape alone less that recorded, in standard uncertainties
+	Kink    Quantity   `json:"kink"`                             // jump of the slope there, load / horizontal tension
+	From    LoadSource `json:"from"`
+	Chance  *float64   `json:"chance,omitempty"` // of so strong a kink anywhere on the span without a load, when found
+	What    string     `json:"what,omitempty"`
 }
 
 // Reaction is the force of a support on the cable, along the end tangent.

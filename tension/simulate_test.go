@@ -102,7 +102,7 @@ func (s site) expectedTruth(t testing.TB) float64 {
 }
 
 // survey measures the state: points along the span with normal errors in all three coordinates, and both supports.
-func (s site) survey(st State, rng *rand.Rand) survey.SpanPoints {
+func (s site) survey(st interface{ Height(float64) float64 }, rng *rand.Rand) survey.SpanPoints {
 	const e0, n0, z0 = 512345.6, 5412345.7, 431.2
 	az := 0.7
 	at := func(id string, station, z, sigma float64) survey.Point {

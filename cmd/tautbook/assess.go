@@ -21,6 +21,7 @@ type assessOptions struct {
 	readingFlags
 	conditionFlags
 	selfWeight, deckLoad string
+	findLoads            bool
 	rejectBeyond         float64
 	format, out          string
 	html, json, csv      string
@@ -28,13 +29,19 @@ type assessOptions struct {
 	streams              streams
 }
 
+// mostFound is how many local loads that nobody told are searched for on one span.
+const mostFound = 3
+
 const assessHelp = `Fits the hanging curve through the points of each cable span, works out today's tension and end reactions, holds them
 against the design at the day's temperature and load, and prints the condition summary.
 
 Design values come from cables.csv; without it there are shapes but no forces, unless --self-weight or --deck-load gives a
 load. Conditions of the visit stand as "# key: value" lines at the top of the survey file or are given by flag.
 
-Points whose normalised residual is beyond --reject-beyond are left out, one at a time, and listed; 0 leaves out none.`
+Points whose normalised residual is beyond --reject-beyond are left out, one at a time, and listed; 0 leaves out none.
+
+A load that hangs at one place makes a kink. Loads of that kind are told by --load "CABLE; 3.2 +- 0.2 kN; at 12.4 m; what"; kinks that
+nobody told are searched for, and what is found is said in the findings. --find-loads=false fits without looking for any.`
 
 func newAssess(s streams) *cobra.Command {
 	o := &assessOptions{streams: s}
@@ -54,6 +61,7 @@ func newAssess(s streams) *cobra.Command {
 	fl.StringVar(&o.selfWeight, "self-weight", "", "self weight of every cable that has no design values, for example \"50 +- 1 N/m\"")
 	fl.StringVar(&o.deckLoad, "deck-load", "", "deck load of every cable that has no design values, per horizontal metre")
 	fl.Float64Var(&o.rejectBeyond, "reject-beyond", 6, "leave out points whose normalised residual is beyond this; 0 leaves out none")
+	fl.BoolVar(&o.findLoads, "find-loads", true, "search the shape for local loads that nobody told")
 	fl.StringVar(&o.format, "format", "text", "what goes to standard output: text, json, csv or html")
 	fl.StringVar(&o.out, "out", "", "write the result to this file instead of standard output")
 	fl.StringVar(&o.html, "html", "", "also write the condition summary as one HTML file")
@@ -82,7 +90,11 @@ func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
 	if err != nil {
 		return err
 	}
-	cases := casesOf(in, plain, fit.Options{RejectBeyond: o.rejectBeyond})
+	opts := fit.Options{RejectBeyond: o.rejectBeyond}
+	if o.findLoads {
+		opts.FindLoads = mostFound
+	}
+	cases := casesOf(in, plain, opts)
 	if plain != nil && !slices.ContainsFunc(cases, func(c tension.Case) bool { return c.Design == plain }) {
 		fmt.Fprintf(o.streams.err, "tautbook: --self-weight and --deck-load are not used: %s has design values for every cable\n", in.cables)
 	}
