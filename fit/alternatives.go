@@ -50,7 +50,7 @@ func (r *Result) against(other *Result, shape Shape, tensionOff float64) Alterna
 	if !r.APriori || r.ScaledBy > 1 {
 		delta = n * math.Log(other.VarianceFactor*float64(other.DegreesOfFreedom)/(r.VarianceFactor*float64(r.DegreesOfFreedom)))
 	}
-	price := func(p float64) float64 { return 2*p + 2*p*(p+1)/(n-p-1) }
+	price := func(p float64) float64 { return 2*p + 2*p*(p+1)/math.Max(n-p-1, 1) }
 	return Alternative{Shape: shape, LocalLoads: len(other.locals), Constant: other.Curve.Constant(), RMS: math.Sqrt(sum / n),
 		DeltaAICc: delta/(r.Widening*r.Widening) + price(float64(other.n)) - price(float64(r.n)), TensionOff: tensionOff}
 }

@@ -11,15 +11,59 @@ import (
 
 // Cable fits a hanging curve through the points of one span. The plane is found first (see Frame), then the curve by weighted
 // least squares with errors in both coordinates. Accuracy comes with the points, else from Options, else it is estimated
-// from the residuals. Surveyed supports fix plane and chord but are not points of the fit: a pin or a saddle may lie off
-// the centre line. Result says everything about the quality. The error wraps ErrRank when the points do not determine a
+// from the residuals. Surveyed supports fix plane and chord; they are points of the fit only with Options.ThroughSupports, since a
+// pin or a saddle may lie off the centre line. Result says everything about the quality. The error wraps ErrRank when the points do not determine a
 // curve; it says how many points are missing when there are fewer than four stations.
 func Cable(p survey.SpanPoints, o Options) (*Result, error) {
 	obs, frame, a, b, err := inPlane(p, o)
 	if err != nil {
 		return nil, err
 	}
-	return InPlane(obs, frame, a, b, o)
+	obs, left, err := o.cleared(obs, a, b)
+	if err != nil {
+		return nil, err
+	}
+	r, err := InPlane(obs, frame, a, b, o)
+	if err != nil {
+		return nil, err
+	}
+	r.LeftOut = left
+	return r, nil
+}
+
+// cleared takes out the points near supports and told local loads: within about five times sqrt(EI/H) of a clamp the bending
+// stiffness carries part of the load (Timoshenko and Woinowsky-Krieger 1959, Theory of Plates and Shells, ch. 1, for the
+// decay of a strip under tension).
+func (o Options) cleared(obs []Observation, a, b End) (kept []Observation, left []Suspect, err error) {
+	if !(o.Clear > 0) {
+		return obs, nil, nil
+	}
+	near := func(v Observation) string {
+		switch {
+		case v.Support:
+		case a.Surveyed && v.S-a.Station < o.Clear:
+			return "support A"
+		case b.Surveyed && b.Station-v.S < o.Clear:
+			return "support B"
+		}
+		for _, l := range o.Loads {
+			if math.Abs(v.S-l.Station) < o.Clear {
+				return fmt.Sprintf("the local load at %.2f m", l.Station)
+			}
+		}
+		return ""
+	}
+	for _, v := range obs {
+		if what := near(v); what != "" {
+			left = append(left, Suspect{ID: v.ID, Line: v.Line, Station: v.S, Reason: fmt.Sprintf("within %.2f m of %s, where bending makes another shape", o.Clear, what)})
+			continue
+		}
+		kept = append(kept, v)
+	}
+	if len(kept) < 5 && len(left) > 0 {
+		return nil, nil, fmt.Errorf("fit: %d of %d points lie within %.2f m of a support or a local load, where bending makes another shape: survey more points in the span", len(left), len(obs), o.Clear)
+	}
+	return kept, left, nil
 }
 
 // workspaces are reused from fit to fit, so that many cables do not allocate for each.

@@ -42,7 +42,7 @@ func inPlane(p survey.SpanPoints, o Options) (obs []Observation, f Frame, a, b E
 		}
 		return v
 	}
-	obs = make([]Observation, len(p.Points))
+	obs = make([]Observation, len(p.Points), len(p.Points)+2)
 	lo, hi := math.Inf(1), math.Inf(-1)
 	for i, q := range p.Points {
 		obs[i] = place(q)
@@ -58,6 +58,9 @@ func inPlane(p survey.SpanPoints, o Options) (obs []Observation, f Frame, a, b E
 	if !(b.Station > a.Station) {
 		return nil, f, a, b, fmt.Errorf("fit: support A (station %.3f m) does not lie before B (station %.3f m): are A and B interchanged?", a.Station, b.Station)
 	}
+	if o.ThroughSupports {
+		obs = withSupports(obs, p, place)
+	}
 	f.shift(a.Station, sin, cos)
 	for i := range obs {
 		obs[i].S -= a.Station
@@ -68,6 +71,27 @@ func inPlane(p survey.SpanPoints, o Options) (obs []Observation, f Frame, a, b E
 		f.UAzimuth = lineU(obs)
 	}
 	return obs, f, a, b, nil
+}
+
+// withSupports adds the surveyed supports to the points.
+func withSupports(obs []Observation, p survey.SpanPoints, place func(survey.Point) Observation) []Observation {
+	for _, e := range []struct {
+		name string
+		mark *survey.Point
+	}{{"support A", p.A}, {"support B", p.B}} {
+		if e.mark == nil {
+			continue
+		}
+		v := place(*e.mark)
+		v.Support = true
+		if v.ID == "" {
+			v.ID = e.name
+		} else {
+			v.ID = e.name + " (" + v.ID + ")"
+		}
+		obs = append(obs, v)
+	}
+	return obs
 }
 
 func supportEnd(o Observation) End {

@@ -33,6 +33,7 @@ type Observation struct {
 	S, Z              float64 // m
 	Across            float64 // distance from the plane, m, positive to the left of A -> B
 	VarS, CovSZ, VarZ float64 // m2; all zero when no accuracy is known
+	Support           bool    // the mark of a support, used as a point of the curve
 }
 
 // Frame is the vertical plane of a span: station s = (E - E0) sin(Azimuth) + (N - N0) cos(Azimuth).
@@ -63,8 +64,11 @@ type Options struct {
 	MaxIterations  int     // 0 = 200
 	NoAlternatives bool    // do not fit the other shapes
 
-	Loads     []LocalLoad // local loads that are known to hang on the span, any order
-	FindLoads int         // search for as many local loads at most that nobody told; 0 = do not search
+	Loads           []LocalLoad // local loads that are known to hang on the span, any order
+	ThroughSupports bool        // the surveyed supports are points of the curve, each with its own accuracy
+	Clear           float64     // leave out points nearer than this, m, to a surveyed support or a told local load: bending there makes another shape
+
+	FindLoads int // search for as many local loads at most that nobody told; 0 = do not search
 }
 
 // Suspect is one point that the single-point test speaks against.
@@ -92,6 +96,7 @@ type Result struct {
 	W            []float64     // test statistic of each: see SingleTest
 	Rejected     []Suspect     // dropped
 	Suspects     []Suspect     // listed, still used
+	LeftOut      []Suspect     // never used: within Options.Clear of a support or a local load
 
 	DegreesOfFreedom int
 	RMS              float64 // root mean square of the vertical residuals, m

@@ -7,11 +7,11 @@ import (
 )
 
 // conditionKeys are the keys that a "# key: value" line of a survey file may have.
-var conditionKeys = map[string]bool{"structure": true, "date": true, "temperature": true, "wind": true, "loads": true, "load": true, "reading": true,
+var conditionKeys = map[string]bool{"structure": true, "date": true, "temperature": true, "wind": true, "loads": true, "load": true, "reading": true, "supports": true,
 	"instrument": true, "accuracy": true, "crew": true, "unit": true, "cable": true, "span": true, "note": true}
 
 // keyList names the keys for a message.
-const keyList = "structure, date, temperature, wind, loads, load, reading, instrument, accuracy, crew, unit, cable, span or note"
+const keyList = "structure, date, temperature, wind, loads, load, reading, supports, instrument, accuracy, crew, unit, cable, span or note"
 
 // conditionKey is the one spelling of a key.
 func conditionKey(key string) string {
@@ -33,6 +33,7 @@ func conditionKey(key string) string {
 //	load          CABLE[/SPAN]; 180 +- 10 N/m; along cable | along deck; what it is   (may be given several times)
 //	load          CABLE[/SPAN]; 3.2 +- 0.2 kN | unknown; at 12.4 m; what it is   (hangs at one place, that far from support A along the chord)
 //	reading       CABLE[/SPAN]; tension at A | tension at B | horizontal tension; 30.7 +- 0.5 kN; load cell   (one a span)
+//	supports      on the cable | beside the cable: whether the surveyed marks A and B lie on its centre line (default beside)
 //	accuracy      standard deviation of a point: 3 mm, or horizontal 3 mm, vertical 2 mm
 //	unit          of coordinates
 //	cable, span   that all points of the file are on
@@ -90,6 +91,8 @@ func (c *Conditions) put(key, value string, again bool) error {
 		return c.setAccuracy(value, again)
 	case "loads":
 		return c.setLoads(value)
+	case "supports":
+		return c.setSupports(value, again)
 	case "load":
 		return c.addLoad(value)
 	case "reading":
@@ -171,6 +174,18 @@ func (c *Conditions) setAccuracy(value string, again bool) error {
 		return wrong(value, "one accuracy: there was another before", "take one of the two lines out")
 	}
 	c.Accuracy = &a
+	return nil
+}
+
+func (c *Conditions) setSupports(value string, again bool) error {
+	on := strings.EqualFold(value, "on the cable")
+	if !on && !strings.EqualFold(value, "beside the cable") {
+		return wrong(value, "on the cable or beside the cable", "")
+	}
+	if again && c.SupportsOnCable != on {
+		return wrong(value, "one word on the supports: it was another before", "take one of the two lines out")
+	}
+	c.SupportsOnCable = on
 	return nil
 }
 

@@ -198,6 +198,7 @@ type Conditions struct {
 	Listed           []ListedLoad
 	Local            []LocalLoad
 	Readings         []Reading
+	SupportsOnCable  bool // the surveyed support marks lie on the centre line of the cable
 	Instrument       string
 	Accuracy         *Accuracy
 	Crew             string

@@ -16,6 +16,10 @@ const defaultLimit = 0.10
 // temperature stands in for it: common practice, no source.
 const unknownTemperatureU = 15.0
 
+// clearDiameters is how many diameters from a support or a clamp the points are left out when nothing more is known of the bending
+// stiffness: common practice, no source.
+const clearDiameters = 20
+
 // Case is one cable span to be assessed.
 type Case struct {
 	Points     survey.SpanPoints
@@ -50,6 +54,10 @@ func (c Case) fit(listed []survey.ListedLoad, told []survey.LocalLoad) (*fit.Res
 	opts.Shape, opts.SelfShare = shapeFor(own, deck)
 	if len(told) > 0 && c.Points.A == nil {
 		return nil, fmt.Errorf("the local load %q is placed by its distance from support A, and A was not surveyed: survey A and code it, or take the load line out", told[0].What)
+	}
+	opts.ThroughSupports = c.Conditions.SupportsOnCable
+	if c.Design != nil && c.Design.Diameter != nil && opts.Clear == 0 {
+		opts.Clear = clearDiameters * c.Design.Diameter.Value
 	}
 	opts.Loads = localOptions(told, Quantity{Value: own + deck, U: u})
 	fitted := opts.FindLoads
@@ -184,7 +192,7 @@ type judgement struct {
 // fill sets the figures that rest on shape and load alone.
 func (j *judgement) fill() {
 	p, r := &j.p, j.r
-	f := FitSummary{Shape: r.Curve.Shape(), PointsUsed: len(r.Observations), Rejected: list(r.Rejected), Suspects: list(r.Suspects),
+	f := FitSummary{Shape: r.Curve.Shape(), PointsUsed: len(r.Observations), Rejected: list(r.Rejected), LeftOut: r.LeftOut, Suspects: list(r.Suspects),
 		DegreesOfFreedom: r.DegreesOfFreedom, RMS: r.RMS, VarianceFactor: r.VarianceFactor, AccuracyStated: r.APriori,
 		Widening: r.Widening, PlaneFrom: r.Frame.From, AzimuthDeg: r.Frame.Azimuth * 180 / math.Pi, Alternatives: list(r.Alternatives),
 		Chord: p.must(outChord), Rise: p.must(outRise), SagMid: p.must(outSagMid), GreatestSag: p.must(outGreatestSag),

@@ -261,6 +261,9 @@ func (j *judgement) tellSurvey() {
 	if n := len(r.Rejected); n > 0 {
 		j.add("rejected", Look, "%d of %d points left out: %s.", n, n+len(r.Observations), suspects(r.Rejected))
 	}
+	if n := len(r.LeftOut); n > 0 {
+		j.add("left-out", Note, "%d points near supports or local loads were not used, because bending makes another shape there: %s.", n, names(r.LeftOut))
+	}
 	if len(r.Suspects) > 0 {
 		j.add("suspects", Look, "Suspect points, still used: %s. Check them in the field book; --reject-beyond leaves them out.", suspects(r.Suspects))
 	}
@@ -287,6 +290,24 @@ func (j *judgement) tellSurvey() {
 		j.add("pattern", Look, "The residuals are not scattered by chance (runs test, probability %s): the cable may not hang freely in this shape (a local load, a touching branch, a kink), or the points are not all on one cable.",
 			Probability(r.RunsP))
 	}
+}
+
+// names are the points of a list with the reason of each.
+func names(list []fit.Suspect) string {
+	const most = 6
+	var out []string
+	for i, s := range list {
+		if i == most {
+			out = append(out, fmt.Sprintf("and %d more", len(list)-most))
+			break
+		}
+		name := s.ID
+		if name == "" {
+			name = fmt.Sprintf("line %d", s.Line)
+		}
+		out = append(out, name+" "+s.Reason)
+	}
+	return strings.Join(out, "; ")
 }
 
 func suspects(list []fit.Suspect) string {

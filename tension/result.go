@@ -63,6 +63,7 @@ type FitSummary struct {
 	PointsUsed        int               `json:"points_used"`
 	Rejected          []fit.Suspect     `json:"rejected"`
 	Suspects          []fit.Suspect     `json:"suspects"`
+	LeftOut           []fit.Suspect     `json:"left_out,omitempty"` // near a support or a local load, where bending makes another shape
 	DegreesOfFreedom  int               `json:"degrees_of_freedom"`
 	RMS               float64           `json:"rms_m"`
 	VarianceFactor    float64           `json:"variance_factor"` // dimensionless with a stated accuracy, else m2

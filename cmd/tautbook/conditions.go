@@ -22,6 +22,7 @@ var conditionKeys = []struct{ key, help string }{
 	{"temperature", "cable temperature, for example \"12 +- 2 degC\""},
 	{"wind", "wind in words"},
 	{"loads", "record of loads: \"as filed\", \"listed\" or \"not checked\" (default not checked)"},
+	{"supports", "whether the surveyed support marks lie on the cable: \"on the cable\" or \"beside the cable\" (default)"},
 	{"instrument", "instrument"},
 	{"accuracy", "standard deviation of one point, for example \"3 mm\" or \"horizontal 3 mm, vertical 2 mm\""},
 	{"crew", "crew"},
@@ -125,6 +126,10 @@ func (f *conditionFlags) over(cmd *cobra.Command, sv *survey.Survey, given surve
 	if changed("reading") {
 		replaced("reading", len(c.Readings) > 0)
 		c.Readings = given.Readings
+	}
+	if changed("supports") {
+		replaced("supports", c.SupportsOnCable && !given.SupportsOnCable)
+		c.SupportsOnCable = given.SupportsOnCable
 	}
 	if changed("instrument") {
 		replaced("instrument", c.Instrument != "" && c.Instrument != given.Instrument)
