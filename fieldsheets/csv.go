@@ -110,6 +110,15 @@ func direct(get func(d *tension.Direct) *tension.Quantity) func(a *tension.Asses
 	}
 }
 
+func swing(get func(w *tension.Swing) *tension.Quantity) func(a *tension.Assessment) *tension.Quantity {
+	return func(a *tension.Assessment) *tension.Quantity {
+		if a.Fit.Swing == nil {
+			return nil
+		}
+		return get(a.Fit.Swing)
+	}
+}
+
 func reaction(k int, get func(r *tension.Reaction) *tension.Quantity) func(a *tension.Assessment) *tension.Quantity {
 	return func(a *tension.Assessment) *tension.Quantity {
 		if k >= len(a.Reactions) {
@@ -147,6 +156,8 @@ func makeColumns() (out []csvColumn) {
 		{"sag_mid_m", func(a *tension.Assessment) *tension.Quantity { return &a.Fit.SagMid }},
 		{"greatest_sag_m", func(a *tension.Assessment) *tension.Quantity { return &a.Fit.GreatestSag }},
 		{"arc_length_m", func(a *tension.Assessment) *tension.Quantity { return &a.Fit.ArcLength }},
+		{"swing_deg", swing(func(w *tension.Swing) *tension.Quantity { return &w.AngleDeg })},
+		{"side_load_N_per_m", swing(func(w *tension.Swing) *tension.Quantity { return w.SideLoad })},
 		{"horizontal_tension_N", func(a *tension.Assessment) *tension.Quantity { return a.HorizontalTension }},
 		{"reaction_A_vertical_N", reaction(0, func(r *tension.Reaction) *tension.Quantity { return &r.Vertical })},
 		{"reaction_A_tension_N", reaction(0, func(r *tension.Reaction) *tension.Quantity { return &r.Tension })},

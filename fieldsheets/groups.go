@@ -106,6 +106,9 @@ func forces(a *tension.Assessment) group {
 		g.Rows = append(g.Rows,
 			row{"Tension at " + where, force(r.Tension) + ", slope " + tension.Degree.Figure(r.SlopeDeg)},
 			row{"Vertical reaction there", force(r.Vertical) + upOrDown(r)})
+		if r.Left != nil {
+			g.Rows = append(g.Rows, row{"Reaction across the span", force(*r.Left) + ", positive to the left from A to B"})
+		}
 	}
 	if len(a.Reactions) == 0 {
 		g.Rows = append(g.Rows, row{"Reactions at A and B", unknown(whyNoTension(a))})
@@ -267,6 +270,12 @@ func shapeGroup(a *tension.Assessment) group {
 	}
 	if !known {
 		g.Rows = append(g.Rows, row{"Curve constant", unknown(tooFlat)})
+	}
+	if w := f.Swing; w != nil {
+		g.Rows = append(g.Rows, row{"Swing out of the vertical", tension.Degree.Figure(w.AngleDeg) + ", positive to the left from A to B"})
+		if w.SideLoad != nil {
+			g.Rows = append(g.Rows, row{"Side load it means", tension.NewtonPerMetre.Figure(*w.SideLoad)})
+		}
 	}
 	g.Rows = append(g.Rows, row{"Chord, horizontal", tension.Metre.Figure(f.Chord)}, row{"Rise of B over A", tension.Metre.Figure(f.Rise)},
 		row{"Sag at mid-span", length(f.SagMid) + fmt.Sprintf(" (%s of the span)", tension.Percent.About(f.SagRatio))},

@@ -27,6 +27,9 @@ func Cable(p survey.SpanPoints, o Options) (*Result, error) {
 	if err != nil {
 		return nil, err
 	}
+	if r, err = r.inSwing(obs, o); err != nil {
+		return nil, err
+	}
 	r.LeftOut = left
 	return r, nil
 }

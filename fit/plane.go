@@ -37,8 +37,12 @@ func inPlane(p survey.SpanPoints, o Options) (obs []Observation, f Frame, a, b E
 			v.VarS = sin*sin*q.Cov.EE + 2*sin*cos*q.Cov.EN + cos*cos*q.Cov.NN
 			v.CovSZ = sin*q.Cov.EZ + cos*q.Cov.NZ
 			v.VarZ = q.Cov.ZZ
+			v.varA = sin*sin*q.Cov.NN - 2*sin*cos*q.Cov.EN + cos*cos*q.Cov.EE
+			v.covSA = sin*cos*(q.Cov.NN-q.Cov.EE) + (sin*sin-cos*cos)*q.Cov.EN
+			v.covAZ = sin*q.Cov.NZ - cos*q.Cov.EZ
 		} else {
 			v.VarS, v.VarZ = o.SigmaAlong*o.SigmaAlong, o.SigmaUp*o.SigmaUp
+			v.varA = v.VarS
 		}
 		return v
 	}

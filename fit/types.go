@@ -34,6 +34,8 @@ type Observation struct {
 	Across            float64 // distance from the plane, m, positive to the left of A -> B
 	VarS, CovSZ, VarZ float64 // m2; all zero when no accuracy is known
 	Support           bool    // the mark of a support, used as a point of the curve
+
+	varA, covSA, covAZ float64 // m2, across the plane
 }
 
 // Frame is the vertical plane of a span: station s = (E - E0) sin(Azimuth) + (N - N0) cos(Azimuth).
@@ -42,6 +44,11 @@ type Frame struct {
 	Azimuth  float64 // of A -> B, rad clockwise from north
 	UAzimuth float64 // standard uncertainty of it, rad
 	From     string  // "supports" or "points": what fixed the plane
+	Tilt     float64 // of the plane about the chord, rad, positive when the cable swings to the left of A -> B; 0 = vertical
+	UTilt    float64 // standard uncertainty, rad
+
+	level         float64 // elevation of the end A, where heights in a tilted plane start, m
+	along, across float64 // parts up and to the left of the unit vector along the chord axis of a tilted plane
 }
 
 // End is one end of the chord on which statics are reported.
@@ -63,6 +70,7 @@ type Options struct {
 	Alpha          float64 // significance from which a point is listed as suspect, two-sided; 0 = 0.001 (Baarda 1968)
 	MaxIterations  int     // 0 = 200
 	NoAlternatives bool    // do not fit the other shapes
+	NoSwing        bool    // keep the plane vertical whatever the plan of the points
 
 	Loads           []LocalLoad // local loads that are known to hang on the span, any order
 	ThroughSupports bool        // the surveyed supports are points of the curve, each with its own accuracy
@@ -89,6 +97,7 @@ type Result struct {
 	Full  []float64     // the same with the free kinks and places of local loads after it, in the order of Loads, row by row
 	Frame Frame
 	A, B  End
+	Swing *Swing       // out of the vertical plane; nil when the points have no plan, or too few
 	Loads []LoadResult // local loads, those told and those found, by station
 
 	Observations []Observation // those used, in order of input

@@ -199,6 +199,9 @@ func (j *judgement) fill() {
 		ArcLength: p.must(outArc), LowPointStation: p.quantity(outLowStation), LowPointElevation: p.quantity(outLowElevation)}
 	f.SagRatio = f.SagMid.Value / f.Chord.Value
 	f.GreatestSagAt, _ = r.Curve.GreatestSag(r.A.Station, r.B.Station)
+	if w := r.Swing; w != nil && w.Taken {
+		f.Swing = &Swing{AngleDeg: Quantity{Value: w.Angle * 180 / math.Pi, U: w.U * 180 / math.Pi}, SideLoad: p.quantity(outWind), Chance: w.Chance}
+	}
 	hangs := j.hangs()
 	if hangs {
 		constant := p.quantity(outConstant)
@@ -276,7 +279,16 @@ func (j *judgement) atLeast() *float64 {
 
 func (j *judgement) reaction(name string, e fit.End, v, t, slope int, z float64) Reaction {
 	p := &j.p
-	return Reaction{Support: name, Surveyed: e.Surveyed, Station: e.Station, Elevation: z, Horizontal: p.must(outH),
+	var left *Quantity
+	if j.in.have[inTilt] {
+		at := outLeftA
+		if name == "B" {
+			at = outLeftB
+		}
+		q := p.must(at)
+		left, z = &q, j.r.Frame.Elevation(e.Station, z)
+	}
+	return Reaction{Left: left, Support: name, Surveyed: e.Surveyed, Station: e.Station, Elevation: z, Horizontal: p.must(outH),
 		Vertical: p.must(v), Tension: p.must(t), SlopeDeg: p.must(slope)}
 }
 

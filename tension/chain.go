@@ -53,6 +53,9 @@ const (
 	outReadRatio  // to the expected tension under the filed load
 	outReadFactor // load that the reading implies / load on record
 	outReadUse
+	outWind  // even load across the span that a swung plane means, N/m as it hangs, to the left of A -> B
+	outLeftA // reactions across the span, to the left of A -> B, N
+	outLeftB
 	outLocal // sizes of the local loads that the shape gives, N
 	outCount = outLocal + mostFitted
 )
@@ -106,7 +109,19 @@ type carried struct {
 	self, deck float64 // along the unstressed cable, along the horizontal
 }
 
-func (in *inputs) load(x []float64) carried {
+func (in *inputs) load(x []float64) carried { return in.resultant(x, in.hangingDown(x)) }
+
+// resultant is the load in the plane of a swung cable: the weight and the wind that swings it.
+func (in *inputs) resultant(x []float64, l carried) carried {
+	if !in.have[inTilt] {
+		return l
+	}
+	cos := math.Cos(x[inTilt])
+	return carried{l.self / cos, l.deck / cos}
+}
+
+// hangingDown is the weight of everything on record, without wind.
+func (in *inputs) hangingDown(x []float64) carried {
 	l := carried{x[inSelfWeight], x[inDeckLoad]}
 	for i, e := range in.listed {
 		if e.Spread == survey.AlongCable {
@@ -143,7 +158,7 @@ func (in *inputs) geometry(y *outputs, c fit.Curve, x []float64) {
 	y[outSlopeA] = math.Atan(c.Slope(a)) * 180 / math.Pi
 	y[outSlopeB] = math.Atan(c.Slope(b)) * 180 / math.Pi
 	if s, z, ok := c.LowPoint(); ok {
-		y[outLowStation], y[outLowElevation] = s-in.x[inStationA], z
+		y[outLowStation], y[outLowElevation] = s-in.x[inStationA], in.plane.Elevation(s, z)
 	}
 }
 
@@ -165,6 +180,13 @@ func (in *inputs) statics(y *outputs, c fit.Curve, x []float64, l carried) {
 	}
 	y[outHanging] = h * x[inCurvature]
 	y[outVerticalA], y[outVerticalB] = -h*ta, h*tb
+	if in.have[inTilt] {
+		y[outWind] = y[outHanging] * math.Sin(x[inTilt])
+		plane := in.plane
+		plane.Tilt = x[inTilt]
+		y[outVerticalA], y[outLeftA] = plane.Components(-h, -h*ta)
+		y[outVerticalB], y[outLeftB] = plane.Components(h, h*tb)
+	}
 	y[outTensionA], y[outTensionB] = h*math.Hypot(1, ta), h*math.Hypot(1, tb)
 	y[outGreatestT] = math.Max(y[outTensionA], y[outTensionB])
 	if in.have[inReading] {
@@ -242,7 +264,7 @@ func (in *inputs) chordToday(x []float64, c fit.Curve) (Chord, string) {
 		if in.have[inSpan] && math.Abs(covered/x[inSpan]-1) > sameSpan {
 			return Chord{}, fmt.Sprintf("the surveyed supports are %.4g m apart and the design span is %.4g m: not the same span, or another unit", covered, x[inSpan])
 		}
-		return Chord{Length: covered, Rise: c.Z(x[inStationB]) - c.Z(x[inStationA])}, ""
+		return Chord{Length: covered, Rise: c.Z(x[inStationB]) - c.Z(x[inStationA])}, "" // in the plane of the cable
 	}
 	switch {
 	case !in.have[inSpan] || !in.have[inRise]:
@@ -250,7 +272,8 @@ func (in *inputs) chordToday(x []float64, c fit.Curve) (Chord, string) {
 	case covered > 1.01*x[inSpan]:
 		return Chord{}, fmt.Sprintf("the points cover %.4g m and the design span is %.4g m: not the same span, or another unit", covered, x[inSpan])
 	}
-	return Chord{Length: x[inSpan], Rise: x[inRise]}, ""
+	sin, cos := math.Sincos(x[inTilt])
+	return Chord{Length: math.Hypot(x[inSpan], x[inRise]*sin), Rise: x[inRise] * cos}, ""
 }
 
 // today fills the state of the designer's cable on the day, the comparison, and today's cable at the design temperature.
@@ -268,7 +291,7 @@ func (in *inputs) today(y *outputs, x []float64, c fit.Curve, day Cable, ch Chor
 	if err != nil {
 		return fmt.Errorf("the designed cable has no state on the day: %w", err)
 	}
-	filed := carried{x[inSelfWeight], x[inDeckLoad]}
+	filed := in.resultant(x, carried{x[inSelfWeight], x[inDeckLoad]})
 	y[outHFiled] = exp.h
 	if len(in.listed)+len(in.local) > 0 {
 		alone := day

@@ -261,6 +261,7 @@ func (j *judgement) tellSurvey() {
 	if n := len(r.Rejected); n > 0 {
 		j.add("rejected", Look, "%d of %d points left out: %s.", n, n+len(r.Observations), suspects(r.Rejected))
 	}
+	j.tellSwing()
 	if n := len(r.LeftOut); n > 0 {
 		j.add("left-out", Note, "%d points near supports or local loads were not used, because bending makes another shape there: %s.", n, names(r.LeftOut))
 	}
@@ -289,6 +290,25 @@ func (j *judgement) tellSurvey() {
 	if r.RunsP < 0.001 && len(r.Observations) >= 10 {
 		j.add("pattern", Look, "The residuals are not scattered by chance (runs test, probability %s): the cable may not hang freely in this shape (a local load, a touching branch, a kink), or the points are not all on one cable.",
 			Probability(r.RunsP))
+	}
+}
+
+func (j *judgement) tellSwing() {
+	if w := j.a.Fit.Swing; w != nil {
+		side, under := "left", "side load"
+		if w.AngleDeg.Value < 0 {
+			side = "right"
+		}
+		angle := w.AngleDeg
+		angle.Value = math.Abs(angle.Value)
+		if w.SideLoad != nil {
+			under = NewtonPerMetre.Figure(Quantity{Value: math.Abs(w.SideLoad.Value), U: w.SideLoad.U})
+		}
+		j.add("swing", Look, "The cable hangs %s out of the vertical, to the %s seen from A to B, as under %s across the span: wind, or something that pulls aside. Shape, sag and H are those in its own plane, under the resultant load.",
+			Degree.Figure(angle), side, under)
+	}
+	if w := j.r.Swing; w != nil && w.Gusty {
+		j.add("gusty", Look, "The points scatter across the plane (%s) more than their accuracy allows: the cable was moving, or some points are on something else. Survey it again in still air.", Millimetre.About(w.Scatter))
 	}
 }
 

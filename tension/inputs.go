@@ -30,6 +30,7 @@ const (
 	inDesignTemp         // degC
 	inBreaking           // MBL, N
 	inReading            // tension read directly on the day, N
+	inTilt               // swing of the plane on the day, rad
 	inFixed
 )
 
@@ -40,8 +41,9 @@ type inputs struct {
 	sources []source
 	listed  []survey.ListedLoad // those that concern this span
 	local   []localInput        // loads that hang at one place
-	readOf  survey.ReadOf       // what inReading is of
-	curve   fit.Curve           // shape family and share; its numbers are overwritten from x
+	plane   fit.Frame
+	readOf  survey.ReadOf // what inReading is of
+	curve   fit.Curve     // shape family and share; its numbers are overwritten from x
 	frame   spanFrame
 	near    outputs // figures at the estimates: first guesses for the states nearby; zero = none
 	few     float64 // factor on u of the survey for an accuracy estimated from few residuals; 1 = none
@@ -116,6 +118,7 @@ func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []sur
 		value: fmt.Sprintf("%d points", len(r.Observations)), u: "rms " + Millimetre.About(r.RMS),
 		directions: cholesky(r.Full, shape, in.few), survey: true})
 	in.ends(r)
+	in.swing(r)
 	in.set(inTemperature, temperature, "cable temperature on the day", DegreeCelsius)
 	if d == nil {
 		return in
@@ -143,6 +146,17 @@ func gather(r *fit.Result, d *survey.Design, temperature *Quantity, listed []sur
 	}
 	in.setLocal(r)
 	return in
+}
+
+// swing adds the angle of a swung plane.
+func (in *inputs) swing(r *fit.Result) {
+	in.plane = r.Frame
+	if r.Frame.Tilt == 0 {
+		return
+	}
+	in.x[inTilt], in.have[inTilt] = r.Frame.Tilt, true
+	deg := Quantity{Value: r.Frame.Tilt * 180 / math.Pi, U: r.Frame.UTilt * 180 / math.Pi}
+	in.sources = append(in.sources, source{name: "swing angle (survey)", value: Degree.Value(deg), u: Degree.About(deg.U), directions: [][]step{{{inTilt, r.Frame.UTilt}}}})
 }
 
 // ends adds the uncertainty of the surveyed supports.

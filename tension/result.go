@@ -71,7 +71,8 @@ type FitSummary struct {
 	Widening          float64           `json:"widening"` // factor on u for correlated residuals
 	PlaneFrom         string            `json:"plane_from"`
 	AzimuthDeg        float64           `json:"azimuth_deg"`
-	Chord             Quantity          `json:"chord_m"` // horizontal
+	Swing             *Swing            `json:"swing,omitempty"` // when the cable hangs out of the vertical plane
+	Chord             Quantity          `json:"chord_m"`         // horizontal
 	Rise              Quantity          `json:"rise_m"`
 	CatenaryConstant  *Quantity         `json:"catenary_constant_m,omitempty"`
 	ParabolaParameter *Quantity         `json:"parabola_parameter_m,omitempty"`
@@ -104,6 +105,14 @@ type ListedLoad struct {
 	What   string        `json:"what"`
 }
 
+// Swing is a cable blown or pulled out of the vertical plane. Shape, sags, chord, slopes and H are then those in its own plane, H by the
+// resultant load.
+type Swing struct {
+	AngleDeg Quantity  `json:"angle_deg"`         // from the vertical, positive to the left seen from A to B
+	SideLoad *Quantity `json:"side_load_N_per_m"` // even load across the span that the angle means, to the same side; nil when no load is on file
+	Chance   float64   `json:"chance"`            // of such a plan for a cable that hangs straight down
+}
+
 // LoadSource says how a local load came into the assessment.
 type LoadSource string
 
@@ -128,14 +137,15 @@ type LocalLoad struct {
 
 // Reaction is the force of a support on the cable, along the end tangent.
 type Reaction struct {
-	Support    string   `json:"support"`  // A or B
-	Surveyed   bool     `json:"surveyed"` // false: the outermost point stands in for the support
-	Station    float64  `json:"station_m"`
-	Elevation  float64  `json:"elevation_m"` // of the fitted cable there
-	Horizontal Quantity `json:"horizontal_N"`
-	Vertical   Quantity `json:"vertical_N"`
-	Tension    Quantity `json:"tension_N"`
-	SlopeDeg   Quantity `json:"slope_deg"` // dz/ds from A to B as an angle
+	Support    string    `json:"support"`  // A or B
+	Surveyed   bool      `json:"surveyed"` // false: the outermost point stands in for the support
+	Station    float64   `json:"station_m"`
+	Elevation  float64   `json:"elevation_m"` // of the fitted cable there
+	Horizontal Quantity  `json:"horizontal_N"`
+	Vertical   Quantity  `json:"vertical_N"`
+	Left       *Quantity `json:"left_N,omitempty"` // across the span, positive to the left seen from A to B; only of a swung cable
+	Tension    Quantity  `json:"tension_N"`
+	SlopeDeg   Quantity  `json:"slope_deg"` // dz/ds from A to B as an angle
 }
 
 // ImpliedLoad is the even load, N per metre as it hangs, that the fitted shape needs under two assumptions.
