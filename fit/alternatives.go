@@ -10,6 +10,12 @@ import (
 // The difference is that of the sums of squares, against the stated accuracy when it holds, else in logarithms, and of the price of
 // the parameters. Correlated residuals count for less. A shape that does not converge is left out.
 func (r *Result) compareShapes(w *workspace, share float64, o Options) {
+	var ends [2]*Result // by share
+	tell := r.mayTellShare()
+	if tell && (share == 0 || share == 1) {
+		r.last = r.normalised(w)
+		ends[int(share)] = r
+	}
 	per := r.Curve.ArcLength(r.A.Station, r.B.Station) / (r.B.Station - r.A.Station)
 	for _, alt := range []struct {
 		shape Shape
@@ -22,7 +28,14 @@ func (r *Result) compareShapes(w *workspace, share float64, o Options) {
 		if err := other.solve(w, alt.share, o); err != nil {
 			continue
 		}
+		if tell {
+			other.last = other.normalised(w)
+			ends[int(alt.share)] = &other
+		}
 		r.Alternatives = append(r.Alternatives, r.against(&other, alt.shape, r.Curve.Curvature/other.Curve.Curvature*spread(share, per)/spread(alt.share, per)-1))
+	}
+	if ends[0] != nil && ends[1] != nil {
+		r.Share = r.tellShare(w, ends[1], ends[0], o, per, share)
 	}
 	told := slices.DeleteFunc(slices.Clone(r.locals), func(l local) bool { return l.placeFree })
 	if len(told) == len(r.locals) {

@@ -97,22 +97,23 @@ func InPlane(obs []Observation, frame Frame, a, b End, o Options) (*Result, erro
 	if r.locals, err = o.locals(a, b); err != nil {
 		return nil, err
 	}
-	first := *r
-	first.Observations, first.locals = slices.Clone(r.Observations), slices.Clone(r.locals)
-	err = r.adjust(w, share, o, false)
-	if o.FindLoads > 0 && len(r.Rejected) > 1 {
+	if err = r.adjust(w, share, o, false); o.FindLoads > 0 && len(r.Rejected) > 1 {
 		// What was dropped point by point may have been a local load: the other order is tried, and the one that keeps more points wins.
-		if first.adjust(w, share, o, true) == nil && len(first.locals) > len(r.locals) && len(first.Rejected) < len(r.Rejected) {
-			*r, err = first, nil
+		other := &Result{Frame: frame, A: a, B: b, Widening: 1, APriori: r.APriori, Observations: slices.Clone(obs)}
+		if _, err := accuracy(other.Observations); err != nil {
+			return nil, err
 		}
+		other.locals, _ = o.locals(a, b)
+		if other.adjust(w, share, o, true) == nil && len(other.locals) > len(r.locals) && len(other.Rejected) < len(r.Rejected) {
+			r, err = other, nil
+		}
+	}
+	if err == nil && o.FindLoads > 0 {
+		err = r.solve(w, share, o) // the workspace may hold another one
 	}
 	if err != nil {
 		return nil, err
 	}
-	if err := r.solve(w, share, o); err != nil { // the workspace may hold the other one
-		return nil, err
-	}
-	r.Suspects = nil
 	r.judge(w, o)
 	if err := r.tellLoads(w); err != nil {
 		return nil, err

@@ -50,3 +50,45 @@ func TestMixedFitComesBack(t *testing.T) {
 		}
 	}
 }
+
+// The share of self weight is told when the points can tell it, with coverage, and left open when they cannot.
+func TestShareIsToldOrLeftOpen(t *testing.T) {
+	runs := 400
+	if testing.Short() {
+		runs = 120
+	}
+	rng := rand.New(rand.NewPCG(2, 10))
+	covered, told := 0.0, 0.0
+	for range runs {
+		c := Curve{Z1: 30, S2: 90, Z2: 34, Curvature: 0.014, SelfShare: 0.6}
+		r, err := InPlane(noisy(rng, c, 31, 0.004, true), Frame{}, End{}, End{Station: 90}, Options{Shape: Mixed, SelfShare: 0.3})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if r.Share == nil {
+			continue
+		}
+		told++
+		if math.Abs(r.Share.Value-0.6) <= 1.96*r.Share.U {
+			covered++
+		}
+		// The constant that goes with it is nearer the truth than that of the wrong share.
+		if wrong, right := math.Abs(r.Curve.Constant()*0.014-1), math.Abs(r.Share.Constant*0.014-1); right > wrong {
+			t.Errorf("constant %.3f m with the share told, %.3f m with the filed one, true %.3f m", r.Share.Constant, r.Curve.Constant(), 1/0.014)
+		}
+	}
+	t.Logf("share told in %g of %d, covered in %.1f %%", told, runs, 100*covered/told)
+	if told < float64(runs)*0.99 || math.Abs(covered/told-0.95) > 3.5*math.Sqrt(0.95*0.05/told) {
+		t.Errorf("told %g of %d, covered %.3f", told, runs, covered/told)
+	}
+	flat := Curve{Z1: 30, S2: 90, Z2: 34, Curvature: 0.002, SelfShare: 0.6}
+	for range 50 {
+		r, err := InPlane(noisy(rng, flat, 31, 0.004, true), Frame{}, End{}, End{Station: 90}, Options{Shape: Parabola})
+		if err != nil {
+			t.Fatal(err)
+		}
+		if r.Share != nil {
+			t.Fatalf("a flat cable cannot tell the share: %+v", *r.Share)
+		}
+	}
+}

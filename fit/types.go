@@ -123,7 +123,9 @@ type Result struct {
 	Converged        bool
 	ConditionNumber  float64 // of the column-scaled weighted Jacobian
 	Alternatives     []Alternative
+	Share            *Share // what the points say of the spread of the load; nil when they leave it open
 
+	last    []float64 // normalised residuals, for the comparison of shapes
 	locals  []local
 	columns []column
 	n       int // number of parameters

@@ -192,7 +192,7 @@ type judgement struct {
 // fill sets the figures that rest on shape and load alone.
 func (j *judgement) fill() {
 	p, r := &j.p, j.r
-	f := FitSummary{Shape: r.Curve.Shape(), PointsUsed: len(r.Observations), Rejected: list(r.Rejected), LeftOut: r.LeftOut, Suspects: list(r.Suspects),
+	f := FitSummary{Shape: r.Curve.Shape(), PointsUsed: len(r.Observations), Rejected: list(r.Rejected), LeftOut: r.LeftOut, SelfShare: r.Curve.SelfShare, Share: r.Share, Suspects: list(r.Suspects),
 		DegreesOfFreedom: r.DegreesOfFreedom, RMS: r.RMS, VarianceFactor: r.VarianceFactor, AccuracyStated: r.APriori,
 		Widening: r.Widening, PlaneFrom: r.Frame.From, AzimuthDeg: r.Frame.Azimuth * 180 / math.Pi, Alternatives: list(r.Alternatives),
 		Chord: p.must(outChord), Rise: p.must(outRise), SagMid: p.must(outSagMid), GreatestSag: p.must(outGreatestSag),

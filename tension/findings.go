@@ -367,6 +367,15 @@ func (j *judgement) tellShape() {
 		j.add("sag-ratio", Note, "Sag is %s of the span. Under a twentieth, tension exceeds 2.5 times the whole load and small movements change it much (common practice, no source).",
 			Percent.About(f.SagRatio))
 	}
+	if w := f.Share; w != nil {
+		told := Percent.Figure(Quantity{Value: math.Min(1, math.Max(0, w.Value)), U: w.U})
+		if math.Abs(w.Value-f.SelfShare) > 3*w.U {
+			j.add("share", Look, "By the shape %s of the even load hangs along the cable and the rest along the deck; on record it is %s. Taking the shape's word would change H by %+.1f %%. Check which load the cable carries.",
+				told, Percent.About(f.SelfShare), 100*w.Off)
+		} else {
+			j.add("share", Note, "The points tell how the load is spread: %s of it along the cable, in keeping with the %s on record.", told, Percent.About(f.SelfShare))
+		}
+	}
 	for _, alt := range f.Alternatives {
 		if alt.DeltaAICc < -10 {
 			j.add("shape", Look, "The points speak for a %s against the %s that the filed load asks for (AICc better by %.0f); it would change H by %+.1f %%. Check which load the cable carries.",

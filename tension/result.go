@@ -85,6 +85,8 @@ type FitSummary struct {
 	ArcLength         Quantity          `json:"arc_length_m"`
 	SagRatio          float64           `json:"sag_ratio"` // sag at mid-span / horizontal chord
 	Alternatives      []fit.Alternative `json:"alternatives"`
+	SelfShare         float64           `json:"self_share"`           // share of self weight in the even load that the shape stands for
+	Share             *fit.Share        `json:"told_share,omitempty"` // the share that the points themselves ask for, when they can tell it
 }
 
 // LoadSummary says which load the forces rest on, N/m.
