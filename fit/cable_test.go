@@ -119,6 +119,19 @@ func TestFitIsInvariant(t *testing.T) {
 		same("rms", base.RMS*1000, other.RMS*1000)
 		same("arc", base.Curve.ArcLength(0, base.B.Station), other.Curve.ArcLength(0, other.B.Station))
 
+		mirrored := p
+		mirrored.Points = nil
+		for _, q := range p.Points {
+			q.E, q.Cov.EN, q.Cov.EZ = -q.E, -q.Cov.EN, -q.Cov.EZ
+			mirrored.Points = append(mirrored.Points, q)
+		}
+		image, err := Cable(mirrored, Options{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		same("constant in the mirror", base.Curve.Constant(), image.Curve.Constant())
+		same("chord in the mirror", base.B.Station, image.B.Station)
+
 		feet := p
 		feet.Points = nil
 		const foot = 0.3048
