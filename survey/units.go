@@ -17,6 +17,9 @@ const (
 	Temperature    Dimension = "temperature"
 	PerTemperature Dimension = "expansion"
 	Fraction       Dimension = "fraction"
+	Frequency      Dimension = "frequency"
+	Duration       Dimension = "time"
+	Bending        Dimension = "bending stiffness"
 )
 
 // unit converts to SI: SI = written x factor + offset.
@@ -49,6 +52,9 @@ var units = map[Dimension]map[string]unit{
 		"°f": {fahrenFac, -32 * fahrenFac}, "k": {1, -zeroC}},
 	PerTemperature: expansions(),
 	Fraction:       {"%": {0.01, 0}, "1": {1, 0}},
+	Frequency:      {"hz": {1, 0}, "1/s": {1, 0}, "1/min": {1.0 / 60, 0}},
+	Duration:       {"s": {1, 0}, "ms": {1e-3, 0}},
+	Bending:        {"nm2": {1, 0}, "knm2": {1e3, 0}, "nmm2": {1e-6, 0}},
 }
 
 // expansions are the units of thermal expansion: a power of ten per degree, in the usual spellings.
@@ -73,10 +79,13 @@ var spellings = map[Dimension]string{
 	Temperature:    "degC, degF or K",
 	PerTemperature: "1/degC, 1e-6/degC, 1/K, 1e-6/K or 1/degF",
 	Fraction:       "%",
+	Frequency:      "Hz, 1/s or 1/min",
+	Duration:       "s or ms",
+	Bending:        "N m2, kN m2 or N mm2",
 }
 
 // usual is the unit that a message suggests.
-var usual = map[Dimension]string{Length: "mm", Force: "kN", ForcePerLength: "N/m", Temperature: "degC", PerTemperature: "1e-6/degC", Fraction: "%"}
+var usual = map[Dimension]string{Length: "mm", Force: "kN", ForcePerLength: "N/m", Temperature: "degC", PerTemperature: "1e-6/degC", Fraction: "%", Frequency: "Hz", Duration: "s", Bending: "kN m2"}
 
 // findUnit looks a spelling up. MN and mN differ only by case: a milli-newton is not a unit of cables and is refused.
 func findUnit(text string, d Dimension) (unit, bool) {

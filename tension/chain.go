@@ -49,7 +49,7 @@ const (
 	outGreatestT
 	outUse
 	outRivalUse
-	outHRead      // from the direct reading
+	outHRead      // from the direct readings together
 	outReadRatio  // to the expected tension under the filed load
 	outReadFactor // load that the reading implies / load on record
 	outReadUse
@@ -74,11 +74,8 @@ func (in *inputs) evaluate(x []float64) (y outputs, lacks []lack) {
 	for i := range y {
 		y[i] = math.NaN()
 	}
-	c := in.curve
-	c.Z1, c.Z2, c.Curvature = x[inZA], x[inZB], x[inCurvature]
-	c.S1, c.S2 = in.x[inStationA], in.x[inStationB] // the curve stays where it was measured when a support station moves
 	load := in.load(x)
-	c.Cusps = in.cusps(x, load)
+	c := in.curveAt(x, load)
 	in.geometry(&y, c, x)
 	if !(load.self+load.deck > 0) {
 		return y, []lack{{"horizontal tension", "no self_weight or deck_load on file"}}
@@ -189,9 +186,8 @@ func (in *inputs) statics(y *outputs, c fit.Curve, x []float64, l carried) {
 	}
 	y[outTensionA], y[outTensionB] = h*math.Hypot(1, ta), h*math.Hypot(1, tb)
 	y[outGreatestT] = math.Max(y[outTensionA], y[outTensionB])
-	if in.have[inReading] {
-		per := map[survey.ReadOf]float64{survey.HorizontalTension: 1, survey.TensionAtA: math.Hypot(1, ta), survey.TensionAtB: math.Hypot(1, tb)}[in.readOf]
-		y[outHRead] = x[inReading] / per
+	if len(in.readings) > 0 {
+		y[outHRead] = in.together(x)
 		y[outReadFactor] = y[outHRead] / h
 	}
 	in.strength(y, x)
@@ -337,24 +333,9 @@ func (in *inputs) rival(y *outputs, x []float64, c fit.Curve, day Cable, ch Chor
 	if !(k > 0) || math.IsNaN(y[outHExpected]) {
 		return
 	}
-	per := math.Hypot(1, ch.Rise/ch.Length)
-	if in.frame.surveyed {
-		per = c.ArcLength(x[inStationA], x[inStationB]) / ch.Length
-	}
+	per := in.stretchFactor(x, c, ch)
 	l := carried{day.SelfWeight, day.DeckLoad}
-	length := func(h float64) (float64, error) {
-		hang := in.hanging(x, l, h, per)
-		e := hanging.Equation{KW: l.self * k / hang, KQ: l.deck * k / hang, Eta: h / x[inAxial], G: 1 + x[inExpansion]*dt}
-		if len(c.Cusps) > 0 {
-			return kinkedLength(e, ch, c.Cusps, in.x[inStationA])
-		}
-		a, b := e.Start(ch.Length, ch.Rise)
-		a, b, err := e.Span(ch.Length, ch.Rise, a, b)
-		if err != nil {
-			return 0, err
-		}
-		return e.Between(a, b).S, nil
-	}
+	length := func(h float64) (float64, error) { return in.unstressed(x, c, l, ch, dt, h, per) }
 	guess := y[outHExpected]
 	if near := in.near[outHRival]; near != 0 && !math.IsNaN(near) {
 		guess = near
@@ -369,6 +350,30 @@ func (in *inputs) rival(y *outputs, x []float64, c fit.Curve, day Cable, ch Chor
 	y[outRivalFactor] = factor
 	y[outRivalExtra] = (factor - 1) * y[outHanging]
 	y[outImpliedLength] = h * k
+}
+
+// stretchFactor is the mean tension over the horizontal one, by which a cable along the measured curve stretches.
+func (in *inputs) stretchFactor(x []float64, c fit.Curve, ch Chord) float64 {
+	if in.frame.surveyed {
+		return c.ArcLength(x[inStationA], x[inStationB]) / ch.Length
+	}
+	return math.Hypot(1, ch.Rise/ch.Length)
+}
+
+// unstressed is the unstressed length, m, of a cable that hangs in the measured curve under horizontal tension h, whatever its load.
+func (in *inputs) unstressed(x []float64, c fit.Curve, l carried, ch Chord, dt, h, per float64) (float64, error) {
+	k := x[inCurvature]
+	hang := in.hanging(x, l, h, per)
+	e := hanging.Equation{KW: l.self * k / hang, KQ: l.deck * k / hang, Eta: h / x[inAxial], G: 1 + x[inExpansion]*dt}
+	if len(c.Cusps) > 0 {
+		return kinkedLength(e, ch, c.Cusps, in.x[inStationA])
+	}
+	a, b := e.Start(ch.Length, ch.Rise)
+	a, b, err := e.Span(ch.Length, ch.Rise, a, b)
+	if err != nil {
+		return 0, err
+	}
+	return e.Between(a, b).S, nil
 }
 
 // lengthTension solves length(H) = want; ea is the stiffness by which the first step goes, N.
