@@ -27,6 +27,9 @@ type adjusted struct {
 	a     *mat.Dense // derivatives of the conditions by e
 }
 
+// settled is the change of ln H, or a hundredth of that of an input in standard deviations, below which derivatives are kept.
+const settled = 2e-3
+
 var errNotDetermined = errors.New("tension: the evidence does not determine the tension")
 
 // adjust is the general least-squares adjustment of conditions with errors of unit variance and one free unknown: it minimises the sum
@@ -36,8 +39,15 @@ var errNotDetermined = errors.New("tension: the evidence does not determine the 
 // conditions are dependent or say nothing of h.
 func adjust(c conditions, h float64) (*adjusted, error) {
 	s := &adjusted{h: h, e: make([]float64, c.errors)}
-	for range 25 {
-		l, err := c.linear(s.e, s.h)
+	var l *linearised
+	moved := math.Inf(1)
+	for range 40 {
+		var err error
+		if moved > settled {
+			l, err = c.linear(s.e, s.h)
+		} else { // so near that the derivatives stay
+			err = c.at(s.e, s.h, l.f, l.z)
+		}
 		if err != nil {
 			return nil, err
 		}
@@ -51,13 +61,13 @@ func adjust(c conditions, h float64) (*adjusted, error) {
 		}
 		var next mat.VecDense
 		next.MulVec(l.a.T(), s.k)
-		moved := math.Abs(dh)
+		moved = math.Abs(dh)
 		for d := range s.e {
 			moved = math.Max(moved, math.Abs(next.AtVec(d)-s.e[d])*1e-2)
 			s.e[d] = next.AtVec(d)
 		}
 		s.h += math.Max(-1, math.Min(1, dh))
-		if moved < 1e-9 {
+		if moved < 1e-8 {
 			s.z, s.a = l.z, l.a
 			s.chi = dot(s.e, s.e)
 			s.covariance(l)

@@ -183,8 +183,9 @@ type judgement struct {
 	record             survey.LoadStatus
 	doubted            survey.LoadStatus // what was recorded, when the shape shows a local load that the record does not name
 	temperatureAssumed bool
-	notReconciled      error   // why the evidence could not be adjusted
-	scatter            float64 // probability of readings that differ by as much as these
+	adjusted           *adjusted // of all evidence
+	notReconciled      error     // why the evidence could not be adjusted
+	scatter            float64   // probability of readings that differ by as much as these
 	in                 *inputs
 	p                  propagated
 	a                  Assessment

@@ -211,7 +211,7 @@ func TestCommonInputsCancel(t *testing.T) {
 }
 
 // judged runs a case up to the decision and keeps the inside of it.
-func judged(t *testing.T, c Case) *judgement {
+func judged(t testing.TB, c Case) *judgement {
 	t.Helper()
 	r, err := c.fit(nil, nil)
 	if err != nil {

@@ -42,6 +42,7 @@ type inputs struct {
 	local    []localInput        // loads that hang at one place
 	plane    fit.Frame
 	readings []readInput // what was read beside the points
+	stated   [][]step    // moves before readings that scatter were widened, nil when none were
 	gravity  int         // place of the acceleration of gravity, 0 = no reading needs it
 	curve    fit.Curve   // shape family and share; its numbers are overwritten from x
 	frame    spanFrame

@@ -101,8 +101,9 @@ func (in *inputs) share(used []*readInput, effects [][]float64) (chance float64)
 	return distuv.ChiSquared{K: float64(n - 1)}.Survival(chi)
 }
 
-// widen multiplies the uncertainty of readings.
+// widen multiplies the uncertainty of readings. The reconciliation, which tests it, goes by the uncertainty as stated.
 func (in *inputs) widen(used []*readInput, factor float64) {
+	in.stated = in.moves()
 	for _, r := range used {
 		for s := range in.sources {
 			for d, steps := range in.sources[s].directions {
@@ -112,6 +113,14 @@ func (in *inputs) widen(used []*readInput, factor float64) {
 			}
 		}
 	}
+}
+
+// statedMoves are the moves before readings that scatter were widened.
+func (in *inputs) statedMoves() [][]step {
+	if in.stated != nil {
+		return in.stated
+	}
+	return in.moves()
 }
 
 // together is the horizontal tension that the readings give for one value of the inputs, NaN when they give none.

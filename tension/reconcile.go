@@ -70,6 +70,7 @@ func (j *judgement) reconcile() {
 		j.notReconciled = err
 		return
 	}
+	j.adjusted = s
 	r := &Reconciled{ChiSquare: s.chi, DegreesOfFreedom: len(rows) - 1, LoadOnRecord: j.p.quantity(outHanging), Looked: j.record != survey.LoadsNotChecked}
 	r.Chance = distuv.ChiSquared{K: float64(r.DegreesOfFreedom)}.Survival(s.chi)
 	r.Pieces = j.pieces(s, rows)
@@ -112,7 +113,7 @@ func (r *Reconciled) figures(s *adjusted) {
 
 // adjustRows sets up and solves the adjustment of some conditions.
 func (j *judgement) adjustRows(rows []evidenceRow) (*adjusted, error) {
-	moves := j.in.moves()
+	moves := j.in.statedMoves()
 	hasLength := j.p.known(outS0Design) && j.p.known(outHExpected)
 	c := conditions{rows: len(rows), errors: len(moves), figures: 1}
 	if hasLength {
@@ -218,7 +219,7 @@ func (j *judgement) pieces(s *adjusted, rows []evidenceRow) (out []Piece) {
 // uOf is the standard uncertainty of one input.
 func (j *judgement) uOf(at int) float64 {
 	sum := 0.0
-	for _, m := range j.in.moves() {
+	for _, m := range j.in.statedMoves() {
 		for _, st := range m {
 			if st.at == at {
 				sum += st.by * st.by
@@ -231,7 +232,7 @@ func (j *judgement) uOf(at int) float64 {
 // byInput is what one standard deviation of one input does to the conditions at the solution, nil when it cannot be worked out.
 func (j *judgement) byInput(s *adjusted, at int, u float64, rows []evidenceRow) *mat.VecDense {
 	x := append([]float64(nil), j.in.x...)
-	for d, m := range j.in.moves() {
+	for d, m := range j.in.statedMoves() {
 		for _, st := range m {
 			x[st.at] += s.e[d] * st.by
 		}
