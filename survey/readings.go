@@ -32,7 +32,7 @@ var readings = []struct {
 //
 //	tension at A | tension at B | horizontal tension
 //	lift-off at A | lift-off at B [, lifted 2 +- 0.5 mm]
-//	frequency, mode 2 [, sideways] [, bending stiffness 4 +- 1 kN m2 [, clamped]]
+//	frequency, mode 2 [, sideways] [, bending stiffness 4 +- 1 kN m2] [, clamped]
 //	wave return 3
 //	sag at mid-span
 //
@@ -44,8 +44,8 @@ type Reading struct {
 	How         string   // free text, for example "load cell 3"
 	Mode        int      // of a frequency, from 1
 	Sideways    bool     // a frequency out of the plane of the cable
-	Bending     Quantity // EI for a frequency, N m2; zero = none
-	Clamped     bool     // the ends do not turn; without it they are pinned
+	Bending     Quantity // EI for a frequency, N m2; zero = that of the cables file, or none
+	Clamped     bool     // the ends do not turn; without it they are pinned. Without bending stiffness it makes no difference
 	Returns     int      // of a wave, from 1
 	Lifted      Quantity // how far the anchor had moved when the lift-off force was read, m
 }
@@ -129,8 +129,6 @@ func parseWhat(text string) (r Reading, d Dimension, err error) {
 	switch {
 	case r.Of == NaturalFrequency && r.Mode == 0:
 		return r, d, wrong(text, "the mode of the frequency", "write for example \"frequency, mode 1\"")
-	case r.Clamped && r.Bending.Value == 0:
-		return r, d, wrong(text, "a bending stiffness beside \"clamped\": without one the ends make no difference", "write for example \"frequency, mode 1, bending stiffness 4 +- 1 kN m2, clamped\"")
 	}
 	return r, d, nil
 }

@@ -47,7 +47,6 @@ func TestReadingRefusals(t *testing.T) {
 	for _, c := range [][2]string{
 		{"w1; frequency; 1.2 +- 0.1 Hz", "frequency, mode 1"},
 		{"w1; frequency, mode 0; 1.2 +- 0.1 Hz", "half waves"},
-		{"w1; frequency, mode 1, clamped; 1.2 +- 0.1 Hz", "a bending stiffness beside"},
 		{"w1; frequency, mode 1, lifted 2 mm; 1.2 +- 0.1 Hz", "only what belongs to it"},
 		{"w1; frequency, mode 1; 30 +- 1 kN", "a unit of frequency (Hz, 1/s or 1/min)"},
 		{"w1; wave return; 4 +- 1 s", "number of returns"},

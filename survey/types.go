@@ -219,6 +219,7 @@ type Design struct {
 	SlackBelow             *float64  // fraction of expected (0.10 for 10 %)
 	OverloadAbove          *float64  // fraction of expected
 	Diameter               *Quantity // m
+	BendingStiffness       *Quantity // EI, N m2
 	TakeUpPerTurn          *Quantity // m of unstressed length for one turn
 	Line                   int       // line of cables.csv
 }

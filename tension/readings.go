@@ -26,8 +26,8 @@ const (
 	uGravity = 0.015
 )
 
-// read adds the readings of the span behind all other inputs.
-func (in *inputs) read(readings []survey.Reading) {
+// read adds the readings of the span behind all other inputs. A frequency without a bending stiffness takes the one on file.
+func (in *inputs) read(readings []survey.Reading, d *survey.Design) {
 	add := func(q Quantity, name string, scale Scale) int {
 		at := len(in.x)
 		in.x, in.have = append(in.x, 0), append(in.have, false)
@@ -36,6 +36,9 @@ func (in *inputs) read(readings []survey.Reading) {
 	}
 	bending := map[Quantity]int{} // several frequencies of one cable share its stiffness
 	for _, r := range readings {
+		if r.Of == survey.NaturalFrequency && r.Bending.Value == 0 && d != nil && d.BendingStiffness != nil {
+			r.Bending = *d.BendingStiffness
+		}
 		i := readInput{Reading: r}
 		i.at = add(in.withModel(r), "reading: "+readingName(r), Piece{Unit: readingUnit(r.Of), Given: r.Value}.Scale())
 		if r.Lifted.Value > 0 {
