@@ -25,8 +25,9 @@ const (
 var readings = []struct {
 	of        ReadOf
 	dimension Dimension
-}{{HorizontalTension, Force}, {TensionAtA, Force}, {TensionAtB, Force}, {LiftOffAtA, Force}, {LiftOffAtB, Force},
-	{NaturalFrequency, Frequency}, {WaveReturn, Duration}, {SagAtMidSpan, Length}}
+	unit      string // SI
+}{{HorizontalTension, Force, "N"}, {TensionAtA, Force, "N"}, {TensionAtB, Force, "N"}, {LiftOffAtA, Force, "N"}, {LiftOffAtB, Force, "N"},
+	{NaturalFrequency, Frequency, "Hz"}, {WaveReturn, Duration, "s"}, {SagAtMidSpan, Length, "m"}}
 
 // Reading is something read on the day beside the points. As text it is "CABLE[/SPAN]; what; value +- u; what read it", where what is one of
 //
@@ -66,6 +67,16 @@ func (r Reading) What() string {
 		return fmt.Sprintf("wave return %d", r.Returns)
 	}
 	return string(r.Of)
+}
+
+// Unit is the SI unit of the value.
+func (r Reading) Unit() string {
+	for _, known := range readings {
+		if r.Of == known.of {
+			return known.unit
+		}
+	}
+	return ""
 }
 
 const readingForm = "CABLE; tension at A (or tension at B, horizontal tension, lift-off at A, frequency with its mode, wave return 3, sag at mid-span); 30.7 +- 0.5 kN; what read it"

@@ -17,6 +17,8 @@ func impliedMeaning(filed Quantity, expected, read, length *Quantity) string {
 		return math.Abs(a.Value-b.Value) <= apart*math.Hypot(a.U, b.U)
 	}
 	switch {
+	case read != nil && length != nil && same(*read, filed) && same(*read, *length) && !same(*length, filed):
+		return fmt.Sprintf("The tension read on the day needs %s, too coarse to tell the %s on record from the %s that the designed length needs.", NewtonPerMetre.Figure(*read), NewtonPerMetre.Figure(filed), NewtonPerMetre.Figure(*length))
 	case read != nil && same(*read, filed):
 		text := "The tension read on the day needs the load on record"
 		if length != nil && !same(*length, filed) {

@@ -18,6 +18,7 @@ func TestImpliedMeaning(t *testing.T) {
 		{"all as recorded", same, same, same, "as do the others: the load is as recorded"},
 		{"read as recorded, length needs more", other, same, more, "the length has changed, not the load"},
 		{"read as recorded, no length, expected off", other, same, nil, "the tension is not the expected one"},
+		{"read too coarse", other, q(54, 15), more, "too coarse to tell the 38.00 ± 0.80 N/m on record from the 69.0 ± 4.0 N/m"},
 		{"read and length agree on more", other, more, q(68, 2), "the load is not as recorded, the length is as designed"},
 		{"all differ", other, other, more, "load and length have both changed, or the reading is wrong"},
 		{"read off, no length", nil, more, nil, "the load is not as recorded, or the reading is wrong"},

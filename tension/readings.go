@@ -40,7 +40,7 @@ func (in *inputs) read(readings []survey.Reading, d *survey.Design) {
 			r.Bending = *d.BendingStiffness
 		}
 		i := readInput{Reading: r}
-		i.at = add(in.withModel(r), "reading: "+readingName(r), Piece{Unit: readingUnit(r.Of), Given: r.Value}.Scale())
+		i.at = add(in.withModel(r), "reading: "+readingName(r), Piece{Unit: r.Unit(), Given: r.Value}.Scale())
 		if r.Lifted.Value > 0 {
 			i.lifted = add(r.Lifted, "lift of the anchor", Millimetre)
 		}
@@ -74,19 +74,6 @@ func readingName(r survey.Reading) string {
 		return r.What()
 	}
 	return r.What() + ", " + r.How
-}
-
-// readingUnit is the SI unit of a reading.
-func readingUnit(of survey.ReadOf) string {
-	switch of {
-	case survey.NaturalFrequency:
-		return "Hz"
-	case survey.WaveReturn:
-		return "s"
-	case survey.SagAtMidSpan:
-		return "m"
-	}
-	return "N"
 }
 
 // sight is the measured curve for one value of the inputs, against which readings are held. With it the load follows from the

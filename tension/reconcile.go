@@ -194,7 +194,7 @@ func (j *judgement) pieces(s *adjusted, rows []evidenceRow) (out []Piece) {
 		case r.length:
 			p.Given, p.Unit = j.p.must(outS0Design), "m"
 		case r.reading != nil:
-			p.Given, p.Unit = r.reading.Value, readingUnit(r.reading.Of)
+			p.Given, p.Unit = r.reading.Value, r.reading.Unit()
 		default:
 			p.Given, p.Unit = j.p.must(outHanging), "N/m"
 		}
