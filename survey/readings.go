@@ -19,6 +19,7 @@ const (
 	NaturalFrequency  ReadOf = "frequency"
 	WaveReturn        ReadOf = "wave return"     // time after which a pulse has come back
 	SagAtMidSpan      ReadOf = "sag at mid-span" // sighted, vertical from the chord
+	TangentAtB        ReadOf = "tangent at B"    // how far below support B a line of sight meets it that starts below A and touches the cable
 )
 
 // readings lists what can be read, with the dimension of the value.
@@ -27,7 +28,7 @@ var readings = []struct {
 	dimension Dimension
 	unit      string // SI
 }{{HorizontalTension, Force, "N"}, {TensionAtA, Force, "N"}, {TensionAtB, Force, "N"}, {LiftOffAtA, Force, "N"}, {LiftOffAtB, Force, "N"},
-	{NaturalFrequency, Frequency, "Hz"}, {WaveReturn, Duration, "s"}, {SagAtMidSpan, Length, "m"}}
+	{NaturalFrequency, Frequency, "Hz"}, {WaveReturn, Duration, "s"}, {SagAtMidSpan, Length, "m"}, {TangentAtB, Length, "m"}}
 
 // Reading is something read on the day beside the points. As text it is "CABLE[/SPAN]; what; value +- u; what read it", where what is one of
 //
@@ -36,6 +37,7 @@ var readings = []struct {
 //	frequency, mode 2 [, sideways] [, bending stiffness 4 +- 1 kN m2] [, clamped]
 //	wave return 3
 //	sag at mid-span
+//	tangent at B, from 1.20 m below A
 //
 // A mode is counted by the half waves that a taut string has in it.
 type Reading struct {
@@ -48,6 +50,7 @@ type Reading struct {
 	Bending     Quantity // EI for a frequency, N m2; zero = that of the cables file, or none
 	Clamped     bool     // the ends do not turn; without it they are pinned. Without bending stiffness it makes no difference
 	Returns     int      // of a wave, from 1
+	Below       float64  // start of a line of sight below support A, m
 	Lifted      Quantity // how far the anchor had moved when the lift-off force was read, m
 }
 
@@ -65,6 +68,8 @@ func (r Reading) What() string {
 		return text
 	case WaveReturn:
 		return fmt.Sprintf("wave return %d", r.Returns)
+	case TangentAtB:
+		return fmt.Sprintf("tangent at B, from %g m below A", r.Below)
 	}
 	return string(r.Of)
 }
@@ -79,7 +84,7 @@ func (r Reading) Unit() string {
 	return ""
 }
 
-const readingForm = "CABLE; tension at A (or tension at B, horizontal tension, lift-off at A, frequency with its mode, wave return 3, sag at mid-span); 30.7 +- 0.5 kN; what read it"
+const readingForm = "CABLE; tension at A (or tension at B, horizontal tension, lift-off at A, frequency with its mode, wave return 3, sag at mid-span, tangent at B); 30.7 +- 0.5 kN; what read it"
 
 // addReading reads one direct reading.
 func (c *Conditions) addReading(value string) error {
@@ -140,6 +145,8 @@ func parseWhat(text string) (r Reading, d Dimension, err error) {
 	switch {
 	case r.Of == NaturalFrequency && r.Mode == 0:
 		return r, d, wrong(text, "the mode of the frequency", "write for example \"frequency, mode 1\"")
+	case r.Of == TangentAtB && r.Below == 0:
+		return r, d, wrong(text, "where the line of sight starts", "write for example \"tangent at B, from 1.20 m below A\"")
 	}
 	return r, d, nil
 }
@@ -165,6 +172,14 @@ func (r *Reading) detail(text string) (err error) {
 		}
 		r.Bending, err = positive(rest, Bending)
 		return err
+	case word == "from" && r.Of == TangentAtB:
+		length, ok := strings.CutSuffix(strings.ToLower(rest), " below a")
+		q, err := ParseQuantity(length, Length)
+		if err != nil || !ok || !(q.Value > 0) || q.U != 0 {
+			return wrong(text, "a length above 0 below A, without +-: its error belongs to the value", "write for example \"from 1.20 m below A\"")
+		}
+		r.Below = q.Value
+		return nil
 	case word == "lifted" && (r.Of == LiftOffAtA || r.Of == LiftOffAtB):
 		r.Lifted, err = positive(rest, Length)
 		return err

@@ -19,6 +19,7 @@ func TestReadings(t *testing.T) {
 			Bending: Quantity{4000, 1000}, Clamped: true, How: "phone"}},
 		{"w1; wave return 3; 4.2 +- 0.05 s", Reading{Cable: "w1", Of: WaveReturn, Value: Quantity{4.2, 0.05}, Returns: 3}},
 		{"w1; sag at mid-span; 1.52 +- 0.02 m; sighted", Reading{Cable: "w1", Of: SagAtMidSpan, Value: Quantity{1.52, 0.02}, How: "sighted"}},
+		{"w1; tangent at B, from 1.20 m below A; 1.9 +- 0.02 m", Reading{Cable: "w1", Of: TangentAtB, Below: 1.2, Value: Quantity{1.9, 0.02}}},
 	} {
 		var conditions Conditions
 		err := conditions.Set("reading", c.text)
@@ -52,6 +53,8 @@ func TestReadingRefusals(t *testing.T) {
 		{"w1; wave return; 4 +- 1 s", "number of returns"},
 		{"w1; wave return 2; 4 s", "4.20 +- 0.05 s"},
 		{"w1; lift-off at A, lifted -2 mm; 30 +- 1 kN", "0 or more"},
+		{"w1; tangent at B; 1.9 +- 0.02 m", "where the line of sight starts"},
+		{"w1; tangent at B, from 1.2 m; 1.9 +- 0.02 m", "from 1.20 m below A"},
 		{"w1; tension at C; 30 +- 1 kN", "in the second place what was read"},
 	} {
 		var conditions Conditions

@@ -118,6 +118,8 @@ func (s sight) predicted(r *readInput, h float64) (float64, error) {
 			return 0, fmt.Errorf("%w: the sag of the whole span needs both supports surveyed", errNoReading)
 		}
 		return s.c.Sag((a+b)/2, a, b), nil
+	case survey.TangentAtB:
+		return s.sighted(r.Below)
 	}
 	t := h * s.endFactor(r.Of)
 	if r.lifted == 0 {
@@ -125,6 +127,33 @@ func (s sight) predicted(r *readInput, h float64) (float64, error) {
 	}
 	k, err := s.anchorStiffness(h)
 	return t + k*s.x[r.lifted], err
+}
+
+// sighted is how far below support B a line meets it that starts a length below support A and touches the cable, m. For a parabola
+// sqrt(a) + sqrt(b) = 2 sqrt(sag) (IEEE Std 524, transit methods; from memory); here it is the tangent of the measured curve.
+func (s sight) sighted(below float64) (float64, error) {
+	a, b := s.x[inStationA], s.x[inStationB]
+	switch {
+	case s.far != "" || !s.in.frame.surveyed:
+		return 0, fmt.Errorf("%w: a line of sight needs both supports surveyed", errNoReading)
+	case len(s.in.local) > 0 || s.in.have[inTilt]:
+		return 0, fmt.Errorf("%w: a line of sight touches a cable with kinks or wind elsewhere", errNoReading)
+	}
+	from := s.c.Z(a) - below
+	lo, hi := a, b
+	under := func(at float64) bool { return s.c.Z(at)+s.c.Slope(at)*(a-at) > from } // the tangent there passes A above the start
+	if under(b) {
+		return 0, fmt.Errorf("%w: a line from %.3g m below A does not touch the cable in the span", errNoReading, below)
+	}
+	for range 60 {
+		if mid := (lo + hi) / 2; under(mid) {
+			lo = mid
+		} else {
+			hi = mid
+		}
+	}
+	at := (lo + hi) / 2
+	return s.c.Z(b) - s.c.Z(at) - s.c.Slope(at)*(b-at), nil
 }
 
 // endFactor is the tension that a force reading is of over the horizontal one.

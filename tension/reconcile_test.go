@@ -49,9 +49,10 @@ type visitWith struct {
 	kinds    []survey.Reading
 	relative float64 // u of each reading
 	record   survey.LoadStatus
-	slip     float64 // length beside the designed one, m
-	extra    float64 // load beside the recorded one, as a factor of it
-	misread  float64 // the first reading is off by this factor besides
+	slip     float64   // length beside the designed one, m
+	extra    float64   // load beside the recorded one, as a factor of it
+	listed   *Quantity // a load along the cable that was seen and measured, N/m
+	misread  float64   // the first reading is off by this factor besides
 }
 
 // take draws the visit, works it up to the reconciliation and gives the figures of all evidence too, whatever the test says.
@@ -75,6 +76,10 @@ func (v visitWith) draw(t testing.TB, rng *rand.Rand) (c Case, st State, s site)
 	s.slip, s.extra = v.slip, v.extra
 	const uT = 1.0
 	cond := s.conditions(v.record, uT)
+	if v.listed != nil {
+		cond.Listed = []survey.ListedLoad{{Load: *v.listed, Spread: survey.AlongCable, What: "ice"}}
+		s.extra = (v.listed.Value + v.listed.U*rng.NormFloat64()) / (s.design.SelfWeight.Value * s.weigh)
+	}
 	s.day += uT * rng.NormFloat64()
 	st = s.truth(t)
 	for i, r := range v.kinds {
@@ -111,6 +116,7 @@ func TestReconciliationIsCalibrated(t *testing.T) {
 	}{
 		{"taut hand cable, two cells", visitWith{site: footbridge(), kinds: []survey.Reading{cellAtA, cellAtB}, relative: 0.02, record: survey.LoadsAsFiled}},
 		{"taut hand cable, not checked", visitWith{site: footbridge(), kinds: []survey.Reading{cellAtA, cellAtB}, relative: 0.02, record: survey.LoadsNotChecked, extra: 0.6}},
+		{"taut hand cable, ice listed", visitWith{site: footbridge(), kinds: []survey.Reading{cellAtA}, relative: 0.02, record: survey.LoadsListed, listed: q(25, 5)}},
 		{"taut hand cable, frequencies", visitWith{site: footbridge(), kinds: modes, relative: 0.01, record: survey.LoadsAsFiled}},
 		{"deep main cable, cell", visitWith{site: mainCable(), kinds: []survey.Reading{cellAtA}, relative: 0.02, record: survey.LoadsAsFiled}},
 		{"guy, cell and frequencies", visitWith{site: guy(), kinds: append([]survey.Reading{cellAtB}, modes...), relative: 0.02, record: survey.LoadsAsFiled}},
@@ -192,5 +198,18 @@ func TestOddPieceIsNamed(t *testing.T) {
 				t.Errorf("%s: another piece named %.1f %%", c.piece, 100*rate)
 			}
 		}
+	}
+}
+
+// A load that was seen keeps its uncertainty through the reconciliation: the cell sharpens it, by as much as two straight lines allow.
+func TestListedLoadIsReconciled(t *testing.T) {
+	v := visitWith{site: footbridge(), kinds: []survey.Reading{cellAtA}, relative: 0.01, record: survey.LoadsListed, listed: q(25, 5)}
+	r, all, st, s := v.take(t, rand.New(rand.NewPCG(2, 3)))
+	recorded := r.piece(pieceLoad).Given
+	if recorded.U < 4.9 || recorded.U > 5.2 {
+		t.Errorf("the load on record has u = %.2f N/m, want 5 N/m of the ice with 0.4 of the weight", recorded.U)
+	}
+	if all.Load.U > 1 || math.Abs(all.Load.Value-hangingTruth(s, st)) > 3*all.Load.U {
+		t.Errorf("reconciled load %v, true %.2f", *all.Load, hangingTruth(s, st))
 	}
 }
