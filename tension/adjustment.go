@@ -28,7 +28,7 @@ type adjusted struct {
 }
 
 // settled is the change of ln H, or a hundredth of that of an input in standard deviations, below which derivatives are kept.
-const settled = 2e-3
+const settled = 2e-2
 
 var errNotDetermined = errors.New("tension: the evidence does not determine the tension")
 

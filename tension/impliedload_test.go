@@ -1,6 +1,7 @@
 package tension
 
 import (
+	"math"
 	"strings"
 	"testing"
 )
@@ -86,5 +87,14 @@ func TestReconciledOutcome(t *testing.T) {
 	open.Load = q(38.3, 1.5)
 	if says := reconciledSentence(&open); !strings.Contains(says, "agrees with them") {
 		t.Errorf("a load as on file reads %q", says)
+	}
+}
+
+// Noncentrality for 5 % and 80 %: with one degree of freedom it is (1.959964 + 0.841621)^2 = 7.849; the others by scipy.stats.ncx2 (brentq).
+func TestNoncentrality(t *testing.T) {
+	for dof, want := range map[int]float64{1: 7.8489, 2: 9.6347, 3: 10.9026, 4: 11.9353, 14: 18.3382} {
+		if got := detectable(dof); math.Abs(got*got-want) > 2e-4 {
+			t.Errorf("%d degrees of freedom: %.5f, want %.4f", dof, got*got, want)
+		}
 	}
 }

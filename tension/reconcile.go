@@ -2,6 +2,7 @@ package tension
 
 import (
 	"math"
+	"sync"
 
 	"gonum.org/v1/gonum/mat"
 	"gonum.org/v1/gonum/stat/distuv"
@@ -178,7 +179,7 @@ func (in *inputs) misfits(x []float64, h float64, rows []evidenceRow, f, z []flo
 
 // pieces are the rows and the inputs behind them, each with its test.
 func (j *judgement) pieces(s *adjusted, rows []evidenceRow) (out []Piece) {
-	limit := math.Sqrt(noncentrality(len(rows)-1, falseAlarm, power))
+	limit := detectable(len(rows) - 1)
 	add := func(p Piece, g *mat.VecDense, unit float64) {
 		if w, size, u := s.test(g); !math.IsInf(u, 1) {
 			needed, apart, detects := p.Given.Value+size*unit, u*unit, limit*u*unit
@@ -288,6 +289,22 @@ func (r *Reconciled) piece(name string) Piece {
 		}
 	}
 	return Piece{}
+}
+
+// detectables are the sizes for few degrees of freedom, worked out once each.
+var detectables = func() (out [12]func() float64) {
+	for i := range out {
+		out[i] = sync.OnceValue(func() float64 { return math.Sqrt(noncentrality(i, falseAlarm, power)) })
+	}
+	return out
+}()
+
+// detectable is the size, in standard uncertainties, of an error that the global test finds with the power asked for.
+func detectable(dof int) float64 {
+	if dof < len(detectables) {
+		return detectables[dof]()
+	}
+	return math.Sqrt(noncentrality(dof, falseAlarm, power))
 }
 
 // noncentrality is that of the chi-square whose probability of passing the limit at the given false alarm is the given power: the size of

@@ -41,7 +41,7 @@ func stringRoot(lambda2 float64, i int) float64 {
 // It rises from pole to pole, so that one root lies between two of them. The sum is cut where its rest, of order 1/n^3, is 1e-9
 // of the first term.
 func stiffRoot(lambda2, b float64, i int) float64 {
-	const terms = 1000
+	const terms = 150
 	pole := func(n float64) float64 { return n * n * math.Pi * math.Pi * (1 + b*n*n) }
 	below := func(w float64) bool {
 		sum := 0.0
