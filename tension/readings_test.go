@@ -71,3 +71,41 @@ func TestTangentOfAParabola(t *testing.T) {
 		t.Errorf("by the model %.6f m, published 16 m (%v)", b, err)
 	}
 }
+
+// Two readings of unequal accuracy are taken by their weights; two that contradict each other widen their mean by the Birge ratio and are told,
+// while the reconciliation goes by what was stated.
+func TestReadingsTogether(t *testing.T) {
+	s := footbridge()
+	st := s.truth(t)
+	assessed := func(a, b survey.Quantity) Assessment {
+		d := s.design
+		c := s.conditions(survey.LoadsNotChecked, 1)
+		c.Readings = []survey.Reading{{Of: survey.HorizontalTension, Value: a, How: "one"}, {Of: survey.HorizontalTension, Value: b, How: "two"}}
+		out, err := Assess(Case{Points: s.survey(st, rand.New(rand.NewPCG(6, 6))), Design: &d, Conditions: c})
+		if err != nil {
+			t.Fatal(err)
+		}
+		return out
+	}
+	agree := assessed(survey.Quantity{Value: 21000, U: 300}, survey.Quantity{Value: 21400, U: 600})
+	if h := agree.Direct.HorizontalTension; math.Abs(h.Value-21080) > 1e-6 || math.Abs(h.U-300*2/math.Sqrt(5)) > 0.01 { // weights 4 to 1
+		t.Errorf("together %v, want 21080 with u 268.3", h)
+	}
+	if p := agree.Direct.Scatter; math.Abs(p-0.551) > 0.001 { // chi square (400/670.8)^2, 1 degree of freedom
+		t.Errorf("scatter %.4f, want 0.551", p)
+	}
+	apart := assessed(survey.Quantity{Value: 20000, U: 100}, survey.Quantity{Value: 22000, U: 100})
+	if h := apart.Direct.HorizontalTension; math.Abs(h.Value-21000) > 1e-6 || math.Abs(h.U-1000) > 0.1 { // 70.71 times sqrt(200)
+		t.Errorf("together %v, want 21000 with u 1000", h)
+	}
+	if r := apart.Reconciled; r == nil || r.ChiSquare < 199 || r.Outcome == Agrees {
+		t.Errorf("reconciled %+v", r)
+	}
+	told := false
+	for _, f := range apart.Findings {
+		told = told || f.ID == "readings-differ"
+	}
+	if !told {
+		t.Errorf("nobody says that the readings differ: %+v", apart.Findings)
+	}
+}
