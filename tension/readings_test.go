@@ -109,3 +109,39 @@ func TestReadingsTogether(t *testing.T) {
 		t.Errorf("nobody says that the readings differ: %+v", apart.Findings)
 	}
 }
+
+// The frequencies that readings are held against, from shape and tension alone, against the finite elements of package vibration: level and
+// inclined, with and without bending stiffness.
+func TestPredictedFrequenciesMeetFiniteElements(t *testing.T) {
+	compared := 0
+	for _, r := range table(t, "../vibration/testdata/finite-element.csv") {
+		c := Cable{SelfWeight: r.f(t, "w_N_per_m"), AxialStiffness: r.f(t, "EA_N")}
+		st, err := c.AtTension(r.f(t, "H_N"), Chord{r.f(t, "l_m"), r.f(t, "rise_m")}, 0)
+		if err != nil {
+			t.Fatal(err)
+		}
+		d := survey.Design{Cable: "c", Load: survey.LoadSelfWeight, SelfWeight: q(c.SelfWeight, 0), AxialStiffness: q(c.AxialStiffness, 0)}
+		s := site{design: d, chord: st.Chord, points: 21, sigma: 1e-7, support: 1e-7}
+		var readings []survey.Reading
+		for n := 1; n <= 4; n++ {
+			readings = append(readings, survey.Reading{Of: survey.NaturalFrequency, Mode: n, Clamped: r["ends"] == "clamped", Bending: survey.Quantity{Value: r.f(t, "EI_Nm2")}, Value: *q(1, 0.01)})
+		}
+		j := judged(t, Case{Points: s.survey(st, rand.New(rand.NewPCG(4, 4))), Design: &d, Conditions: survey.Conditions{Readings: readings}})
+		at := j.in.sight(j.in.x)
+		ratio := st.SagMid() / math.Hypot(st.Chord.Length, st.Chord.Rise)
+		for i, column := range []string{"f1_Hz", "f2_Hz", "f3_Hz", "f4_Hz"} {
+			limit := 2e-4 + 8*ratio*ratio
+			if r["ends"] == "clamped" {
+				limit += 0.008
+			}
+			got, err := at.predicted(&j.in.readings[i], st.H)
+			if err != nil || math.Abs(got/r.f(t, column)-1) > limit {
+				t.Errorf("%s, EI %s %s: %s %.5f Hz, finite elements %s (%v)", r["name"], r["EI_Nm2"], r["ends"], column, got, r[column], err)
+			}
+			compared++
+		}
+	}
+	if compared != 72 {
+		t.Fatalf("%d frequencies compared", compared)
+	}
+}
