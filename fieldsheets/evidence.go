@@ -22,7 +22,11 @@ func evidenceGroup(a *tension.Assessment) group {
 	if r.UnstressedLength != nil {
 		g.Rows = append(g.Rows, row{"Reconciled S0", length(*r.UnstressedLength) + basis + " (at the design temperature)"})
 	}
-	g.Rows = append(g.Rows, row{"Test of all", fmt.Sprintf("chi square %.1f with %d degrees of freedom; by chance: %s", r.ChiSquare, r.DegreesOfFreedom, tension.Probability(r.Chance))})
+	degrees := "degrees"
+	if r.DegreesOfFreedom == 1 {
+		degrees = "degree"
+	}
+	g.Rows = append(g.Rows, row{"Test of all", fmt.Sprintf("chi square %.1f with %d %s of freedom; by chance: %s", r.ChiSquare, r.DegreesOfFreedom, degrees, tension.Probability(r.Chance))})
 	for _, p := range r.Pieces {
 		g.Rows = append(g.Rows, row{"Piece", clean(p.Name) + ": " + pieceText(p)})
 	}

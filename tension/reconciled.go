@@ -5,14 +5,14 @@ package tension
 // one piece is, they are those of the rest.
 type Reconciled struct {
 	HorizontalTension *Quantity   `json:"horizontal_tension_N"`
-	Load              *Quantity   `json:"load_N_per_m"`                // as it hangs
-	UnstressedLength  *Quantity   `json:"unstressed_length_m"`         // at the design temperature; nil without stiffness and design temperature
-	Covariance        [][]float64 `json:"covariance,omitempty"`        // of those that are given, in this order, SI
-	Pieces            []Piece     `json:"pieces"`                      // what was adjusted
-	ChiSquare         float64     `json:"chi_square"`                  // of all pieces together
-	DegreesOfFreedom  int         `json:"degrees_of_freedom"`          //
-	Chance            float64     `json:"p_chance"`                    // probability of such a chi-square when nothing is wrong
-	Outcome           Outcome     `json:"outcome"`                     //
+	Load              *Quantity   `json:"load_N_per_m"`         // as it hangs
+	UnstressedLength  *Quantity   `json:"unstressed_length_m"`  // at the design temperature; nil without stiffness and design temperature
+	Covariance        [][]float64 `json:"covariance,omitempty"` // of those that are given, in this order, SI
+	Pieces            []Piece     `json:"pieces"`               // what was adjusted
+	ChiSquare         float64     `json:"chi_square"`           // of all pieces together
+	DegreesOfFreedom  int         `json:"degrees_of_freedom"`
+	Chance            float64     `json:"p_chance"` // probability of such a chi-square when nothing is wrong
+	Outcome           Outcome     `json:"outcome"`
 	Without           string      `json:"without,omitempty"`           // the piece that was left out of the figures
 	Suspected         []string    `json:"suspected,omitempty"`         // pieces any of which, if wrong, would explain the contradiction
 	LoadOnRecord      *Quantity   `json:"load_on_record_N_per_m"`      // as it hangs, for comparison
