@@ -44,6 +44,9 @@ func Assess(c Case) (Assessment, error) {
 	j.tell()
 	j.a.Budget = j.budget()
 	j.a.Drawing = j.drawing()
+	if c.Points.Span != "" {
+		j.a.forces = j.forces()
+	}
 	return j.a, nil
 }
 

@@ -41,7 +41,13 @@ type Assessment struct {
 	Findings []Finding    `json:"findings"`
 	Budget   []BudgetLine `json:"budget"`
 
+	// JointHorizontalTension is H of this span, N, together with the neighbouring spans of its cable over supports that let it
+	// run; nil where no such condition holds. The verdict rests on HorizontalTension alone.
+	JointHorizontalTension *Quantity `json:"joint_horizontal_tension_N,omitempty"`
+
 	Drawing Drawing `json:"-"`
+
+	forces *spanForces // what spans of one cable share; nil for a cable of one span
 }
 
 // Verdict is the word for the state of a cable.
