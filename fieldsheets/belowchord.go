@@ -2,7 +2,6 @@ package fieldsheets
 
 import (
 	"fmt"
-	"html/template"
 	"math"
 
 	"tautbook/tension"
@@ -10,7 +9,7 @@ import (
 
 // belowChord draws depth below the chord: measured points, fitted curve and the designed cable today. Heights are drawn
 // larger than lengths, by a factor that stands beside the picture.
-func belowChord(id string, a *tension.Assessment) template.HTML {
+func belowChord(a *tension.Assessment) *svg {
 	d := a.Drawing
 	var s svg
 	const top, bottom, left, right = 30.0, 250.0, 74.0, pictureWidth - 20.0
@@ -35,7 +34,7 @@ func belowChord(id string, a *tension.Assessment) template.HTML {
 	if a.Expected != nil {
 		desc += " Expected today " + length(a.Expected.SagMid) + "."
 	}
-	return s.picture(id, "Measured, fitted and designed curve of "+clean(name(a))+" below the chord", desc, pictureWidth, bottom+70)
+	return s.describe("Measured, fitted and designed curve of "+clean(name(a))+" below the chord", desc, pictureWidth, bottom+70)
 }
 
 // depths is the range below the chord that holds curves and points used, with a little air; points may lie above the chord.

@@ -107,7 +107,7 @@ func TestDirectReadingIsPrinted(t *testing.T) {
 	}
 	a := read(tension.OffDesign, 6.2)
 	a.Expected.LoadRatio = *q(1.8, 0.05)
-	if strings.Contains(string(ratioScale("x", &a)), "by the direct reading") {
+	if strings.Contains(string(ratioScale(&a).markup("x")), "by the direct reading") {
 		t.Error("with listed loads the reading's ratio is to another tension and must not stand on this scale")
 	}
 }

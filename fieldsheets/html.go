@@ -52,6 +52,15 @@ type cableView struct {
 	Scale, Shape, Below, Res template.HTML
 	Budget                   []budgetView
 	Rejected                 []row
+
+	drawings drawings
+}
+
+// drawings are the pictures of one cable; scale is nil when there is nothing to hold the cable against.
+type drawings struct{ scale, shape, below, residuals *svg }
+
+func drawingsOf(a *tension.Assessment) drawings {
+	return drawings{ratioScale(a), trueShape(a), belowChord(a), residuals(a)}
 }
 
 type budgetView struct {
@@ -74,6 +83,16 @@ func WriteHTML(w io.Writer, r Report) error {
 	if err := finite(r); err != nil {
 		return err
 	}
+	var out bytes.Buffer
+	if err := summaryPage().Execute(&out, pageOf(r)); err != nil {
+		return fmt.Errorf("cannot print the summary: %w", err)
+	}
+	_, err := w.Write(out.Bytes())
+	return err
+}
+
+// pageOf puts the report into the words and pictures that HTML and PDF share.
+func pageOf(r Report) page {
 	p := page{Title: "Condition summary" + prefixed(": ", clean(r.Visit.Structure)), Report: r, Style: template.CSS(summaryStyle), Visit: visitRows(r.Visit),
 		Printed: r.Printed.Format("2006-01-02 15:04"), Designs: clean(r.Survey.CablesFile), Cautions: r.Cautions,
 		Signers: []string{"Surveyed by", "Assessed by", "Reviewed by"}}
@@ -89,12 +108,7 @@ func WriteHTML(w io.Writer, r Report) error {
 	for _, f := range r.Survey.Files {
 		p.Files = append(p.Files, fileViewOf(f))
 	}
-	var out bytes.Buffer
-	if err := summaryPage().Execute(&out, p); err != nil {
-		return fmt.Errorf("cannot print the summary: %w", err)
-	}
-	_, err := w.Write(out.Bytes())
-	return err
+	return p
 }
 
 // together keeps numbers and their units on one line.
@@ -131,10 +145,8 @@ func viewOf(i int, a *tension.Assessment) cableView {
 		}
 	}
 	if a.Drawing.To > a.Drawing.From {
-		v.Scale = ratioScale(id+"s", a)
-		v.Shape = trueShape(id+"f", a)
-		v.Below = belowChord(id+"b", a)
-		v.Res = residuals(id+"r", a)
+		v.drawings = drawingsOf(a)
+		v.Scale, v.Shape, v.Below, v.Res = v.drawings.scale.markup(id+"s"), v.drawings.shape.markup(id+"f"), v.drawings.below.markup(id+"b"), v.drawings.residuals.markup(id+"r")
 	}
 	for _, b := range a.Budget {
 		b.Input = clean(b.Input)

@@ -2,7 +2,6 @@ package fieldsheets
 
 import (
 	"fmt"
-	"html/template"
 	"math"
 
 	"tautbook/tension"
@@ -16,10 +15,10 @@ type reading struct {
 
 // ratioScale shows today's tension over the expected one with its 95 % interval against the limits, and the other reading
 // under it while that is open. Words and shapes say everything that shading does.
-func ratioScale(id string, a *tension.Assessment) template.HTML {
+func ratioScale(a *tension.Assessment) *svg {
 	e := a.Expected
 	if e == nil || e.Ratio == nil {
-		return ""
+		return nil
 	}
 	list := []reading{{"today", "if the load is as recorded", *e.Ratio}}
 	if a.Rival != nil && !a.Rival.Excluded {
@@ -33,7 +32,7 @@ func ratioScale(id string, a *tension.Assessment) template.HTML {
 	lo, hi := ratioRange(e, list)
 	x := newAxis(lo, hi, left, right, 7)
 	bottom := top + 44*float64(len(list)) + 6
-	s.el(`<rect class="inside" x="%.1f" y="%.1f" width="%.1f" height="%.1f"/>`, x.at(e.SlackBelow), top, x.at(e.OverloadAbove)-x.at(e.SlackBelow), bottom-top)
+	s.rect("inside", x.at(e.SlackBelow), top, x.at(e.OverloadAbove)-x.at(e.SlackBelow), bottom-top)
 	s.line("zero", x.at(1), top, x.at(1), bottom)
 	for _, l := range []float64{e.SlackBelow, e.OverloadAbove} {
 		s.line("limit", x.at(l), top-6, x.at(l), bottom)
@@ -55,7 +54,7 @@ func ratioScale(id string, a *tension.Assessment) template.HTML {
 		desc += " " + r.assumption + ": " + figure + "."
 	}
 	s.text("tick", right, bottom+34, "end", "tension today / tension expected today")
-	return s.picture(id, "Tension of "+clean(name(a))+" today against the expected one", desc, pictureWidth, bottom+42)
+	return s.describe("Tension of "+clean(name(a))+" today against the expected one", desc, pictureWidth, bottom+42)
 }
 
 // ratioRange covers the limits and the intervals, but not so much of a very wide one that the limits could not be seen.
@@ -83,6 +82,7 @@ func (r reading) draw(s *svg, x axis, y float64) {
 	end(lo, math.Max(lo, x.lo), -1)
 	end(hi, math.Min(hi, x.hi), 1)
 	if r.ratio.Value >= x.lo && r.ratio.Value <= x.hi {
-		s.el(`<path class="%s-mark" d="M%.1f %.1fl7 7l-7 7l-7 -7Z"/>`, r.class, x.at(r.ratio.Value), y-7)
+		at := x.at(r.ratio.Value)
+		s.polygon(r.class+"-mark", [][2]float64{{at, y - 7}, {at + 7, y}, {at, y + 7}, {at - 7, y}})
 	}
 }

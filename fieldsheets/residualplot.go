@@ -2,14 +2,13 @@ package fieldsheets
 
 import (
 	"fmt"
-	"html/template"
 	"math"
 
 	"tautbook/tension"
 )
 
 // residuals draws the residuals in mm with a band of two standard deviations of the scatter.
-func residuals(id string, a *tension.Assessment) template.HTML {
+func residuals(a *tension.Assessment) *svg {
 	d := a.Drawing
 	var s svg
 	const top, bottom, left, right = 30.0, 140.0, 74.0, pictureWidth - 20.0
@@ -24,7 +23,7 @@ func residuals(id string, a *tension.Assessment) template.HTML {
 	}
 	xa := newAxis(d.From, d.To, left, right, 8)
 	ya := newAxis(-most, most, bottom, top, 4)
-	s.el(`<rect class="band" x="%.1f" y="%.1f" width="%.1f" height="%.1f"/>`, left, ya.at(2000*sigma), right-left, ya.at(-2000*sigma)-ya.at(2000*sigma))
+	s.rect("band", left, ya.at(2000*sigma), right-left, ya.at(-2000*sigma)-ya.at(2000*sigma))
 	frame(&s, xa, ya, "station from A [m]", "measured − fitted [mm]")
 	s.line("zero", left, ya.at(0), right, ya.at(0))
 	every, note := thinning(len(d.Stations))
@@ -34,5 +33,5 @@ func residuals(id string, a *tension.Assessment) template.HTML {
 		s.dot(x, y, fmt.Sprintf("%s: %+.1f mm", clean(d.IDs[i]), 1000*d.Residuals[i]))
 	}
 	s.text("small", left, bottom+44, "start", "shaded: two standard deviations of the scatter, ± "+tension.Millimetre.About(2*sigma)+note)
-	return s.picture(id, "Residuals along "+clean(name(a)), fmt.Sprintf("Scatter %s.", tension.Millimetre.About(sigma)), pictureWidth, bottom+54)
+	return s.describe("Residuals along "+clean(name(a)), fmt.Sprintf("Scatter %s.", tension.Millimetre.About(sigma)), pictureWidth, bottom+54)
 }

@@ -7,22 +7,61 @@ import (
 	"strings"
 )
 
-// svg collects the elements of one picture. Numbers are written with one decimal; text is escaped.
+// svg collects one picture: as SVG elements for a page, and as marks that paper and PNG are drawn from. Numbers are written with one
+// decimal; text is escaped.
 type svg struct {
 	strings.Builder
+	marks       []mark
+	title, desc string
+	w, h        float64
+}
+
+// mark is one element of a picture: text, a disc, or a line through points that may be closed. Its class says how it looks.
+type mark struct {
+	class  string
+	points [][2]float64
+	closed bool
+	radius float64
+	text   string
+	anchor string // of text: start, middle or end
 }
 
 func (s *svg) el(format string, args ...any) { fmt.Fprintf(s, format+"\n", args...) }
 
+func (s *svg) keep(m mark) { s.marks = append(s.marks, m) }
+
 func (s *svg) line(class string, x1, y1, x2, y2 float64) {
+	s.keep(mark{class: class, points: [][2]float64{{x1, y1}, {x2, y2}}})
 	s.el(`<line class="%s" x1="%.1f" y1="%.1f" x2="%.1f" y2="%.1f"/>`, class, x1, y1, x2, y2)
 }
 
 func (s *svg) text(class string, x, y float64, anchor, text string) {
+	s.keep(mark{class: class, points: [][2]float64{{x, y}}, text: text, anchor: anchor})
 	s.el(`<text class="%s" x="%.1f" y="%.1f" text-anchor="%s">%s</text>`, class, x, y, anchor, template.HTMLEscapeString(text))
 }
 
+func (s *svg) rect(class string, x, y, w, h float64) {
+	s.keep(mark{class: class, points: [][2]float64{{x, y}, {x + w, y}, {x + w, y + h}, {x, y + h}}, closed: true})
+	s.el(`<rect class="%s" x="%.1f" y="%.1f" width="%.1f" height="%.1f"/>`, class, x, y, w, h)
+}
+
+func (s *svg) disc(class string, x, y, radius float64) {
+	s.keep(mark{class: class, points: [][2]float64{{x, y}}, radius: radius})
+	s.el(`<circle class="%s" cx="%.1f" cy="%.1f" r="%.1f"/>`, class, x, y, radius)
+}
+
 func (s *svg) path(class string, points [][2]float64) {
+	s.keep(mark{class: class, points: points})
+	s.el(`<path class="%s" d="%s"/>`, class, through(points))
+}
+
+func (s *svg) polygon(class string, points [][2]float64) {
+	s.keep(mark{class: class, points: points, closed: true})
+	s.el(`<path class="%s" d="%sZ"/>`, class, through(points))
+}
+
+// through is the SVG path through points.
+func through(points [][2]float64) string {
 	var b strings.Builder
 	for i, p := range points {
 		c := "L"
@@ -31,13 +70,27 @@ func (s *svg) path(class string, points [][2]float64) {
 		}
 		fmt.Fprintf(&b, "%s%.1f %.1f", c, p[0], p[1])
 	}
-	s.el(`<path class="%s" d="%s"/>`, class, b.String())
+	return b.String()
 }
 
-// picture wraps the elements with size, title and description for readers that do not see it.
+// picture sets size, title and description for readers that do not see it, and returns the markup.
 func (s *svg) picture(id, title, desc string, w, h float64) template.HTML {
+	s.describe(title, desc, w, h)
+	return s.markup(id)
+}
+
+func (s *svg) describe(title, desc string, w, h float64) *svg {
+	s.title, s.desc, s.w, s.h = title, desc, w, h
+	return s
+}
+
+// markup is the picture for a page; id must be its own there.
+func (s *svg) markup(id string) template.HTML {
+	if s == nil {
+		return ""
+	}
 	return template.HTML(fmt.Sprintf(`<svg viewBox="0 0 %.0f %.0f" role="img" aria-labelledby="%s-t %s-d"><title id="%s-t">%s</title><desc id="%s-d">%s</desc>`+"\n%s</svg>",
-		w, h, id, id, id, template.HTMLEscapeString(title), id, template.HTMLEscapeString(desc), s.String()))
+		s.w, s.h, id, id, id, template.HTMLEscapeString(s.title), id, template.HTMLEscapeString(s.desc), s.String()))
 }
 
 const pictureWidth = 760
@@ -56,10 +109,13 @@ func thinning(points int) (every int, note string) {
 
 // cross marks a point that was left out.
 func (s *svg) cross(x, y float64, title string) {
+	s.keep(mark{class: "out", points: [][2]float64{{x - 4, y - 4}, {x + 4, y + 4}}})
+	s.keep(mark{class: "out", points: [][2]float64{{x - 4, y + 4}, {x + 4, y - 4}}})
 	s.el(`<path class="out" d="M%.1f %.1fl8 8m0 -8l-8 8"><title>%s</title></path>`, x-4, y-4, template.HTMLEscapeString(title))
 }
 
 func (s *svg) dot(x, y float64, title string) {
+	s.keep(mark{class: "dot", points: [][2]float64{{x, y}}, radius: 2.6})
 	s.el(`<circle class="dot" cx="%.1f" cy="%.1f" r="2.6"><title>%s</title></circle>`, x, y, template.HTMLEscapeString(title))
 }
 

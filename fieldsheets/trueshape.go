@@ -2,7 +2,6 @@ package fieldsheets
 
 import (
 	"fmt"
-	"html/template"
 	"math"
 	"unicode/utf8"
 
@@ -11,7 +10,7 @@ import (
 
 // trueShape draws the cable with heights and lengths to one scale, so that the support forces stand along the real end
 // tangents; they are drawn to scale among themselves.
-func trueShape(id string, a *tension.Assessment) template.HTML {
+func trueShape(a *tension.Assessment) *svg {
 	d := a.Drawing
 	var s svg
 	const margin, arrow = 130.0, 62.0
@@ -53,7 +52,7 @@ func trueShape(id string, a *tension.Assessment) template.HTML {
 	}
 	height := bottom + 28
 	s.text("small", pictureWidth/2, height-8, "middle", fmt.Sprintf("to scale, %.4g m between the ends; %s", d.To-d.From, what))
-	return s.picture(id, "True shape of "+clean(name(a))+" with support forces", desc, pictureWidth, height)
+	return s.describe("True shape of "+clean(name(a))+" with support forces", desc, pictureWidth, height)
 }
 
 // supportForce is the arrow of a reaction: its foot on the cable end and its way to the tip, picture units.
@@ -67,8 +66,9 @@ func (f supportForce) label(r tension.Reaction) string {
 func (f supportForce) draw(s *svg, r tension.Reaction) float64 {
 	tipX, tipY := f.x+f.dx, f.y+f.dy
 	s.line("force", f.x, f.y, tipX, tipY)
-	s.el(`<path class="head" transform="translate(%.1f %.1f) rotate(%.1f)" d="M0 0L-9 -4L-9 4Z"/>`, tipX, tipY, math.Atan2(f.dy, f.dx)*180/math.Pi)
-	s.el(`<circle class="support" cx="%.1f" cy="%.1f" r="4"/>`, f.x, f.y)
+	sin, cos := math.Sincos(math.Atan2(f.dy, f.dx))
+	s.polygon("head", [][2]float64{{tipX, tipY}, {tipX - 9*cos + 4*sin, tipY - 9*sin - 4*cos}, {tipX - 9*cos - 4*sin, tipY - 9*sin + 4*cos}})
+	s.disc("support", f.x, f.y, 4)
 	ty := tipY - 24
 	if f.dy > 0 {
 		ty = tipY + 20

@@ -24,7 +24,8 @@ type assessOptions struct {
 	findLoads            bool
 	rejectBeyond         float64
 	format, out          string
-	html, json, csv      string
+	html, pdf, json, csv string
+	paper                string
 	exitByVerdict        bool
 	streams              streams
 }
@@ -65,6 +66,8 @@ func newAssess(s streams) *cobra.Command {
 	fl.StringVar(&o.format, "format", "text", "what goes to standard output: text, json, csv or html")
 	fl.StringVar(&o.out, "out", "", "write the result to this file instead of standard output")
 	fl.StringVar(&o.html, "html", "", "also write the condition summary as one HTML file")
+	fl.StringVar(&o.pdf, "pdf", "", "also write the condition summary as a PDF")
+	fl.StringVar(&o.paper, "paper", string(fieldsheets.A4), "sheet of the PDF: A4 or Letter")
 	fl.StringVar(&o.json, "json", "", "also write the result as JSON")
 	fl.StringVar(&o.csv, "csv", "", "also write the result as CSV, one line a cable")
 	fl.BoolVar(&o.exitByVerdict, "exit-by-verdict", false, "exit 3 or 4 when a cable is not as designed (see tautbook --help)")
@@ -78,6 +81,9 @@ func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
 	}
 	if !(o.rejectBeyond >= 0) {
 		return usageError{fmt.Errorf("--reject-beyond is %g, expected 0 or more", o.rejectBeyond)}
+	}
+	if p := fieldsheets.Paper(o.paper); p != fieldsheets.A4 && p != fieldsheets.Letter {
+		return usageError{fmt.Errorf("--paper is %q, expected A4 or Letter", o.paper)}
 	}
 	in, err := o.read(files, *o.values["structure"], o.streams)
 	if err != nil {
@@ -212,7 +218,7 @@ func (o *assessOptions) write(print func(io.Writer, fieldsheets.Report) error, r
 	for _, extra := range []struct {
 		path  string
 		print func(io.Writer, fieldsheets.Report) error
-	}{{o.html, fieldsheets.WriteHTML}, {o.json, fieldsheets.WriteJSON}, {o.csv, fieldsheets.WriteCSV}} {
+	}{{o.html, fieldsheets.WriteHTML}, {o.pdf, o.writePDF}, {o.json, fieldsheets.WriteJSON}, {o.csv, fieldsheets.WriteCSV}} {
 		if extra.path == "" {
 			continue
 		}
@@ -224,6 +230,10 @@ func (o *assessOptions) write(print func(io.Writer, fieldsheets.Report) error, r
 		return writeFile(o.out, func(w io.Writer) error { return print(w, r) })
 	}
 	return print(o.streams.out, r)
+}
+
+func (o *assessOptions) writePDF(w io.Writer, r fieldsheets.Report) error {
+	return fieldsheets.WritePDF(w, r, fieldsheets.Paper(o.paper))
 }
 
 // exitCode turns verdicts into an exit code when that was asked for.

@@ -51,7 +51,7 @@ func runDemo(dir string, s streams) error {
 		return err
 	}
 	in := func(name string) string { return filepath.Join(dir, name) }
-	args := []string{"assess", "--html", in("summary.html"), "--json", in("summary.json"), "--csv", in("summary.csv")}
+	args := []string{"assess", "--html", in("summary.html"), "--pdf", in("summary.pdf"), "--json", in("summary.json"), "--csv", in("summary.csv")}
 	for _, name := range demoSurveys {
 		args = append(args, in(name))
 	}
@@ -69,14 +69,14 @@ func runDemo(dir string, s streams) error {
 	}
 	fmt.Fprintf(s.out, `
 Where to look:
-  %s             condition summary of the visit, for screen and paper
+  %s, %s  condition summary of the visit, for screen and paper
   %s  the hand cable after its loads were looked at
   %s, %s       the same figures for programs
   %s and the surveys beside it     what went in
 Run it yourself:
   tautbook check %s
   tautbook assess %s
-`, in("summary.html"), in("summary-after-a-look.html"), in("summary.json"), in("summary.csv"), in("cables.csv"), in("main-left.csv"), in("main-left.csv"))
+`, in("summary.html"), in("summary.pdf"), in("summary-after-a-look.html"), in("summary.json"), in("summary.csv"), in("cables.csv"), in("main-left.csv"), in("main-left.csv"))
 	return nil
 }
 
