@@ -44,6 +44,8 @@ type Assessment struct {
 	// JointHorizontalTension is H of this span, N, together with the neighbouring spans of its cable over supports that let it
 	// run; nil where no such condition holds. The verdict rests on HorizontalTension alone.
 	JointHorizontalTension *Quantity `json:"joint_horizontal_tension_N,omitempty"`
+	// NextSupport is the support between this span and the next of its cable; it stands with the cable in the sheets.
+	NextSupport *SupportForce `json:"-"`
 
 	Drawing Drawing `json:"-"`
 

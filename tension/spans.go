@@ -103,8 +103,11 @@ func join(list []Assessment, chain []link, over survey.SupportBetween) Continuou
 		}
 	}
 	c.adjust(n)
-	for i := range c.Spans {
-		list[c.Spans[i].at].JointHorizontalTension = c.Spans[i].Joint
+	for i, s := range c.Spans {
+		list[s.at].JointHorizontalTension = s.Joint
+		if i < len(c.Supports) {
+			list[s.at].NextSupport = &c.Supports[i]
+		}
 	}
 	c.tell(n, over)
 	return c

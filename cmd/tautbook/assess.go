@@ -27,6 +27,7 @@ type assessOptions struct {
 	html, pdf, json, csv string
 	paper                string
 	exitByVerdict        bool
+	supportBetween       string
 	streams              streams
 }
 
@@ -70,6 +71,7 @@ func newAssess(s streams) *cobra.Command {
 	fl.StringVar(&o.paper, "paper", string(fieldsheets.A4), "sheet of the PDF: A4 or Letter")
 	fl.StringVar(&o.json, "json", "", "also write the result as JSON")
 	fl.StringVar(&o.csv, "csv", "", "also write the result as CSV, one line a cable")
+	fl.StringVar(&o.supportBetween, "support-between", "", "how cables pass over supports between two spans: fixed, equal tension (saddle, sheave) or equal horizontal (roller carriage); replaces the column of the cables file")
 	fl.BoolVar(&o.exitByVerdict, "exit-by-verdict", false, "exit 3 or 4 when a cable is not as designed (see tautbook --help)")
 	return cmd
 }
@@ -84,6 +86,13 @@ func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
 	}
 	if p := fieldsheets.Paper(o.paper); p != fieldsheets.A4 && p != fieldsheets.Letter {
 		return usageError{fmt.Errorf("--paper is %q, expected A4 or Letter", o.paper)}
+	}
+	over, other, err := survey.ParseSupportBetween(o.supportBetween)
+	if err == nil && over != other {
+		err = errors.New("one word holds for every support; for each end of a span use the column support_between of the cables file")
+	}
+	if err != nil {
+		return usageError{fmt.Errorf("--support-between: %w", err)}
 	}
 	in, err := o.read(files, *o.values["structure"], o.streams)
 	if err != nil {
@@ -108,6 +117,7 @@ func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
 	if err != nil {
 		return err
 	}
+	in.continuous = tension.JoinSpans(cables, over)
 	report := newReport(in, cables, o.streams)
 	if err := o.write(write, report); err != nil {
 		return err
@@ -193,7 +203,7 @@ func assessAll(cases []tension.Case) ([]tension.Assessment, error) {
 
 func newReport(in input, cables []tension.Assessment, s streams) fieldsheets.Report {
 	return fieldsheets.NewReport(fieldsheets.Tool{Name: "tautbook", Version: version()}, s.now(),
-		fieldsheets.Input{Surveys: in.surveys, CablesFile: in.cables, CablesNotices: in.notices}, cables)
+		fieldsheets.Input{Surveys: in.surveys, CablesFile: in.cables, CablesNotices: in.notices, Continuous: in.continuous}, cables)
 }
 
 // writerFor is the printer of a format.
