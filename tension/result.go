@@ -34,6 +34,7 @@ type Assessment struct {
 	Direct                   *Direct        `json:"direct_reading,omitempty"`
 	Stiffness                *Stiffness     `json:"stiffness,omitempty"`
 	Strength                 *Strength      `json:"strength_use"`
+	MonteCarlo               *MonteCarlo    `json:"monte_carlo,omitempty"`
 
 	Verdict  Verdict      `json:"verdict"`
 	Reason   string       `json:"reason"`    // one sentence: why this verdict
