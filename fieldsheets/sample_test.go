@@ -92,6 +92,15 @@ func sampleContinuous() tension.Continuous {
 		Findings: []tension.Finding{{ID: "support-stuck", Level: tension.Act, Text: "The support between spans 2 and 3 is stuck, in a sentence."}}}
 }
 
+// sampleMonteCarlo is a run that bears out H and not the ratio.
+func sampleMonteCarlo() *tension.MonteCarlo {
+	low, in, high := 0.97, 0.03, 0.0
+	good := tension.Simulated{Mean: 17161, U: 255, Low: 16660, High: 17665, LinearLowOff: 1.2, LinearHighOff: -0.8, Tolerance: 5, SamplingError: 1.5, LinearAccepted: true}
+	bad := tension.Simulated{Mean: 0.803, U: 0.017, Low: 0.775, High: 0.839, LinearLowOff: -0.005, LinearHighOff: -0.01, Tolerance: 0.0005, SamplingError: 0.0001}
+	return &tension.MonteCarlo{Trials: 200000, Failed: 3, Seed: 1, Adaptive: true, Stable: true, HorizontalTension: &good, Ratio: &bad, GreatestTension: &good,
+		PSlack: &low, PInside: &in, POverload: &high, Text: "Linear propagation is not good enough for the ratio, in a sentence."}
+}
+
 func sampleReport() Report {
 	flat := bare("flat", tension.Undecided)
 	flat.HorizontalTensionAtLeast = new(float64)
@@ -103,6 +112,7 @@ func sampleReport() Report {
 	loaded.Load.Record = survey.LoadsListed
 	loaded.Expected.LoadRatio = *q(1.79, 0.05)
 	loaded.Rival.Excluded, loaded.Rival.ExcludedBy = true, "the record of loads"
+	loaded.MonteCarlo = sampleMonteCarlo()
 	joined := sampleContinuous()
 	loaded.JointHorizontalTension, loaded.NextSupport = joined.Spans[0].Joint, &joined.Supports[0]
 	cables := []tension.Assessment{full("c1", tension.AsDesigned), full("c2", tension.Slack), full("c3", tension.OffDesign), loaded, flat, bare("c6", tension.NoDesign)}

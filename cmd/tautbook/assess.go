@@ -20,6 +20,7 @@ import (
 type assessOptions struct {
 	readingFlags
 	conditionFlags
+	samplingFlags
 	selfWeight, deckLoad string
 	findLoads            bool
 	rejectBeyond         float64
@@ -53,12 +54,14 @@ func newAssess(s streams) *cobra.Command {
 		Long:  assessHelp,
 		Example: `  tautbook assess main-left.csv
   tautbook assess --cables cables.csv --temperature "17.5 +- 1.5 degC" --loads "as filed" --html summary.html main-left.csv
+  tautbook assess --monte-carlo adaptive --seed 1 main-left.csv
   tautbook assess --format json wire.csv --self-weight "50 N/m"`,
 		Args: atLeastOne,
 		RunE: func(cmd *cobra.Command, files []string) error { return o.run(cmd, files) },
 	}
 	o.readingFlags.bind(cmd)
 	o.conditionFlags.bind(cmd)
+	o.samplingFlags.bind(cmd)
 	fl := cmd.Flags()
 	fl.StringVar(&o.selfWeight, "self-weight", "", "self weight of every cable that has no design values, for example \"50 +- 1 N/m\"")
 	fl.StringVar(&o.deckLoad, "deck-load", "", "deck load of every cable that has no design values, per horizontal metre")
@@ -94,6 +97,10 @@ func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
 	if err != nil {
 		return usageError{fmt.Errorf("--support-between: %w", err)}
 	}
+	sampling, err := o.sampling(cmd)
+	if err != nil {
+		return err
+	}
 	in, err := o.read(files, *o.values["structure"], o.streams)
 	if err != nil {
 		return err
@@ -113,7 +120,15 @@ func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
 	if plain != nil && !slices.ContainsFunc(cases, func(c tension.Case) bool { return c.Design == plain }) {
 		fmt.Fprintf(o.streams.err, "tautbook: --self-weight and --deck-load are not used: %s has design values for every cable\n", in.cables)
 	}
+	shown := newProgress(o.streams)
+	if sampling != nil {
+		sampling.Progress = shown.add
+		for i := range cases {
+			cases[i].Sampling = sampling
+		}
+	}
 	cables, err := assessAll(cases)
+	shown.end()
 	if err != nil {
 		return err
 	}
