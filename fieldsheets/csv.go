@@ -1,6 +1,7 @@
 package fieldsheets
 
 import (
+	"bytes"
 	"encoding/csv"
 	"io"
 	"slices"
@@ -32,17 +33,21 @@ func WriteCSV(w io.Writer, r Report) error {
 	if err := out.Write(header); err != nil {
 		return err
 	}
-	for i := range r.Cables {
+	if out.Flush(); out.Error() != nil {
+		return out.Error()
+	}
+	return inOrder(w, len(r.Cables), func(text *bytes.Buffer, i int) error {
+		line := csv.NewWriter(text)
 		row := make([]string, len(csvColumns))
 		for k, c := range csvColumns {
 			row[k] = c.cell(&r.Cables[i])
 		}
-		if err := out.Write(row); err != nil {
+		if err := line.Write(row); err != nil {
 			return err
 		}
-	}
-	out.Flush()
-	return out.Error()
+		line.Flush()
+		return line.Error()
+	})
 }
 
 func exactly(v float64) string { return strconv.FormatFloat(v, 'g', -1, 64) }

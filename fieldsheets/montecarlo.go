@@ -10,7 +10,10 @@ import (
 func monteCarloGroup(m *tension.MonteCarlo) group {
 	g := group{Title: "By Monte Carlo (JCGM 101)"}
 	draws := fmt.Sprintf("%d, seed %d", m.Trials, m.Seed)
-	if m.Adaptive {
+	switch {
+	case m.Adaptive && !m.Stable:
+		draws += ", too few to settle two significant digits"
+	case m.Adaptive:
 		draws += ", as many as it took"
 	}
 	if m.Failed > 0 {

@@ -101,7 +101,7 @@ func (l *look) add(values []float64) {
 	slices.Sort(values)
 	var now [4]float64
 	now[0], now[1] = moments(values)
-	now[2], now[3] = shortest(values)
+	now[2], now[3] = symmetric(values) // the ends of the shortest interval scatter far more from block to block
 	if l.n == 0 {
 		l.first = now
 	}
