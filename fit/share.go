@@ -43,6 +43,12 @@ func (r *Result) tellShare(w *workspace, cat, par *Result, o Options, per, share
 		return nil
 	}
 	mu := -dot(v0, d) / dot(d, d)
+	if math.Abs(mu-share) < 3*least/norm(d) {
+		return &Share{Value: mu, U: math.Sqrt(r.ScaledBy) * r.Widening / norm(d), Constant: r.Curve.Constant()} // in keeping with the one that was taken: not worth more fits
+	}
+	if left := dot(v0, v0) - mu*mu*dot(d, d); r.APriori && left > 10*float64(r.DegreesOfFreedom) {
+		return nil // no share describes these points
+	}
 	for range 3 {
 		inside := min(max(mu, 0.05), 0.95)
 		_, low := fit(inside - 0.05)

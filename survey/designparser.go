@@ -42,6 +42,7 @@ func (p *designParser) parse() Design {
 	d.Expansion = p.quantity("expansion", r.Expansion, r.UExpansion)
 	d.BreakingLoad = p.quantity("breaking_load", r.Breaking, r.UBreaking)
 	d.Diameter = p.quantity("diameter", r.Diameter, r.UDiameter)
+	d.BendingStiffness = p.quantity("bending_stiffness", r.Bending, r.UBending)
 	d.TakeUpPerTurn = p.quantity("take_up_per_turn", r.TakeUp, r.UTakeUp)
 	d.SafetyFactor = p.safetyFactor(r.SafetyFactor)
 	d.SlackBelow = p.limit("slack_below", r.SlackBelow)

@@ -42,6 +42,8 @@ type designRow struct {
 	OverloadAbove  string `csv:"overload_above"`
 	Diameter       string `csv:"diameter"`
 	UDiameter      string `csv:"u_diameter"`
+	Bending        string `csv:"bending_stiffness"`
+	UBending       string `csv:"u_bending_stiffness"`
 	TakeUp         string `csv:"take_up_per_turn"`
 	UTakeUp        string `csv:"u_take_up_per_turn"`
 	Between        string `csv:"support_between"`
@@ -55,7 +57,8 @@ var designColumns = map[string]struct {
 	"self_weight": {ForcePerLength, true}, "deck_load": {ForcePerLength, true}, "design_span": {Length, true}, "design_rise": {Length, false},
 	"design_tension": {Force, true}, "design_sag": {Length, true}, "design_temperature": {Temperature, false}, "axial_stiffness": {Force, true},
 	"expansion": {PerTemperature, true}, "breaking_load": {Force, true}, "diameter": {Length, true}, "take_up_per_turn": {Length, true},
-	"slack_below": {Fraction, true}, "overload_above": {Fraction, true},
+	"bending_stiffness": {Bending, true},
+	"slack_below":       {Fraction, true}, "overload_above": {Fraction, true},
 }
 
 var plainColumns = []string{"structure", "cable", "span", "load", "safety_factor", "support_between"}

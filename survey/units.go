@@ -16,6 +16,7 @@ const (
 	ForcePerLength Dimension = "force per length"
 	Temperature    Dimension = "temperature"
 	PerTemperature Dimension = "expansion"
+	Bending        Dimension = "bending stiffness"
 	Fraction       Dimension = "fraction"
 )
 
@@ -48,7 +49,9 @@ var units = map[Dimension]map[string]unit{
 	Temperature: {"degc": {1, 0}, "c": {1, 0}, "°c": {1, 0}, "degf": {fahrenFac, -32 * fahrenFac}, "f": {fahrenFac, -32 * fahrenFac},
 		"°f": {fahrenFac, -32 * fahrenFac}, "k": {1, -zeroC}},
 	PerTemperature: expansions(),
-	Fraction:       {"%": {0.01, 0}, "1": {1, 0}},
+	Bending: {"nm2": {1, 0}, "nm^2": {1, 0}, "nm²": {1, 0}, "n*m2": {1, 0}, "knm2": {1e3, 0}, "knm^2": {1e3, 0}, "knm²": {1e3, 0},
+		"lbfft2": {poundF * foot * foot, 0}, "lbfft^2": {poundF * foot * foot, 0}, "kipft2": {1e3 * poundF * foot * foot, 0}, "kipft^2": {1e3 * poundF * foot * foot, 0}},
+	Fraction: {"%": {0.01, 0}, "1": {1, 0}},
 }
 
 // expansions are the units of thermal expansion: a power of ten per degree, in the usual spellings.
@@ -72,11 +75,12 @@ var spellings = map[Dimension]string{
 	ForcePerLength: "N/m, daN/m, kN/m, kg/m, lbf/ft or kip/ft (a mass counts with standard gravity 9.80665 m/s2)",
 	Temperature:    "degC, degF or K",
 	PerTemperature: "1/degC, 1e-6/degC, 1/K, 1e-6/K or 1/degF",
+	Bending:        "N m2, kN m2, lbf ft2 or kip ft2",
 	Fraction:       "%",
 }
 
 // usual is the unit that a message suggests.
-var usual = map[Dimension]string{Length: "mm", Force: "kN", ForcePerLength: "N/m", Temperature: "degC", PerTemperature: "1e-6/degC", Fraction: "%"}
+var usual = map[Dimension]string{Length: "mm", Force: "kN", ForcePerLength: "N/m", Temperature: "degC", PerTemperature: "1e-6/degC", Bending: "kN m2", Fraction: "%"}
 
 // findUnit looks a spelling up. MN and mN differ only by case: a milli-newton is not a unit of cables and is refused.
 func findUnit(text string, d Dimension) (unit, bool) {

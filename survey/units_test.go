@@ -126,6 +126,7 @@ func TestEveryUnit(t *testing.T) {
 		Temperature:    {50: "degc c °c", 10: "degf f °f", -223.15: "k"},
 		PerTemperature: {1: "1/degc 1/°c 1/k /degc /°c /k", 1e-6: "1e-6/degc 1e-6/°c 1e-6/k 10^-6/degc 10^-6/°c 10^-6/k e-6/degc e-6/°c e-6/k ppm/degc ppm/°c ppm/k",
 			1.8: "1/degf 1/°f /degf /°f", 1.8e-6: "1e-6/degf 1e-6/°f 10^-6/degf 10^-6/°f e-6/degf e-6/°f ppm/degf ppm/°f"},
+		Bending:  {1: "nm2 nm^2 nm² n*m2", 1e3: "knm2 knm^2 knm²", lbf * ft * ft: "lbfft2 lbfft^2", 1e3 * lbf * ft * ft: "kipft2 kipft^2"},
 		Fraction: {0.01: "%", 1: "1"},
 	}
 	for d, table := range units {

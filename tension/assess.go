@@ -20,6 +20,27 @@ const unknownTemperatureU = 15.0
 // stiffness: common practice, no source.
 const clearDiameters = 20
 
+// clearBends is how many times sqrt(EI/H) from a support or a clamp the points are left out: what bending there moves the curve by has
+// fallen to less than a hundredth.
+const clearBends = 5
+
+// clearLength is how near a support or a clamp points are left out, m: by the bending stiffness under the design tension, else by the
+// diameter, else 0. The design tension stands for today's: the length goes with its root only.
+func clearLength(d *survey.Design, even float64) float64 {
+	switch {
+	case d == nil:
+		return 0
+	case d.BendingStiffness != nil && d.Tension != nil:
+		return clearBends * math.Sqrt(d.BendingStiffness.Value/d.Tension.Value)
+	case d.BendingStiffness != nil && d.Sag != nil && d.SpanLength != nil && even > 0:
+		h := even * d.SpanLength.Value * d.SpanLength.Value / (8 * d.Sag.Value)
+		return clearBends * math.Sqrt(d.BendingStiffness.Value/h)
+	case d.Diameter != nil:
+		return clearDiameters * d.Diameter.Value
+	}
+	return 0
+}
+
 // Case is one cable span to be assessed.
 type Case struct {
 	Points     survey.SpanPoints
@@ -63,8 +84,8 @@ func (c Case) fit(listed []survey.ListedLoad, told []survey.LocalLoad) (*fit.Res
 		return nil, fmt.Errorf("the local load %q is placed by its distance from support A, and A was not surveyed: survey A and code it, or take the load line out", told[0].What)
 	}
 	opts.ThroughSupports = c.Conditions.SupportsOnCable
-	if c.Design != nil && c.Design.Diameter != nil && opts.Clear == 0 {
-		opts.Clear = clearDiameters * c.Design.Diameter.Value
+	if opts.Clear == 0 {
+		opts.Clear = clearLength(c.Design, own+deck)
 	}
 	opts.Loads = localOptions(told, Quantity{Value: own + deck, U: u})
 	fitted := opts.FindLoads

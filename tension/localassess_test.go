@@ -158,3 +158,26 @@ func TestBenchmarkLoadIsReadFromItsShape(t *testing.T) {
 		t.Errorf("load at %.3f ft, hangs at %.3f ft", r.Loads[0].Station, st.station())
 	}
 }
+
+// How near a clamp points are left out: by EI and H when both are known, else by the diameter, else not at all.
+func TestClearLength(t *testing.T) {
+	d := survey.Design{}
+	if got := clearLength(&d, 38); got != 0 {
+		t.Errorf("nothing known: %g m", got)
+	}
+	d.Diameter = q(0.04, 0)
+	if got := clearLength(&d, 38); math.Abs(got-0.8) > 1e-12 {
+		t.Errorf("by the diameter: %g m, want 20 diameters", got)
+	}
+	d.BendingStiffness, d.Tension = q(8100, 0), q(90000, 0) // sqrt(EI/H) = 0.3 m
+	if got := clearLength(&d, 38); math.Abs(got-1.5) > 1e-12 {
+		t.Errorf("by EI and H: %g m, want 1.5 m", got)
+	}
+	d.Tension, d.Sag, d.SpanLength = nil, q(0.8, 0), q(120, 0) // H = 40 120^2 / 6.4 = 90 kN
+	if got := clearLength(&d, 40); math.Abs(got-1.5) > 1e-12 {
+		t.Errorf("by EI and sag: %g m, want 1.5 m", got)
+	}
+	if got := clearLength(nil, 40); got != 0 {
+		t.Errorf("no design: %g m", got)
+	}
+}

@@ -65,7 +65,7 @@ func (s LoadedState) Below(station float64) float64 {
 
 // AtLengthLoaded is the state of a cable with unstressed length s0 (m) at dt degC above the reference under point loads.
 // Newton's method on the tension and all segment tangents at once (Irvine 1981, ch. 1, segment by segment), the loads
-// brought on in steps. The error wraps ErrNoLoad, ErrTooShort or ErrNoState.
+// brought on at once or, where that fails, in steps. The error wraps ErrNoLoad, ErrTooShort or ErrNoState.
 func (c Cable) AtLengthLoaded(s0 float64, ch Chord, dt float64, loads []PointLoad) (LoadedState, error) {
 	bare, err := c.AtLength(s0, ch, dt)
 	if err != nil {
@@ -78,6 +78,11 @@ func (c Cable) AtLengthLoaded(s0 float64, ch Chord, dt float64, loads []PointLoa
 		}
 	}
 	st := LoadedState{Cable: c, Chord: ch, DT: dt, H: bare.H, Unstressed: s0, Loads: loads}
+	st.split(bare)
+	if st.settle(1) == nil {
+		return st, nil
+	}
+	st.H, st.from, st.to = bare.H, nil, nil
 	st.split(bare)
 	const steps = 8
 	for i := 1; i <= steps; i++ {

@@ -4,8 +4,11 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"os"
+	"path/filepath"
 	"runtime"
 	"slices"
+	"strings"
 	"sync"
 
 	"github.com/spf13/cobra"
@@ -26,7 +29,7 @@ type assessOptions struct {
 	rejectBeyond         float64
 	format, out          string
 	html, pdf, json, csv string
-	paper                string
+	paper, pictures      string
 	exitByVerdict        bool
 	supportBetween       string
 	streams              streams
@@ -72,6 +75,7 @@ func newAssess(s streams) *cobra.Command {
 	fl.StringVar(&o.html, "html", "", "also write the condition summary as one HTML file")
 	fl.StringVar(&o.pdf, "pdf", "", "also write the condition summary as a PDF")
 	fl.StringVar(&o.paper, "paper", string(fieldsheets.A4), "sheet of the PDF: A4 or Letter")
+	fl.StringVar(&o.pictures, "pictures", "", "also write the drawings of every cable into this folder, as SVG and PNG")
 	fl.StringVar(&o.json, "json", "", "also write the result as JSON")
 	fl.StringVar(&o.csv, "csv", "", "also write the result as CSV, one line a cable")
 	fl.StringVar(&o.supportBetween, "support-between", "", "how cables pass over supports between two spans: fixed, equal tension (saddle, sheave) or equal horizontal (roller carriage); replaces the column of the cables file")
@@ -251,6 +255,9 @@ func (o *assessOptions) write(print func(io.Writer, fieldsheets.Report) error, r
 			return err
 		}
 	}
+	if err := o.writePictures(r); err != nil {
+		return err
+	}
 	if o.out != "" {
 		return writeFile(o.out, func(w io.Writer) error { return print(w, r) })
 	}
@@ -259,6 +266,34 @@ func (o *assessOptions) write(print func(io.Writer, fieldsheets.Report) error, r
 
 func (o *assessOptions) writePDF(w io.Writer, r fieldsheets.Report) error {
 	return fieldsheets.WritePDF(w, r, fieldsheets.Paper(o.paper))
+}
+
+// writePictures writes every drawing into the folder that was named. Cables of one name in a file system that does not tell upper from
+// lower case get numbers.
+func (o *assessOptions) writePictures(r fieldsheets.Report) error {
+	if o.pictures == "" {
+		return nil
+	}
+	if err := os.MkdirAll(o.pictures, 0o755); err != nil {
+		return fmt.Errorf("cannot make the folder of the pictures: %w", err)
+	}
+	seen := map[string]int{}
+	for i := range r.Cables {
+		for _, p := range fieldsheets.Pictures(&r.Cables[i]) {
+			name := p.Name
+			key := strings.ToLower(name)
+			if seen[key]++; seen[key] > 1 {
+				name = fmt.Sprintf("%s-%d", name, seen[key])
+			}
+			if err := writeFile(filepath.Join(o.pictures, name+".svg"), p.WriteSVG); err != nil {
+				return err
+			}
+			if err := writeFile(filepath.Join(o.pictures, name+".png"), p.WritePNG); err != nil {
+				return err
+			}
+		}
+	}
+	return nil
 }
 
 // exitCode turns verdicts into an exit code when that was asked for.
