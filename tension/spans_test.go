@@ -158,8 +158,8 @@ func TestContinuousCableAgainstTruth(t *testing.T) {
 		l := threeSpans()
 		l.over = over
 		rng := rand.New(rand.NewPCG(11, 7))
-		var step, along, left, down, resultant, joint, separate score
-		false_, n := 0, runs(300, 1500)
+		var step, along, left, down, resultant, friction, joint, separate score
+		false_, n := 0, runs(300, 1000)
 		gain := 0.0
 		for range n {
 			st := l.states(t, lineWeight+lineWeightU*rng.NormFloat64())
@@ -175,6 +175,9 @@ func TestContinuousCableAgainstTruth(t *testing.T) {
 				left.add(s.Left, want[1])
 				down.add(s.Down, want[2])
 				resultant.add(s.Resultant, want[3])
+				if f := s.FrictionNeeded; f != nil && over == survey.BetweenEqualTension {
+					friction.add(*f, 0)
+				}
 			}
 			if *c[0].P < significance {
 				false_++
@@ -191,8 +194,10 @@ func TestContinuousCableAgainstTruth(t *testing.T) {
 		for _, s := range []struct {
 			name string
 			*score
-		}{{"tension step", &step}, {"force along", &along}, {"force to the left", &left}, {"force down", &down}, {"resultant", &resultant}, {"joint tension", &joint}, {"separate tension", &separate}} {
-			s.check(t, s.name, n)
+		}{{"tension step", &step}, {"force along", &along}, {"force to the left", &left}, {"force down", &down}, {"resultant", &resultant}, {"friction needed", &friction}, {"joint tension", &joint}, {"separate tension", &separate}} {
+			if s.n > 0 {
+				s.check(t, s.name, n)
+			}
 		}
 		rate := float64(false_) / float64(n)
 		t.Logf("%s: false alarms %.1f %%", over, 100*rate)
@@ -370,6 +375,9 @@ func TestOrderAndMirrorDoNotMatter(t *testing.T) {
 		}
 		for i := range 2 {
 			g, w := got[0].Supports[i], want[0].Supports[i]
+			if (g.FrictionNeeded == nil) != (w.FrictionNeeded == nil) || (g.FrictionNeeded != nil && math.Abs(g.FrictionNeeded.Value-w.FrictionNeeded.Value) > 1e-4*w.FrictionNeeded.U+1e-9) {
+				rt.Fatalf("support %d: friction %v, turned %v", i, w.FrictionNeeded, g.FrictionNeeded)
+			}
 			for _, c := range [][2]Quantity{{g.TensionStep, w.TensionStep}, {g.Along, w.Along}, {g.Left, w.Left}, {g.Down, w.Down}, {g.Resultant, w.Resultant}, {g.Bend, w.Bend}} {
 				if math.Abs(c[0].Value-c[1].Value) > 1e-4*c[1].U+1e-6*lineTension || relative(c[0].U, c[1].U, 1e-3) > 1e-3 {
 					rt.Fatalf("support %d: %+v, turned %+v", i, c[1], c[0])
