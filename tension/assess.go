@@ -48,6 +48,7 @@ type Case struct {
 	Design     *survey.Design // nil when there are no design values for this span
 	Conditions survey.Conditions
 	Fit        fit.Options // accuracy and rejection; the shape follows from the load
+	Sampling   *Sampling   // Monte Carlo beside the linear propagation; nil = none
 }
 
 // Assess fits the shape that the load asks for and works out forces, the comparison with the design, verdict, findings and
@@ -62,9 +63,15 @@ func Assess(c Case) (Assessment, error) {
 	j.fill()
 	j.compare()
 	j.decide()
+	if c.Sampling != nil {
+		j.a.MonteCarlo = j.simulate(*c.Sampling)
+	}
 	j.tell()
 	j.a.Budget = j.budget()
 	j.a.Drawing = j.drawing()
+	if c.Points.Span != "" {
+		j.a.forces = j.forces()
+	}
 	return j.a, nil
 }
 
