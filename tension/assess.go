@@ -48,6 +48,7 @@ type Case struct {
 	Design     *survey.Design // nil when there are no design values for this span
 	Conditions survey.Conditions
 	Fit        fit.Options // accuracy and rejection; the shape follows from the load
+	NoDrawing  bool        // leave Assessment.Drawing empty: of very many cables the pictures' points are most of the memory
 	Sampling   *Sampling   // Monte Carlo beside the linear propagation; nil = none
 }
 
@@ -68,7 +69,9 @@ func Assess(c Case) (Assessment, error) {
 	}
 	j.tell()
 	j.a.Budget = j.budget()
-	j.a.Drawing = j.drawing()
+	if !c.NoDrawing {
+		j.a.Drawing = j.drawing()
+	}
 	if c.Points.Span != "" {
 		j.a.forces = j.forces()
 	}

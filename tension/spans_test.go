@@ -182,6 +182,10 @@ func TestContinuousCableAgainstTruth(t *testing.T) {
 			if *c[0].P < significance {
 				false_++
 			}
+			if s := c[0].Spans; over == survey.BetweenEqualHorizontal && s[0].Joint != nil && s[1].Joint != nil && s[2].Joint != nil &&
+				math.Max(relative(s[0].Joint.Value, s[1].Joint.Value, 0), relative(s[1].Joint.Value, s[2].Joint.Value, 0)) > 1e-9 {
+				t.Fatalf("joint tensions over rollers differ: %v, %v, %v", s[0].Joint, s[1].Joint, s[2].Joint)
+			}
 			for i, sp := range c[0].Spans {
 				separate.add(sp.Separate, st[i].H)
 				if *c[0].P >= significance {

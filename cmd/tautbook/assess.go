@@ -83,23 +83,32 @@ func newAssess(s streams) *cobra.Command {
 	return cmd
 }
 
-func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
-	write, err := writerFor(o.format, o.streams)
-	if err != nil {
-		return err
-	}
+// checked refuses values that no flag can have; it gives how cables pass over supports, "" for as filed.
+func (o *assessOptions) checked() (over survey.SupportBetween, err error) {
 	if !(o.rejectBeyond >= 0) {
-		return usageError{fmt.Errorf("--reject-beyond is %g, expected 0 or more", o.rejectBeyond)}
+		return "", usageError{fmt.Errorf("--reject-beyond is %g, expected 0 or more", o.rejectBeyond)}
 	}
 	if p := fieldsheets.Paper(o.paper); p != fieldsheets.A4 && p != fieldsheets.Letter {
-		return usageError{fmt.Errorf("--paper is %q, expected A4 or Letter", o.paper)}
+		return "", usageError{fmt.Errorf("--paper is %q, expected A4 or Letter", o.paper)}
 	}
 	over, other, err := survey.ParseSupportBetween(o.supportBetween)
 	if err == nil && over != other {
 		err = errors.New("one word holds for every support; for each end of a span use the column support_between of the cables file")
 	}
 	if err != nil {
-		return usageError{fmt.Errorf("--support-between: %w", err)}
+		return "", usageError{fmt.Errorf("--support-between: %w", err)}
+	}
+	return over, nil
+}
+
+func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
+	write, err := writerFor(o.format, o.streams)
+	if err != nil {
+		return err
+	}
+	over, err := o.checked()
+	if err != nil {
+		return err
 	}
 	sampling, err := o.sampling(cmd)
 	if err != nil {
@@ -127,9 +136,10 @@ func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
 	shown := newProgress(o.streams)
 	if sampling != nil {
 		sampling.Progress = shown.add
-		for i := range cases {
-			cases[i].Sampling = sampling
-		}
+	}
+	for i := range cases {
+		cases[i].Sampling = sampling
+		cases[i].NoDrawing = !o.draws()
 	}
 	cables, err := assessAll(cases)
 	shown.end()
@@ -179,11 +189,17 @@ func (o *assessOptions) plainLoad() (*survey.Design, error) {
 	return d, nil
 }
 
-// casesOf pairs every surveyed span with its design values.
+// draws reports whether some sheet has pictures.
+func (o *assessOptions) draws() bool {
+	return o.format == "html" || o.html != "" || o.pdf != "" || o.pictures != ""
+}
+
+// casesOf pairs every surveyed span with its design values. The points go from the surveys to the cases.
 func casesOf(in input, plain *survey.Design, opts fit.Options) (cases []tension.Case) {
 	index := survey.IndexDesigns(in.designs)
 	for _, sv := range in.surveys {
-		for _, sp := range sv.Spans {
+		for i, sp := range sv.Spans {
+			sv.Spans[i].Points = nil // the case has them now, and lets go of them when it is done
 			d := index.Of(sv.Conditions.Structure, sp.Cable, sp.Span)
 			if d == nil {
 				d = plain
@@ -209,6 +225,7 @@ func assessAll(cases []tension.Case) ([]tension.Assessment, error) {
 				if out[i], errs[i] = tension.Assess(cases[i]); errs[i] != nil {
 					errs[i] = fmt.Errorf("%s: %w", cases[i].File, errs[i])
 				}
+				cases[i].Points = survey.SpanPoints{} // many files of points do not fit in memory beside their results
 			}
 		})
 	}
