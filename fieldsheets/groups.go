@@ -91,6 +91,9 @@ func groups(a *tension.Assessment) []group {
 	if a.Reconciled != nil {
 		out = append(out, evidenceGroup(a))
 	}
+	if a.MonteCarlo != nil {
+		out = append(out, monteCarloGroup(a.MonteCarlo))
+	}
 	return append(out, strengthGroup(a), loadGroup(a), shapeGroup(a))
 }
 

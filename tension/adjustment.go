@@ -198,10 +198,3 @@ func (s *adjusted) test(g *mat.VecDense) (w, size, uSize float64) {
 	size = -mat.Dot(g, s.k) / v
 	return size * math.Sqrt(v), size, 1 / math.Sqrt(v)
 }
-
-func dot(a, b []float64) (sum float64) {
-	for i := range a {
-		sum += a[i] * b[i]
-	}
-	return sum
-}

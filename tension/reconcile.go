@@ -10,11 +10,11 @@ import (
 	"tautbook/survey"
 )
 
-// falseAlarm is the probability with which the global test speaks although nothing is wrong; power is that with which it finds an error of
+// falseAlarm is the probability with which the global test speaks although nothing is wrong; testPower is that with which it finds an error of
 // the size that Piece.Detects names (Baarda 1968 uses the same 80 %; 5 % goes with the verdict's 95 %).
 const (
 	falseAlarm = 1 - sure
-	power      = 0.80
+	testPower  = 0.80
 )
 
 // evidenceRow is one condition of the reconciliation.
@@ -294,7 +294,7 @@ func (r *Reconciled) piece(name string) Piece {
 // detectables are the sizes for few degrees of freedom, worked out once each.
 var detectables = func() (out [12]func() float64) {
 	for i := range out {
-		out[i] = sync.OnceValue(func() float64 { return math.Sqrt(noncentrality(i, falseAlarm, power)) })
+		out[i] = sync.OnceValue(func() float64 { return math.Sqrt(noncentrality(i, falseAlarm, testPower)) })
 	}
 	return out
 }()
@@ -304,7 +304,7 @@ func detectable(dof int) float64 {
 	if dof < len(detectables) {
 		return detectables[dof]()
 	}
-	return math.Sqrt(noncentrality(dof, falseAlarm, power))
+	return math.Sqrt(noncentrality(dof, falseAlarm, testPower))
 }
 
 // noncentrality is that of the chi-square whose probability of passing the limit at the given false alarm is the given power: the size of

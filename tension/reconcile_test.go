@@ -188,7 +188,7 @@ func TestOddPieceIsNamed(t *testing.T) {
 			n := float64(runs)
 			t.Logf("%-40s %g x detectable (%.3g): found %.1f %%, named %.1f %%, another named %.1f %%", c.piece, times, detects, 100*float64(found)/n, 100*float64(named)/n, 100*float64(other)/n)
 			spare := 3 * math.Sqrt(0.2*0.8/n)
-			if rate := float64(found) / n; times == 1 && math.Abs(rate-power) > spare+0.03 {
+			if rate := float64(found) / n; times == 1 && math.Abs(rate-testPower) > spare+0.03 {
 				t.Errorf("%s: found %.1f %% at the detectable size", c.piece, 100*rate)
 			}
 			if rate := float64(named) / n; times == 2 && rate < 0.7 {
