@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"strings"
 
 	"tautbook/fit"
 	"tautbook/survey"
@@ -13,6 +14,7 @@ import (
 // readInput is one reading among the inputs.
 type readInput struct {
 	survey.Reading
+	name                string  // what was read and by what, told from the others
 	at, lifted, bending int     // places in the vector; 0 = none
 	weight              float64 // share in the tension that all readings give together; 0 = says nothing of it
 	h                   Quantity
@@ -39,8 +41,8 @@ func (in *inputs) read(readings []survey.Reading, d *survey.Design) {
 		if r.Of == survey.NaturalFrequency && r.Bending.Value == 0 && d != nil && d.BendingStiffness != nil {
 			r.Bending = *d.BendingStiffness
 		}
-		i := readInput{Reading: r}
-		i.at = add(in.withModel(r), "reading: "+readingName(r), Piece{Unit: r.Unit(), Given: r.Value}.Scale())
+		i := readInput{Reading: r, name: in.readingName(r)}
+		i.at = add(in.withModel(r), pieceReading+i.name, Piece{Unit: r.Unit(), Given: r.Value}.Scale())
 		if r.Lifted.Value > 0 {
 			i.lifted = add(r.Lifted, "lift of the anchor", Millimetre)
 		}
@@ -69,11 +71,22 @@ func (in *inputs) withModel(r survey.Reading) Quantity {
 	return q
 }
 
-func readingName(r survey.Reading) string {
-	if r.How == "" {
-		return r.What()
+// readingName is what was read and by what; a second reading of that name is numbered.
+func (in *inputs) readingName(r survey.Reading) string {
+	name := r.What()
+	if r.How != "" {
+		name += ", " + r.How
 	}
-	return r.What() + ", " + r.How
+	same := 1
+	for _, other := range in.readings {
+		if other.name == name || strings.HasPrefix(other.name, name+" (") {
+			same++
+		}
+	}
+	if same > 1 {
+		name += fmt.Sprintf(" (%d)", same)
+	}
+	return name
 }
 
 // sight is the measured curve for one value of the inputs, against which readings are held. With it the load follows from the

@@ -101,6 +101,13 @@ func TestReadingsTogether(t *testing.T) {
 	if r := apart.Reconciled; r == nil || r.ChiSquare < 199 || r.Outcome == Agrees {
 		t.Errorf("reconciled %+v", r)
 	}
+	same := s.conditions(survey.LoadsAsFiled, 1)
+	for _, v := range []float64{st.H, 1.5 * st.H} {
+		same.Readings = append(same.Readings, survey.Reading{Of: survey.HorizontalTension, Value: *q(v, 300), How: "cell"})
+	}
+	if r := s.assess(t, rand.New(rand.NewPCG(6, 6)), same).Reconciled; r.Without != pieceReading+"horizontal tension, cell (2)" || r.HorizontalTension == nil {
+		t.Errorf("of two readings by one name the second is wrong: %+v", r)
+	}
 	told := false
 	for _, f := range apart.Findings {
 		told = told || f.ID == "readings-differ"

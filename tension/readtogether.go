@@ -24,7 +24,7 @@ func (in *inputs) weigh() (chance float64) {
 	load := in.load(in.x)
 	near := (load.self + load.deck) / in.x[inCurvature]
 	if !(near > 0) {
-		near = 1000 // without a load on file a force reading is straight in the tension from anywhere
+		return 1 // without a load on file nothing is worked out
 	}
 	at := in.sight(in.x)
 	var used []*readInput
@@ -166,7 +166,7 @@ func (in *inputs) readNames() (of, how string) {
 	var names []string
 	for _, r := range in.readings {
 		if r.weight != 0 {
-			names = append(names, readingName(r.Reading))
+			names = append(names, r.name)
 			of, how = r.What(), r.How
 		}
 	}
@@ -180,7 +180,7 @@ func (in *inputs) readNames() (of, how string) {
 func (in *inputs) unusable() (out []error) {
 	for _, r := range in.readings {
 		if r.unused != "" {
-			out = append(out, errors.New(readingName(r.Reading)+": "+r.unused))
+			out = append(out, errors.New(r.name+": "+r.unused))
 		}
 	}
 	return out

@@ -49,13 +49,11 @@ func (j *judgement) evidenceRows(without string) (rows []evidenceRow) {
 	for i := range j.in.readings {
 		r := &j.in.readings[i]
 		if r.unused == "" {
-			add(evidenceRow{name: pieceOf(r), reading: r})
+			add(evidenceRow{name: pieceReading + r.name, reading: r})
 		}
 	}
 	return rows
 }
-
-func pieceOf(r *readInput) string { return pieceReading + readingName(r.Reading) }
 
 // reconcile adjusts all evidence and finds the piece that disagrees. It is silent when nothing checks anything.
 func (j *judgement) reconcile() {
@@ -275,8 +273,12 @@ func (r *Reconciled) judge() {
 			break
 		}
 	}
-	r.Outcome = map[int]Outcome{0: SeveralWrong, 1: OneDisagrees}[min(len(r.Suspected), 2)]
-	if r.Outcome == "" {
+	switch len(r.Suspected) {
+	case 0:
+		r.Outcome = SeveralWrong
+	case 1:
+		r.Outcome = OneDisagrees
+	default:
 		r.Outcome = CannotTell
 	}
 }
