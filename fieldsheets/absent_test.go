@@ -37,8 +37,15 @@ var absences = []struct {
 		}
 	}},
 	{"unstressed length and design temperature", func(a *tension.Assessment) { a.UnstressedLength, a.AtDesignTemperature = nil, nil }},
-	{"implied loads", func(a *tension.Assessment) { a.ImpliedLoad = &tension.ImpliedLoad{Filed: *q(37.9, 0.4)} }},
-	{"all of the implied load, stiffness", func(a *tension.Assessment) { a.ImpliedLoad, a.Stiffness = nil, nil }},
+	{"implied loads, reconciled figures", func(a *tension.Assessment) {
+		a.ImpliedLoad = &tension.ImpliedLoad{Filed: *q(37.9, 0.4)}
+		if a.Reconciled != nil {
+			r := *a.Reconciled
+			r.HorizontalTension, r.Load, r.UnstressedLength, r.Without, r.Covariance = nil, nil, nil, "", nil
+			a.Reconciled = &r
+		}
+	}},
+	{"all of the implied load, stiffness, reconciliation", func(a *tension.Assessment) { a.ImpliedLoad, a.Stiffness, a.Reconciled = nil, nil, nil }},
 	{"constant, low point, budget, findings, drawing", func(a *tension.Assessment) {
 		a.Fit.CatenaryConstant, a.Fit.LowPointStation, a.Fit.LowPointElevation = nil, nil, nil
 		a.Budget, a.Findings, a.Drawing = []tension.BudgetLine{}, []tension.Finding{}, tension.Drawing{}

@@ -115,6 +115,15 @@ func direct(get func(d *tension.Direct) *tension.Quantity) func(a *tension.Asses
 	}
 }
 
+func reconciled(get func(r *tension.Reconciled) *tension.Quantity) func(a *tension.Assessment) *tension.Quantity {
+	return func(a *tension.Assessment) *tension.Quantity {
+		if a.Reconciled == nil {
+			return nil
+		}
+		return get(a.Reconciled)
+	}
+}
+
 // next is a figure of the support toward the next span.
 func next(get func(s *tension.SupportForce) *tension.Quantity) func(a *tension.Assessment) *tension.Quantity {
 	return func(a *tension.Assessment) *tension.Quantity {
@@ -189,6 +198,9 @@ func makeColumns() (out []csvColumn) {
 		{"direct_reading_horizontal_tension_N", direct(func(d *tension.Direct) *tension.Quantity { return &d.HorizontalTension })},
 		{"direct_reading_ratio", direct(func(d *tension.Direct) *tension.Quantity { return d.Ratio })},
 		{"direct_reading_load_factor", direct(func(d *tension.Direct) *tension.Quantity { return &d.LoadFactor })},
+		{"reconciled_horizontal_tension_N", reconciled(func(r *tension.Reconciled) *tension.Quantity { return r.HorizontalTension })},
+		{"reconciled_load_N_per_m", reconciled(func(r *tension.Reconciled) *tension.Quantity { return r.Load })},
+		{"reconciled_unstressed_length_m", reconciled(func(r *tension.Reconciled) *tension.Quantity { return r.UnstressedLength })},
 		{"next_support_tension_difference_N", next(func(s *tension.SupportForce) *tension.Quantity { return &s.TensionStep })},
 		{"next_support_resultant_N", next(func(s *tension.SupportForce) *tension.Quantity { return &s.Resultant })},
 		{"next_support_resultant_from_vertical_deg", next(func(s *tension.SupportForce) *tension.Quantity { return &s.ResultantFromDown })},
@@ -206,6 +218,12 @@ func makeColumns() (out []csvColumn) {
 		}
 		return &a.Strength.Use
 	})...)
+	add(textColumn("evidence", func(a *tension.Assessment) string {
+		if a.Reconciled == nil {
+			return ""
+		}
+		return a.Reconciled.Says
+	}))
 	add(textColumn("reason", func(a *tension.Assessment) string { return a.Reason }), textColumn("next_step", func(a *tension.Assessment) string { return a.NextStep }),
 		csvColumn{"not_determined", func(a *tension.Assessment) string { return strings.Join(missing(a), "; ") }})
 	return out

@@ -88,6 +88,9 @@ func groups(a *tension.Assessment) []group {
 	if a.Direct != nil {
 		out = append(out, directGroup(a))
 	}
+	if a.Reconciled != nil {
+		out = append(out, evidenceGroup(a))
+	}
 	if a.MonteCarlo != nil {
 		out = append(out, monteCarloGroup(a.MonteCarlo))
 	}
@@ -170,6 +173,12 @@ func comparison(a *tension.Assessment) group {
 	if i := a.ImpliedLoad; i != nil {
 		g.Rows = append(g.Rows, row{"Load implied by expected H", or(i.IfTensionAsExpected, tension.NewtonPerMetre.Figure, unknown(tooFlat))},
 			row{"Load implied by length", or(i.IfLengthAsDesigned, tension.NewtonPerMetre.Figure, unknown(noRival))})
+		if i.IfTensionAsRead != nil {
+			g.Rows = append(g.Rows, row{"Load implied by the reading", tension.NewtonPerMetre.Figure(*i.IfTensionAsRead)})
+		}
+		if i.Together != "" {
+			g.Rows = append(g.Rows, row{"The implied loads together", cleanSentence(i.Together)})
+		}
 	} else {
 		g.Rows = append(g.Rows, row{"Load implied by the shape", unknown(whyNoTension(a))})
 	}

@@ -77,6 +77,7 @@ type Conditions struct {
 	Crew        string            `json:"crew"`
 	Listed      []RecordedLoad    `json:"listed_loads"` // seen on the day beside the filed loads
 	Local       []RecordedLocal   `json:"local_loads"`  // seen on the day, hanging at one place
+	Readings    []RecordedReading `json:"readings"`     // beside the points
 	Notes       []string          `json:"notes"`
 }
 
@@ -87,6 +88,16 @@ type RecordedLoad struct {
 	Load   survey.Quantity `json:"load_N_per_m"`
 	Spread survey.Spread   `json:"spread"`
 	What   string          `json:"what"`
+}
+
+// RecordedReading is one reading of the day, as it was read; Cable and Span are "" for every cable and every span.
+type RecordedReading struct {
+	Cable string           `json:"cable"`
+	Span  string           `json:"span"`
+	What  string           `json:"what"`  // what was read, with mode or number of returns
+	Value tension.Quantity `json:"value"` // in the SI unit that is named
+	Unit  string           `json:"unit"`
+	How   string           `json:"how"`
 }
 
 // RecordedLocal is one line of the record of loads for a load at one place, as it was read; P is nil when its size is not known.
@@ -134,12 +145,15 @@ func NewSurveyFile(sv *survey.Survey) SurveyFile {
 	f := SurveyFile{File: sv.File, SHA256: sv.SHA256, Encoding: sv.Encoding, Separator: sv.Separator, Decimal: sv.Decimal, LengthUnit: sv.LengthUnit,
 		PointsRead: sv.PointsRead, Columns: noNil(sv.Header), Codes: noNil(sv.Codes), Guesses: noNil(sv.Guesses), Notices: noNil(sv.Notices),
 		Conditions: Conditions{Structure: c.Structure, Temperature: c.CableTemperature, Wind: c.Wind, Loads: c.Loads, Instrument: c.Instrument,
-			Crew: c.Crew, Listed: []RecordedLoad{}, Local: []RecordedLocal{}, Notes: noNil(c.Notes)}}
+			Crew: c.Crew, Listed: []RecordedLoad{}, Local: []RecordedLocal{}, Readings: []RecordedReading{}, Notes: noNil(c.Notes)}}
 	for _, l := range c.Listed {
 		f.Conditions.Listed = append(f.Conditions.Listed, RecordedLoad(l))
 	}
 	for _, l := range c.Local {
 		f.Conditions.Local = append(f.Conditions.Local, RecordedLocal(l))
+	}
+	for _, r := range c.Readings {
+		f.Conditions.Readings = append(f.Conditions.Readings, RecordedReading{Cable: r.Cable, Span: r.Span, What: r.What(), Value: r.Value, Unit: r.Unit(), How: r.How})
 	}
 	if !c.Date.IsZero() {
 		f.Conditions.Date = c.Date.Format(time.DateOnly)

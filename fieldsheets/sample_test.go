@@ -42,15 +42,19 @@ func full(cable string, v tension.Verdict) tension.Assessment {
 		HorizontalTension: &h,
 		Reactions: []tension.Reaction{{Support: "A", Surveyed: true, Station: 0, Elevation: 420, Horizontal: h, Vertical: *q(1503, 22), Tension: *q(17230, 260), SlopeDeg: *q(-5.005, 0.005)},
 			{Support: "B", Surveyed: true, Station: 96, Elevation: 421.8, Horizontal: h, Vertical: *q(2148, 32), Tension: *q(17290, 260), SlopeDeg: *q(7.135, 0.005)}},
-		ImpliedLoad:         &tension.ImpliedLoad{IfTensionAsExpected: q(47.4, 0.6), IfLengthAsDesigned: q(68.5, 2), Filed: *q(37.9, 0.4)},
+		ImpliedLoad:         &tension.ImpliedLoad{IfTensionAsExpected: q(47.4, 0.6), IfTensionAsRead: q(38.2, 0.8), IfLengthAsDesigned: q(68.5, 2), Together: "What they say in a sentence.", Filed: *q(37.9, 0.4)},
 		UnstressedLength:    &tension.LengthSummary{Today: *q(96.07, 0.01), Design: *q(95.975, 0.005), Difference: *q(0.095, 0.007)},
 		AtDesignTemperature: q(17500, 260),
 		Expected: &tension.Expected{HorizontalTension: *q(21480, 265), UnderFiledLoad: *q(21480, 265), MeasuredSagMid: *q(2.5507, 0.0021), LoadRatio: *q(1, 0), SagMid: *q(2.037, 0.039),
 			Ratio: q(0.799, 0.015), PSlack: 0.9999, PInside: 0.0001, SlackBelow: 0.9, OverloadAbove: 1.1, LimitsFrom: "cables file", SpanFrom: "surveyed supports", TemperatureShift: 8, Uncorrected: q(0.78, 0.01)},
 		Rival:     &tension.Rival{HorizontalTension: *q(31000, 900), Ratio: *q(1.442, 0.032), LoadFactor: *q(1.81, 0.07), ExtraLoad: *q(30.7, 2.6), PLoadMore: 0.9999},
 		Stiffness: &tension.Stiffness{Lambda2: 18.9, SagPerLoad: 0.39, TensionPerLoad: 0.61, TensionPerDegree: -65, Meaning: "meaning"},
-		Strength:  &tension.Strength{Use: *q(0.432, 0.006), Permitted: 40000, GreatestT: *q(17290, 260), RivalUse: q(0.78, 0.02), RivalPOver: new(float64), SafetyFactor: 4},
-		Verdict:   v, Reason: "The reason in a sentence with 17.16 ± 0.51 kN.", NextStep: "The next step in a sentence.",
+		Reconciled: &tension.Reconciled{HorizontalTension: q(17200, 240), Load: q(38.0, 0.35), UnstressedLength: q(96.068, 0.009), Covariance: [][]float64{{57600, 80, -1}, {80, 0.1225, -0.001}, {-1, -0.001, 8.1e-05}},
+			Pieces: []tension.Piece{{Name: "load on record", Unit: "N/m", Given: *q(37.9, 0.4), Needed: number(68.5), UApart: number(2), Residual: number(15.3), Detects: number(6.2)},
+				{Name: "reading: tension at A, load cell", Unit: "N", Given: *q(17300, 350)}, {Name: "shape (curvature)", Unit: "1/m", Given: *q(0.00177, 2e-6), Needed: number(0.00176), UApart: number(1e-5), Residual: number(-1), Detects: number(3e-5)}},
+			ChiSquare: 234, DegreesOfFreedom: 2, Chance: 1e-9, Outcome: tension.OneDisagrees, Without: "load on record", Suspected: []string{"load on record"}, LoadOnRecord: q(37.9, 0.4), Looked: true, Says: "What all evidence says in a sentence."},
+		Strength: &tension.Strength{Use: *q(0.432, 0.006), Permitted: 40000, GreatestT: *q(17290, 260), RivalUse: q(0.78, 0.02), RivalPOver: new(float64), SafetyFactor: 4},
+		Verdict:  v, Reason: "The reason in a sentence with 17.16 ± 0.51 kN.", NextStep: "The next step in a sentence.",
 		Findings: []tension.Finding{{ID: "note", Level: tension.Note, Text: "Something to know."}, {ID: "act", Level: tension.Act, Text: "Something to do."}, {ID: "look", Level: tension.Look, Text: "Something to look at."}},
 		Budget:   []tension.BudgetLine{{Input: "self weight on file", Value: "38.00 N/m", U: "0.40 N/m", OnH: 180, OnR: 0.009, Share: 0.7}, {Input: "shape of the cable (survey)", Value: "21 points", U: "rms 2.8 mm", OnH: 20, OnR: 0.001, Share: 0.3}},
 		Drawing:  drawn()}
@@ -62,7 +66,7 @@ func bare(cable string, v tension.Verdict) tension.Assessment {
 	a.Temperature, a.HorizontalTension, a.Reactions, a.ImpliedLoad, a.UnstressedLength, a.AtDesignTemperature = nil, nil, []tension.Reaction{}, nil, nil, nil
 	a.Expected, a.Rival, a.Stiffness, a.Strength, a.Budget, a.Findings = nil, nil, nil, nil, []tension.BudgetLine{}, []tension.Finding{}
 	a.Fit.CatenaryConstant, a.Fit.LowPointStation, a.Fit.LowPointElevation, a.Fit.Rejected, a.Fit.Alternatives = nil, nil, nil, []fit.Suspect{}, []fit.Alternative{}
-	a.Load = tension.LoadSummary{Record: survey.LoadsNotChecked}
+	a.Load, a.Reconciled = tension.LoadSummary{Record: survey.LoadsNotChecked}, nil
 	a.Drawing.Expected, a.Drawing.Dropped = nil, nil
 	return a
 }
@@ -119,3 +123,5 @@ func sampleReport() Report {
 	return NewReport(Tool{Name: "tautbook", Version: "test"}, time.Date(2026, 6, 12, 8, 30, 0, 0, time.UTC),
 		Input{Surveys: []*survey.Survey{sampleSurvey()}, CablesFile: "cables.csv", CablesNotices: []survey.Notice{{File: "cables.csv", Line: 1, Text: "column not used"}}, Continuous: []tension.Continuous{joined}}, cables)
 }
+
+func number(v float64) *float64 { return &v }

@@ -181,6 +181,9 @@ func (p *textPrinter) conditions(f SurveyFile) {
 	for _, l := range c.Local {
 		p.wrapped("  load     ", localText(l))
 	}
+	for _, r := range c.Readings {
+		p.wrapped("  reading  ", readingText(r))
+	}
 	for _, n := range c.Notes {
 		p.wrapped("  note     ", clean(n))
 	}
@@ -198,6 +201,12 @@ func localText(l RecordedLocal) string {
 		size = tension.ForceScale(l.P.Value).Figure(*l.P)
 	}
 	return fmt.Sprintf("%s on %s, %.3f m from A: %s", size, onCable(l.Cable, l.Span), l.Station, orWords(l.What))
+}
+
+// readingText is one reading, with the cable that it is of.
+func readingText(r RecordedReading) string {
+	scale := tension.Piece{Unit: r.Unit, Given: r.Value}.Scale()
+	return fmt.Sprintf("%s of %s: %s, by %s", r.What, onCable(r.Cable, r.Span), scale.Figure(r.Value), orWords(r.How))
 }
 
 func onCable(cable, span string) string {

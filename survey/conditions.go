@@ -32,7 +32,7 @@ func conditionKey(key string) string {
 //	loads         as filed | listed | not checked
 //	load          CABLE[/SPAN]; 180 +- 10 N/m; along cable | along deck; what it is   (may be given several times)
 //	load          CABLE[/SPAN]; 3.2 +- 0.2 kN | unknown; at 12.4 m; what it is   (hangs at one place, that far from support A along the chord)
-//	reading       CABLE[/SPAN]; tension at A | tension at B | horizontal tension; 30.7 +- 0.5 kN; load cell   (one a span)
+//	reading       CABLE[/SPAN]; what was read; 30.7 +- 0.5 kN; what read it   (may be given several times; see Reading)
 //	supports      on the cable | beside the cable: whether the surveyed marks A and B lie on its centre line (default beside)
 //	accuracy      standard deviation of a point: 3 mm, or horizontal 3 mm, vertical 2 mm
 //	unit          of coordinates
@@ -283,43 +283,6 @@ func cutCable(text string) (cable, span string) {
 	}
 	cable, span, _ = strings.Cut(text, "/")
 	return strings.TrimSpace(cable), strings.TrimSpace(span)
-}
-
-// addReading reads one direct reading of tension.
-func (c *Conditions) addReading(value string) error {
-	parts := strings.SplitN(value, ";", 4)
-	for i := range parts {
-		parts[i] = strings.TrimSpace(parts[i])
-	}
-	const form = "CABLE; tension at A (or tension at B, horizontal tension); 30.7 +- 0.5 kN; what read it"
-	if len(parts) < 3 {
-		return wrong(value, form, "")
-	}
-	r := Reading{Of: ReadOf(strings.ReplaceAll(strings.ReplaceAll(strings.ToLower(parts[1]), "at a", "at A"), "at b", "at B"))}
-	r.Cable, r.Span = cutCable(parts[0])
-	switch r.Of {
-	case HorizontalTension, TensionAtA, TensionAtB:
-	default:
-		return wrong(parts[1], "tension at A, tension at B or horizontal tension in the second place: "+form, "")
-	}
-	q, err := ParseQuantity(parts[2], Force)
-	if err != nil {
-		return err
-	}
-	if !(q.Value > 0) || !(q.U > 0) {
-		return wrong(parts[2], "a tension above 0 with its standard uncertainty", "write for example \"30.7 +- 0.5 kN\"")
-	}
-	r.Value = q
-	if len(parts) == 4 {
-		r.How = parts[3]
-	}
-	for _, other := range c.Readings {
-		if other.On(r.Cable, r.Span) || r.On(other.Cable, other.Span) {
-			return wrong(value, "one reading a span", "keep the better one, or their mean")
-		}
-	}
-	c.Readings = append(c.Readings, r)
-	return nil
 }
 
 // check finds contradictions that only show at the end.

@@ -44,7 +44,7 @@ id;x;y;z;code
 			c.Listed[1] != (ListedLoad{"", "", Quantity{-12, 0}, AlongCable, ""}) {
 			t.Errorf("loads %+v", c.Listed)
 		}
-		if len(c.Readings) != 1 || c.Readings[0] != (Reading{"main", "2", TensionAtA, Quantity{30700, 500}, "load cell 3"}) {
+		if len(c.Readings) != 1 || c.Readings[0] != (Reading{Cable: "main", Span: "2", Of: TensionAtA, Value: Quantity{30700, 500}, How: "load cell 3"}) {
 			t.Errorf("readings %+v", c.Readings)
 		}
 		if strings.Join(c.Notes, "|") != "fog until nine|weather app: none" {

@@ -96,7 +96,7 @@ func finiteConditions(t *testing.T, c Conditions) {
 		finite(t, "load", l.Load.Value, l.Load.U)
 	}
 	for _, r := range c.Readings {
-		finite(t, "reading", r.Value.Value, r.Value.U)
+		finite(t, "reading", r.Value.Value, r.Value.U, r.Lifted.Value, r.Lifted.U, r.Bending.Value, r.Bending.U)
 	}
 	if len(c.Listed) > 0 && c.Loads != LoadsListed {
 		t.Fatalf("%d loads listed, record %q", len(c.Listed), c.Loads)
@@ -186,7 +186,8 @@ func FuzzReadDesigns(f *testing.F) {
 // A condition is stored finite or refused; a refused one changes nothing that can be seen by a second try.
 func FuzzConditions(f *testing.F) {
 	for _, s := range [][2]string{{"temperature", "12 +- 2 degC"}, {"accuracy", "horizontal 3 mm, vertical 2 mm"}, {"load", "w1/2; 180 +- 10 N/m; along deck; pipe"},
-		{"reading", "w1; tension at A; 30.7 +- 0.5 kN; load cell"}, {"loads", "as filed"}, {"date", "2026-06-11 10:30"}, {"unit", "us-ft"}, {"note", ""}, {"crew", "\x1b[2J"}} {
+		{"reading", "w1; tension at A; 30.7 +- 0.5 kN; load cell"}, {"reading", "w1; frequency, mode 3, clamped, bending stiffness 4 +- 1 kN m2; 1.21 +- 0.01 Hz"},
+		{"reading", "w1; lift-off at B, lifted 2 mm; 30 +- 1 kN"}, {"reading", "w1; wave return 3; 4.2 +- 0.05 s"}, {"loads", "as filed"}, {"date", "2026-06-11 10:30"}, {"unit", "us-ft"}, {"note", ""}, {"crew", "\x1b[2J"}} {
 		f.Add(s[0], s[1])
 	}
 	f.Fuzz(func(t *testing.T, key, text string) {
@@ -234,7 +235,7 @@ func FuzzParseQuantity(f *testing.F) {
 	})
 }
 
-var dimensions = []Dimension{Length, Force, ForcePerLength, Temperature, PerTemperature, Fraction}
+var dimensions = []Dimension{Length, Force, ForcePerLength, Temperature, PerTemperature, Fraction, Frequency, Duration, Bending}
 
 // A code rule says one thing: cable exactly when the role is on a cable; and its code resolves to what it says.
 func FuzzParseCodeRule(f *testing.F) {

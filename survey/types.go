@@ -164,24 +164,6 @@ type LocalLoad struct {
 	What        string    // free text, for example "signal box"
 }
 
-// ReadOf says what a direct reading of tension is of.
-type ReadOf string
-
-// What can be read directly.
-const (
-	HorizontalTension ReadOf = "horizontal tension"
-	TensionAtA        ReadOf = "tension at A" // along the cable at support A
-	TensionAtB        ReadOf = "tension at B"
-)
-
-// Reading is a tension read directly on the day: a load cell, a jack lift-off.
-type Reading struct {
-	Cable, Span string // "" = the only span of the survey
-	Of          ReadOf
-	Value       Quantity // N, with its standard uncertainty
-	How         string   // free text, for example "load cell 3"
-}
-
 // Accuracy is the instrument's stated standard deviation of one point, m.
 type Accuracy struct {
 	Horizontal float64 // each of E and N

@@ -18,6 +18,8 @@ const (
 	PerTemperature Dimension = "expansion"
 	Bending        Dimension = "bending stiffness"
 	Fraction       Dimension = "fraction"
+	Frequency      Dimension = "frequency"
+	Duration       Dimension = "time"
 )
 
 // unit converts to SI: SI = written x factor + offset.
@@ -51,7 +53,9 @@ var units = map[Dimension]map[string]unit{
 	PerTemperature: expansions(),
 	Bending: {"nm2": {1, 0}, "nm^2": {1, 0}, "nm²": {1, 0}, "n*m2": {1, 0}, "knm2": {1e3, 0}, "knm^2": {1e3, 0}, "knm²": {1e3, 0},
 		"lbfft2": {poundF * foot * foot, 0}, "lbfft^2": {poundF * foot * foot, 0}, "kipft2": {1e3 * poundF * foot * foot, 0}, "kipft^2": {1e3 * poundF * foot * foot, 0}},
-	Fraction: {"%": {0.01, 0}, "1": {1, 0}},
+	Fraction:  {"%": {0.01, 0}, "1": {1, 0}},
+	Frequency: {"hz": {1, 0}, "1/s": {1, 0}, "1/min": {1.0 / 60, 0}},
+	Duration:  {"s": {1, 0}, "ms": {1e-3, 0}},
 }
 
 // expansions are the units of thermal expansion: a power of ten per degree, in the usual spellings.
@@ -77,10 +81,12 @@ var spellings = map[Dimension]string{
 	PerTemperature: "1/degC, 1e-6/degC, 1/K, 1e-6/K or 1/degF",
 	Bending:        "N m2, kN m2, lbf ft2 or kip ft2",
 	Fraction:       "%",
+	Frequency:      "Hz, 1/s or 1/min",
+	Duration:       "s or ms",
 }
 
 // usual is the unit that a message suggests.
-var usual = map[Dimension]string{Length: "mm", Force: "kN", ForcePerLength: "N/m", Temperature: "degC", PerTemperature: "1e-6/degC", Bending: "kN m2", Fraction: "%"}
+var usual = map[Dimension]string{Length: "mm", Force: "kN", ForcePerLength: "N/m", Temperature: "degC", PerTemperature: "1e-6/degC", Bending: "kN m2", Fraction: "%", Frequency: "Hz", Duration: "s"}
 
 // findUnit looks a spelling up. MN and mN differ only by case: a milli-newton is not a unit of cables and is refused.
 func findUnit(text string, d Dimension) (unit, bool) {

@@ -127,7 +127,7 @@ func TestEveryUnit(t *testing.T) {
 		PerTemperature: {1: "1/degc 1/°c 1/k /degc /°c /k", 1e-6: "1e-6/degc 1e-6/°c 1e-6/k 10^-6/degc 10^-6/°c 10^-6/k e-6/degc e-6/°c e-6/k ppm/degc ppm/°c ppm/k",
 			1.8: "1/degf 1/°f /degf /°f", 1.8e-6: "1e-6/degf 1e-6/°f 10^-6/degf 10^-6/°f e-6/degf e-6/°f ppm/degf ppm/°f"},
 		Bending:  {1: "nm2 nm^2 nm² n*m2", 1e3: "knm2 knm^2 knm²", lbf * ft * ft: "lbfft2 lbfft^2", 1e3 * lbf * ft * ft: "kipft2 kipft^2"},
-		Fraction: {0.01: "%", 1: "1"},
+		Fraction: {0.01: "%", 1: "1"}, Frequency: {1: "hz 1/s", 1.0 / 60: "1/min"}, Duration: {1: "s", 1e-3: "ms"},
 	}
 	for d, table := range units {
 		seen := 0
@@ -182,7 +182,7 @@ func TestQuantitiesRefused(t *testing.T) {
 // A value written in any unit and read back is the value: factor and spelling belong together.
 func TestUnitsRoundTrip(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
-		d := rapid.SampledFrom([]Dimension{Length, Force, ForcePerLength, Temperature, PerTemperature, Fraction}).Draw(t, "dimension")
+		d := rapid.SampledFrom([]Dimension{Length, Force, ForcePerLength, Temperature, PerTemperature, Fraction, Frequency, Duration, Bending}).Draw(t, "dimension")
 		name := rapid.SampledFrom(slices.Sorted(maps.Keys(units[d]))).Draw(t, "unit")
 		v := rapid.Float64Range(1, 1e6).Draw(t, "value")
 		u := rapid.Float64Range(0, 1e3).Draw(t, "u")

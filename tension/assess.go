@@ -63,6 +63,7 @@ func Assess(c Case) (Assessment, error) {
 	j := c.judgement(r, listed, told)
 	j.fill()
 	j.compare()
+	j.reconcile()
 	j.decide()
 	if c.Sampling != nil {
 		j.a.MonteCarlo = j.simulate(*c.Sampling)
@@ -135,14 +136,14 @@ func (c Case) localHere() (out []survey.LocalLoad) {
 	return out
 }
 
-// readingHere is the direct reading of this span.
-func (c Case) readingHere() *survey.Reading {
-	for i, r := range c.Conditions.Readings {
+// readingsHere are the readings of this span.
+func (c Case) readingsHere() (out []survey.Reading) {
+	for _, r := range c.Conditions.Readings {
 		if r.On(c.Points.Cable, c.Points.Span) {
-			return &c.Conditions.Readings[i]
+			out = append(out, r)
 		}
 	}
-	return nil
+	return out
 }
 
 // evenLoad is the load on the day along the cable and along the deck and the standard uncertainty of both together, N/m.
@@ -194,8 +195,8 @@ func (c Case) judgement(r *fit.Result, listed []survey.ListedLoad, told []survey
 		temperature = &Quantity{Value: c.Design.Temperature.Value, U: unknownTemperatureU}
 	}
 	j.in = gather(r, c.Design, temperature, listed, told)
-	j.reading = c.readingHere()
-	j.in.read(j.reading)
+	j.in.read(c.readingsHere(), c.Design)
+	j.scatter = j.in.weigh()
 	j.p = j.in.propagate()
 	j.a = Assessment{Cable: c.Points.Cable, Span: c.Points.Span, SurveyFile: c.File, Structure: c.Conditions.Structure,
 		Temperature: c.Conditions.CableTemperature}
@@ -213,7 +214,9 @@ type judgement struct {
 	record             survey.LoadStatus
 	doubted            survey.LoadStatus // what was recorded, when the shape shows a local load that the record does not name
 	temperatureAssumed bool
-	reading            *survey.Reading // direct reading of this span, nil when there is none
+	adjusted           *adjusted // of all evidence
+	notReconciled      error     // why the evidence could not be adjusted
+	scatter            float64   // probability of readings that differ by as much as these
 	in                 *inputs
 	p                  propagated
 	a                  Assessment

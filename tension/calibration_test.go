@@ -211,12 +211,11 @@ func TestCommonInputsCancel(t *testing.T) {
 }
 
 // judged runs a case up to the decision and keeps the inside of it.
-func judged(t *testing.T, c Case) *judgement {
+func judged(t testing.TB, c Case) *judgement {
 	t.Helper()
-	r, err := c.fit(nil, nil)
+	r, err := c.fit(c.listedHere(), c.localHere())
 	if err != nil {
 		t.Fatal(err)
 	}
-	j := c.judgement(r, nil, nil)
-	return j
+	return c.judgement(r, c.listedHere(), c.localHere())
 }

@@ -5,7 +5,6 @@ import (
 	"math"
 
 	"tautbook/fit"
-	"tautbook/fit/hanging"
 	"tautbook/survey"
 )
 
@@ -49,7 +48,7 @@ const (
 	outGreatestT
 	outUse
 	outRivalUse
-	outHRead      // from the direct reading
+	outHRead      // from the direct readings together
 	outReadRatio  // to the expected tension under the filed load
 	outReadFactor // load that the reading implies / load on record
 	outReadUse
@@ -74,11 +73,8 @@ func (in *inputs) evaluate(x []float64) (y outputs, lacks []lack) {
 	for i := range y {
 		y[i] = math.NaN()
 	}
-	c := in.curve
-	c.Z1, c.Z2, c.Curvature = x[inZA], x[inZB], x[inCurvature]
-	c.S1, c.S2 = in.x[inStationA], in.x[inStationB] // the curve stays where it was measured when a support station moves
 	load := in.load(x)
-	c.Cusps = in.cusps(x, load)
+	c := in.curveAt(x, load)
 	in.geometry(&y, c, x)
 	if !(load.self+load.deck > 0) {
 		return y, []lack{{"horizontal tension", "no self_weight or deck_load on file"}}
@@ -189,9 +185,8 @@ func (in *inputs) statics(y *outputs, c fit.Curve, x []float64, l carried) {
 	}
 	y[outTensionA], y[outTensionB] = h*math.Hypot(1, ta), h*math.Hypot(1, tb)
 	y[outGreatestT] = math.Max(y[outTensionA], y[outTensionB])
-	if in.have[inReading] {
-		per := map[survey.ReadOf]float64{survey.HorizontalTension: 1, survey.TensionAtA: math.Hypot(1, ta), survey.TensionAtB: math.Hypot(1, tb)}[in.readOf]
-		y[outHRead] = x[inReading] / per
+	if len(in.readings) > 0 {
+		y[outHRead] = in.together(x)
 		y[outReadFactor] = y[outHRead] / h
 	}
 	in.strength(y, x)
@@ -341,74 +336,4 @@ func (in *inputs) sagOver(ch Chord, k float64, cusps []fit.Cusp) float64 {
 	c.Cusps = cusps
 	c.S1, c.Z1, c.S2, c.Z2, c.Curvature = 0, 0, ch.Length, ch.Rise, k
 	return c.Sag(ch.Length/2, 0, ch.Length)
-}
-
-// rival fills the other reading: the cable has its designed unstressed length and the measured shape, so the stretch, and
-// with it the tension, follows from the length; the load is what that tension needs. Secant steps on H; the equation is
-// regular through H = 0, so that a cable shorter than its unstressed length shows as negative tension.
-func (in *inputs) rival(y *outputs, x []float64, c fit.Curve, day Cable, ch Chord, dt float64) {
-	k := x[inCurvature]
-	if !(k > 0) || math.IsNaN(y[outHExpected]) {
-		return
-	}
-	per := math.Hypot(1, ch.Rise/ch.Length)
-	if in.frame.surveyed {
-		per = c.ArcLength(x[inStationA], x[inStationB]) / ch.Length
-	}
-	l := carried{day.SelfWeight, day.DeckLoad}
-	length := func(h float64) (float64, error) {
-		hang := in.hanging(x, l, h, per)
-		e := hanging.Equation{KW: l.self * k / hang, KQ: l.deck * k / hang, Eta: h / x[inAxial], G: 1 + x[inExpansion]*dt}
-		if len(c.Cusps) > 0 {
-			return kinkedLength(e, ch, c.Cusps, in.x[inStationA])
-		}
-		a, b := e.Start(ch.Length, ch.Rise)
-		a, b, err := e.Span(ch.Length, ch.Rise, a, b)
-		if err != nil {
-			return 0, err
-		}
-		return e.Between(a, b).S, nil
-	}
-	guess := y[outHExpected]
-	if near := in.near[outHRival]; near != 0 && !math.IsNaN(near) {
-		guess = near
-	}
-	h, err := lengthTension(length, y[outS0Design], x[inAxial]/per, guess)
-	if err != nil {
-		return
-	}
-	factor := h * k / in.hanging(x, l, h, per)
-	y[outHRival] = h
-	y[outRivalRatio] = h / y[outHExpected]
-	y[outRivalFactor] = factor
-	y[outRivalExtra] = (factor - 1) * y[outHanging]
-	y[outImpliedLength] = h * k
-}
-
-// lengthTension solves length(H) = want; ea is the stiffness by which the first step goes, N.
-func lengthTension(length func(float64) (float64, error), want, ea, h float64) (float64, error) {
-	s, err := length(h)
-	if err != nil {
-		return 0, err
-	}
-	slope := -s / ea
-	for range 40 {
-		step := (want - s) / slope
-		if math.Abs(step) > 0.5*ea { // half of EA is far beyond any cable
-			return 0, ErrNoState
-		}
-		next, err := length(h + step)
-		if err != nil {
-			return 0, err
-		}
-		h += step
-		if math.Abs(step) <= 1e-11*ea*1e-3 || next == s {
-			return h, nil
-		}
-		if d := (next - s) / step; d < 0 {
-			slope = d
-		}
-		s = next
-	}
-	return 0, ErrNoState
 }

@@ -66,6 +66,11 @@ func (j *judgement) compare() {
 	j.a.AtDesignTemperature = p.quantity(outHReference)
 	j.rivalReading(low, high)
 	j.directReading()
+	l := j.a.ImpliedLoad
+	if d := j.a.Direct; d != nil {
+		l.IfTensionAsRead = &d.Load
+	}
+	l.Together = impliedMeaning(j.a.Load.Hanging, l.IfTensionAsExpected, l.IfTensionAsRead, l.IfLengthAsDesigned)
 	j.a.Stiffness = j.stiffness()
 }
 
@@ -120,10 +125,11 @@ func (j *judgement) rivalReading(low, high float64) {
 // directReading holds a tension that was read on the day against the two readings of the shape.
 func (j *judgement) directReading() {
 	p := &j.p
-	if j.reading == nil || !p.known(outHRead) || j.a.HorizontalTension == nil {
+	if len(j.in.readings) == 0 || !p.known(outHRead) || j.a.HorizontalTension == nil {
 		return
 	}
-	d := &Direct{Of: string(j.reading.Of), How: j.reading.How, HorizontalTension: p.must(outHRead), LoadFactor: p.must(outReadFactor), Ratio: p.quantity(outReadRatio)}
+	of, how := j.in.readNames()
+	d := &Direct{Of: of, How: how, Scatter: j.scatter, HorizontalTension: p.must(outHRead), LoadFactor: p.must(outReadFactor), Ratio: p.quantity(outReadRatio)}
 	d.Load = Quantity{Value: d.LoadFactor.Value * p.y[outHanging], U: d.LoadFactor.U * p.y[outHanging]}
 	d.OffRecord = (p.y[outHRead] - p.y[outH]) / p.uDifference(outHRead, outH)
 	if p.known(outHRival) {

@@ -21,6 +21,7 @@ func (j *judgement) tell() {
 	j.tellLoads()
 	j.tellLocal()
 	j.tellReading()
+	j.tellReconciled()
 	j.tellLength()
 	j.tellTemperature()
 	j.tellSupports()
@@ -117,25 +118,6 @@ func orUnnamed(s string) string {
 		return "unnamed load"
 	}
 	return s
-}
-
-// tellReading says which reading of the shape a direct reading supports.
-func (j *judgement) tellReading() {
-	d := j.a.Direct
-	if d == nil {
-		return
-	}
-	word := func(off float64) string {
-		if off = math.Abs(off); off < apart {
-			return "agrees"
-		}
-		return fmt.Sprintf("disagrees (%.1f standard uncertainties)", off)
-	}
-	text := fmt.Sprintf("The direct reading %s with the load as recorded", word(d.OffRecord))
-	if d.OffLength != nil {
-		text += fmt.Sprintf(" and %s with the length as designed", word(*d.OffLength))
-	}
-	j.add("direct-reading", Note, "%s. Together with the shape it implies a load of %s.", text, NewtonPerMetre.Figure(d.Load))
 }
 
 func (j *judgement) tellLength() {

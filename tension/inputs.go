@@ -29,25 +29,26 @@ const (
 	inRise               // design rise, m
 	inDesignTemp         // degC
 	inBreaking           // MBL, N
-	inReading            // tension read directly on the day, N
 	inTilt               // swing of the plane on the day, rad
 	inFixed
 )
 
 // inputs are the estimates, their uncertainties and which of them exist.
 type inputs struct {
-	x       []float64
-	have    []bool
-	sources []source
-	listed  []survey.ListedLoad // those that concern this span
-	local   []localInput        // loads that hang at one place
-	plane   fit.Frame
-	readOf  survey.ReadOf // what inReading is of
-	curve   fit.Curve     // shape family and share; its numbers are overwritten from x
-	frame   spanFrame
-	filed   *State  // the designer's cable at the estimates, for draws and moves that leave its inputs alone; nil = none
-	near    outputs // figures at the estimates: first guesses for the states nearby; zero = none
-	few     float64 // factor on u of the survey for an accuracy estimated from few residuals; 1 = none
+	x        []float64
+	have     []bool
+	sources  []source
+	listed   []survey.ListedLoad // those that concern this span
+	local    []localInput        // loads that hang at one place
+	plane    fit.Frame
+	readings []readInput // what was read beside the points
+	stated   [][]step    // moves before readings that scatter were widened, nil when none were
+	gravity  int         // place of the acceleration of gravity, 0 = no reading needs it
+	curve    fit.Curve   // shape family and share; its numbers are overwritten from x
+	frame    spanFrame
+	filed    *State  // the designer's cable at the estimates, for draws and moves that leave its inputs alone; nil = none
+	near     outputs // figures at the estimates: first guesses for the states nearby; zero = none
+	few      float64 // factor on u of the survey for an accuracy estimated from few residuals; 1 = none
 }
 
 // spanFrame says which chord the states use.
@@ -77,14 +78,6 @@ func (in *inputs) set(at int, q *Quantity, name string, scale Scale) {
 	if q.U > 0 {
 		in.sources = append(in.sources, source{name: name, value: scale.Value(*q), u: scale.About(q.U),
 			directions: [][]step{{{at, q.U}}}})
-	}
-}
-
-// read adds the direct reading of the span, if there is one.
-func (in *inputs) read(r *survey.Reading) {
-	if r != nil {
-		in.readOf = r.Of
-		in.set(inReading, &r.Value, "direct reading: "+orUnnamed(r.How), ForceScale(r.Value.Value))
 	}
 }
 

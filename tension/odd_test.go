@@ -113,9 +113,31 @@ func oddCase(t *testing.T, rng *rand.Rand) Case {
 	if rng.IntN(4) == 0 {
 		c.Readings = []survey.Reading{{Of: survey.TensionAtA, Value: survey.Quantity{Value: day.TensionA() * pick(1, 0.5), U: day.TensionA() * 0.02}}}
 	}
+	if rng.IntN(5) == 0 {
+		c.Readings = append(c.Readings, oddReadings(day, w, rng)...)
+	}
 	dp := &d
 	if rng.IntN(20) == 0 {
 		dp = nil
 	}
 	return Case{Points: p, Design: dp, Conditions: c}
+}
+
+// oddReadings are readings near and far from what such a cable would show.
+func oddReadings(st State, w float64, rng *rand.Rand) (out []survey.Reading) {
+	pick := func(v ...float64) float64 { return v[rng.IntN(len(v))] }
+	f := math.Sqrt(st.H*9.81/w) / (2 * st.Chord.Length)
+	add := func(r survey.Reading, v float64) {
+		v *= pick(1, 1, 0.3, 20)
+		r.Value = survey.Quantity{Value: v, U: v * pick(1e-4, 0.02, 0.5)}
+		out = append(out, r)
+	}
+	for n := range 1 + rng.IntN(3) {
+		add(survey.Reading{Of: survey.NaturalFrequency, Mode: n + 1, Sideways: rng.IntN(3) == 0, Clamped: rng.IntN(2) == 0, Bending: survey.Quantity{Value: pick(0, 100, 1e6), U: pick(0, 50)}}, f*float64(n+1))
+	}
+	add(survey.Reading{Of: survey.WaveReturn, Returns: 3}, 3/f)
+	add(survey.Reading{Of: survey.LiftOffAtB, Lifted: survey.Quantity{Value: pick(0, 0.002, 0.5)}}, st.TensionB())
+	add(survey.Reading{Of: survey.TangentAtB, Below: st.SagMid() * pick(0.5, 1, 5)}, st.SagMid())
+	add(survey.Reading{Of: survey.SagAtMidSpan}, st.SagMid())
+	return out
 }

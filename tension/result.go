@@ -32,6 +32,7 @@ type Assessment struct {
 	Expected                 *Expected      `json:"expected"`
 	Rival                    *Rival         `json:"rival_reading,omitempty"`
 	Direct                   *Direct        `json:"direct_reading,omitempty"`
+	Reconciled               *Reconciled    `json:"reconciled,omitempty"`
 	Stiffness                *Stiffness     `json:"stiffness,omitempty"`
 	Strength                 *Strength      `json:"strength_use"`
 	MonteCarlo               *MonteCarlo    `json:"monte_carlo,omitempty"`
@@ -160,11 +161,13 @@ type Reaction struct {
 	SlopeDeg   Quantity  `json:"slope_deg"` // dz/ds from A to B as an angle
 }
 
-// ImpliedLoad is the even load, N per metre as it hangs, that the fitted shape needs under two assumptions.
+// ImpliedLoad is the even load, N per metre as it hangs, that the fitted shape needs under three assumptions.
 type ImpliedLoad struct {
 	IfTensionAsExpected *Quantity `json:"if_tension_as_expected,omitempty"`
+	IfTensionAsRead     *Quantity `json:"if_tension_as_read,omitempty"`
 	IfLengthAsDesigned  *Quantity `json:"if_length_as_designed,omitempty"`
-	Filed               Quantity  `json:"filed"` // the design load as it hangs, for comparison
+	Together            string    `json:"together,omitempty"` // what they say, in one sentence
+	Filed               Quantity  `json:"filed"`              // the design load as it hangs, for comparison
 }
 
 // LengthSummary compares unstressed lengths at the design temperature, m.
@@ -206,11 +209,12 @@ type Rival struct {
 	ExcludedBy        string   `json:"excluded_by,omitempty"`
 }
 
-// Direct is a tension that was read on the day, held against both readings of the shape. It is the evidence that tells them
+// Direct is the tension that the readings of the day give together, held against both readings of the shape. It is the evidence that tells them
 // apart: with the shape it gives the load as well.
 type Direct struct {
 	Of                string    `json:"of"` // what was read
 	How               string    `json:"how"`
+	Scatter           float64   `json:"p_scatter"` // probability of readings that differ by as much as these; 1 for a single one
 	HorizontalTension Quantity  `json:"horizontal_tension_N"`
 	Ratio             *Quantity `json:"ratio"`       // to the tension expected today under the filed load; nil without a design state
 	LoadFactor        Quantity  `json:"load_factor"` // load that it implies / load on record

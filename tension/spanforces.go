@@ -103,7 +103,7 @@ func (j *judgement) shared(s source, n int, d []step) []sharedEffect {
 		sin, cos := math.Sincos(j.r.Frame.Azimuth)
 		key := fmt.Sprintf("mark\x00%x\x00%x\x00%x\x00", mark.E, mark.N, mark.Z)
 		return []sharedEffect{{key: key + "east", by: [forceCount]float64{sin}}, {key: key + "north", by: [forceCount]float64{cos}}}
-	case at == inTilt || at == inReading || at >= inFixed+len(j.in.listed):
+	case at == inTilt || at >= inFixed+len(j.in.listed):
 		return own
 	}
 	return []sharedEffect{{key: fmt.Sprintf("%s\x00%x\x00%x", s.name, j.in.x[at], d[0].by), by: [forceCount]float64{1}}}

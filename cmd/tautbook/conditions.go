@@ -39,7 +39,8 @@ func (f *conditionFlags) bind(cmd *cobra.Command) {
 }
 
 // readingHelp is the help of --reading.
-const readingHelp = "a tension read directly on the day: \"CABLE; tension at A; 30.7 +- 0.5 kN; load cell\" (or tension at B, horizontal tension); may be repeated"
+const readingHelp = "what was read on the day beside the points: \"CABLE; tension at A; 30.7 +- 0.5 kN; load cell\" (or tension at B, horizontal tension, " +
+	"lift-off at A with how far the anchor was lifted, frequency with its mode, wave return 3, sag at mid-span, tangent at B); may be repeated, all are used"
 
 // apply sets the flags over the conditions of every survey; what they replace is told as a notice.
 func (f *conditionFlags) apply(cmd *cobra.Command, surveys []*survey.Survey) error {
