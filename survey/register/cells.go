@@ -34,7 +34,7 @@ func Guarded(s string) string {
 	if s == "" || !strings.ContainsRune("=+-@\t'", rune(s[0])) {
 		return s
 	}
-	if _, err := strconv.ParseFloat(s, 64); err == nil && s[0] != '\'' {
+	if _, err := strconv.ParseFloat(s, 64); err == nil && strings.Trim(s, "+-.0123456789eE") == "" {
 		return s
 	}
 	return "'" + s

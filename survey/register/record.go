@@ -116,31 +116,38 @@ func dateText(t time.Time) string {
 
 // alreadyThere finds the same survey on record: its id when it is the same visit, an error when it is in conflict.
 func alreadyThere(ctx context.Context, tx *sql.Tx, v *Visit, name string) (string, error) {
-	rows, err := tx.QueryContext(ctx, `SELECT visit, settings, cables_sha256 FROM visits v WHERE survey_sha256 = $1 AND structure = $2
-		AND NOT EXISTS (SELECT 1 FROM visits w WHERE w.supersedes = v.visit) ORDER BY visit`, v.SurveySHA256, v.Structure)
+	rows, err := tx.QueryContext(ctx, `SELECT visit, settings, cables_sha256, supersedes, (SELECT count(*) FROM visits w WHERE w.supersedes = v.visit)
+		FROM visits v WHERE survey_sha256 = $1 AND structure = $2 ORDER BY visit`, v.SurveySHA256, v.Structure)
 	if err != nil {
 		return "", err
 	}
 	defer rows.Close()
-	var other, differs string
+	var other error
 	for rows.Next() {
-		var id, settings, cables string
-		if err := rows.Scan(&id, &settings, &cables); err != nil {
+		var id, settings, cables, supersedes string
+		var superseded int
+		if err := rows.Scan(&id, &settings, &cables, &supersedes, &superseded); err != nil {
 			return "", err
 		}
+		same := settings == v.Settings && cables == v.CablesSHA256
 		switch {
-		case settings != v.Settings:
-			other, differs = id, "settings"
-		case cables != v.CablesSHA256:
-			other, differs = id, "design values"
-		default:
+		case same && (v.Supersedes == "" || v.Supersedes == supersedes):
 			return id, rows.Err()
+		case superseded > 0:
+		case same:
+			other = fmt.Errorf("%s: this survey is on record as visit %s with the same settings and design values: it corrects nothing", name, id)
+		case v.Supersedes != "":
+		case settings != v.Settings:
+			other = fmt.Errorf("%s: this survey is on record as visit %s with other settings: give --supersedes %s and --why if this one is the correction", name, id, id)
+		default:
+			other = fmt.Errorf("%s: this survey is on record as visit %s, judged by other design values: \"tautbook register judge --cables FILE %s\" judges it by these as well; --supersedes %s and --why corrects it",
+				name, id, id, id)
 		}
 	}
-	if err := rows.Err(); err != nil || other == "" || v.Supersedes != "" {
+	if err := rows.Err(); err != nil {
 		return "", err
 	}
-	return "", fmt.Errorf("%s: this survey is on record as visit %s with other %s: give --supersedes %s and --why if this one is the correction", name, other, differs, other)
+	return "", other
 }
 
 // checkSuperseded refuses a correction of what is not there, is of another structure or was corrected already.

@@ -24,6 +24,9 @@ var migrations embed.FS
 // busyTimeout is how long SQLite itself waits for another writer, ms; after that a transaction is tried again, see write.
 const busyTimeout = 5000
 
+// migrationTries is how often the making of tables is tried while another process makes them too.
+const migrationTries = 10
+
 // Register is an open register. It may be used by many goroutines.
 type Register struct {
 	db       *sql.DB
@@ -133,14 +136,20 @@ func (r *Register) migrate(ctx context.Context, o Options) error {
 	case o.ReadOnly || (have == 0 && !o.Create):
 		return fmt.Errorf("%s: found tables of version %d, expected %d: it is no register, or one that \"tautbook record\" must bring up to date first", r.name, have, want)
 	}
-	return r.patiently(ctx, func() error {
-		// another process may have come first: then the tables are there
-		if have, err := r.schemaVersion(ctx); err == nil && have == want {
+	for try := 1; ; try++ {
+		err := r.patiently(ctx, func() error { _, err := p.Up(ctx); return err })
+		if err == nil {
 			return nil
 		}
-		_, err := p.Up(ctx)
-		return err
-	})
+		// another process that makes the same tables at the same moment is no fault, once they are there
+		if have, lost := r.schemaVersion(ctx); lost == nil && have == want {
+			return nil
+		}
+		if try == migrationTries {
+			return fmt.Errorf("%s: cannot make the tables: %w", r.name, r.told(err))
+		}
+		time.Sleep(time.Duration(try) * 20 * time.Millisecond)
+	}
 }
 
 // schemaVersion is the version of the tables, 0 when there are none.
