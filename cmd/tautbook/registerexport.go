@@ -29,7 +29,7 @@ func newRegisterExport(s streams, f *registerFlag) *cobra.Command {
 	var format string
 	cmd := &cobra.Command{
 		Use:     "export FOLDER|FILE",
-		Short:   "Write the register as CSV files, or its spans and curves for other programs",
+		Short:   "Write the register as plain files, or its curves",
 		Long:    exportHelp,
 		Example: "  tautbook register export register-2026-06\n  tautbook register export --format dxf curves.dxf",
 		Args:    exactly(1, "one new folder, or a file with --format"),
