@@ -83,11 +83,15 @@ func judgeStored(s register.File, cables *register.File, settings []string) (j j
 		return j, err
 	}
 	cases := casesOf(input{surveys: []*survey.Survey{j.survey}, designs: j.designs}, nil, fit.Options{RejectBeyond: f.rejectBeyond})
+	spans := make([]survey.SpanPoints, len(cases)) // assessAll lets go of those in the cases
+	for i, c := range cases {
+		spans[i] = c.Points
+	}
 	if j.assessments, err = assessAll(cases); err != nil {
 		return j, err
 	}
 	for i, a := range j.assessments {
-		j.results = append(j.results, resultOf(a, cases[i], j.survey.Flat))
+		j.results = append(j.results, resultOf(a, cases[i].Design, placeOf(a, spans[i], j.survey.Flat)))
 	}
 	return j, nil
 }
@@ -102,7 +106,7 @@ func judgeAgain(s register.File, cables *register.File, settings []string) (surv
 }
 
 // resultOf is an assessment as the register keeps it.
-func resultOf(a tension.Assessment, c tension.Case, flat bool) register.Result {
+func resultOf(a tension.Assessment, d *survey.Design, place register.Place) register.Result {
 	f := &a.Fit
 	r := register.Result{Cable: a.Cable, Span: a.Span, Verdict: string(a.Verdict), Reason: a.Reason, NextStep: a.NextStep, Shape: string(f.Shape),
 		PointsUsed: int64(f.PointsUsed), PointsRejected: int64(len(f.Rejected)), DegreesOfFree: int64(f.DegreesOfFreedom),
@@ -111,8 +115,8 @@ func resultOf(a tension.Assessment, c tension.Case, flat bool) register.Result {
 	if a.HorizontalTension != nil {
 		r.HangingLoad = &a.Load.Hanging
 	}
-	if c.Design != nil && c.Design.Temperature != nil {
-		r.ReferenceTemperature = &c.Design.Temperature.Value
+	if d != nil && d.Temperature != nil {
+		r.ReferenceTemperature = &d.Temperature.Value
 	}
 	if a.UnstressedLength != nil {
 		r.UnstressedLength = &a.UnstressedLength.Today
@@ -123,7 +127,7 @@ func resultOf(a tension.Assessment, c tension.Case, flat bool) register.Result {
 	if s := a.Strength; s != nil {
 		r.GreatestTension, r.StrengthUse = &s.GreatestT, &s.Use
 	}
-	r.Place = placeOf(a, c.Points, flat)
+	r.Place = place
 	return r
 }
 

@@ -21,10 +21,12 @@ func BenchmarkFleet(b *testing.B) {
 			record(b, r, submission(structure(i), 365*visit+i, cables...))
 		}
 	}
+	more := 0
 	b.Run("record", func(b *testing.B) {
 		subs := make([]register.Submission, 0, b.N)
-		for i := range b.N {
-			subs = append(subs, submission("Another bridge", i+100_000*b.N, cables...))
+		for range b.N {
+			more++
+			subs = append(subs, submission(fmt.Sprintf("Another bridge %d", more), 1, cables...))
 		}
 		b.ResetTimer()
 		for _, s := range subs {

@@ -38,7 +38,8 @@ func (d *designRow) columns() []column {
 		quantity("design_sag_m", &d.Sag), quantity("design_temperature_degC", &d.Temperature), quantity("axial_stiffness_N", &d.AxialStiffness),
 		quantity("expansion_per_degC", &d.Expansion), quantity("breaking_load_N", &d.BreakingLoad), column{"safety_factor", optional{&d.SafetyFactor}},
 		column{"slack_below", optional{&d.SlackBelow}}, column{"overload_above", optional{&d.OverloadAbove}}, quantity("diameter_m", &d.Diameter),
-		quantity("bending_stiffness_N_m2", &d.BendingStiffness), quantity("take_up_per_turn_m", &d.TakeUpPerTurn))
+		quantity("bending_stiffness_N_m2", &d.BendingStiffness), quantity("take_up_per_turn_m", &d.TakeUpPerTurn),
+		column{"over_A", (*string)(&d.OverA)}, column{"over_B", (*string)(&d.OverB)})
 }
 
 func (v *Visit) columns() []column {

@@ -50,6 +50,8 @@ CREATE TABLE designs (
     diameter_m                DOUBLE PRECISION, u_diameter_m                DOUBLE PRECISION,
     bending_stiffness_N_m2    DOUBLE PRECISION, u_bending_stiffness_N_m2    DOUBLE PRECISION,
     take_up_per_turn_m        DOUBLE PRECISION, u_take_up_per_turn_m        DOUBLE PRECISION,
+    over_A        TEXT NOT NULL, -- how the cable passes over the support at A, if it goes on there
+    over_B        TEXT NOT NULL,
     PRIMARY KEY (cables_sha256, structure, cable, span)
 );
 
