@@ -97,7 +97,7 @@ func ParseSize(text string) (survey.Quantity, string, error) {
 // Events are the events that were not superseded, by structure and date, of one structure or of all.
 func (r *Register) Events(ctx context.Context, structure string) (out []Event, err error) {
 	rows, err := r.db.QueryContext(ctx, "SELECT "+names((&Event{}).columns(), "e.")+` FROM events e WHERE ($1 = '' OR structure = $1)
-		AND NOT EXISTS (SELECT 1 FROM events f WHERE f.supersedes = e.event) ORDER BY structure, event_date, event`, structure)
+		AND NOT EXISTS (SELECT 1 FROM events f WHERE f.supersedes = e.event AND f.supersedes <> '') ORDER BY structure, event_date, event`, structure)
 	if err != nil {
 		return nil, r.told(err)
 	}

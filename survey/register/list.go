@@ -9,7 +9,7 @@ import (
 // shortest is the fewest digits of an id that are taken for it.
 const shortest = 4
 
-const visitQuery = ", coalesce((SELECT w.visit FROM visits w WHERE w.supersedes = v.visit), '') FROM visits v "
+const visitQuery = ", coalesce((SELECT w.visit FROM visits w WHERE w.supersedes = v.visit AND w.supersedes <> ''), '') FROM visits v "
 
 // Visits are the visits on record by structure and date, all of them or those of one structure; superseded ones too, marked.
 func (r *Register) Visits(ctx context.Context, structure string) ([]Visit, error) {

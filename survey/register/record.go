@@ -116,7 +116,7 @@ func dateText(t time.Time) string {
 
 // alreadyThere finds the same survey on record: its id when it is the same visit, an error when it is in conflict.
 func alreadyThere(ctx context.Context, tx *sql.Tx, v *Visit, name string) (string, error) {
-	rows, err := tx.QueryContext(ctx, `SELECT visit, settings, cables_sha256, supersedes, (SELECT count(*) FROM visits w WHERE w.supersedes = v.visit)
+	rows, err := tx.QueryContext(ctx, `SELECT visit, settings, cables_sha256, supersedes, (SELECT count(*) FROM visits w WHERE w.supersedes = v.visit AND w.supersedes <> '')
 		FROM visits v WHERE survey_sha256 = $1 AND structure = $2 ORDER BY visit`, v.SurveySHA256, v.Structure)
 	if err != nil {
 		return "", err

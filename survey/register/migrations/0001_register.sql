@@ -76,6 +76,7 @@ CREATE TABLE visits (
     recorded_at   TEXT NOT NULL,
     recorded_by   TEXT NOT NULL  -- version of the program
 );
+-- Queries say supersedes <> '' beside the id that they look for: else SQLite does not use an index of these rows alone.
 CREATE UNIQUE INDEX visits_superseded ON visits (supersedes) WHERE supersedes <> '';
 CREATE INDEX visits_by_structure ON visits (structure, visit_date);
 CREATE INDEX visits_by_survey ON visits (survey_sha256);
@@ -157,7 +158,7 @@ CREATE INDEX events_by_structure ON events (structure, event_date);
 CREATE VIEW current_results AS
 SELECT v.structure, v.visit_date, v.survey_sha256, v.survey_name, v.loads, v.temperature_degC, v.u_temperature_degC, r.*
 FROM visits v JOIN results r ON r.visit = v.visit AND r.judged_by = v.cables_sha256
-WHERE NOT EXISTS (SELECT 1 FROM visits w WHERE w.supersedes = v.visit);
+WHERE NOT EXISTS (SELECT 1 FROM visits w WHERE w.supersedes = v.visit AND w.supersedes <> '');
 
 -- +goose Down
 DROP VIEW current_results;
