@@ -18,22 +18,24 @@ type judgeFlags struct {
 	readingFlags
 	conditionFlags
 	rejectBeyond float64
+	findLoads    bool
 }
 
 func (f *judgeFlags) bind(cmd *cobra.Command) {
 	f.readingFlags.bind(cmd)
 	f.conditionFlags.bind(cmd)
 	cmd.Flags().Float64Var(&f.rejectBeyond, "reject-beyond", 6, "leave out points whose normalised residual is beyond this; 0 leaves out none")
+	cmd.Flags().BoolVar(&f.findLoads, "find-loads", true, "search the shape for local loads that nobody told")
 }
 
-// settings are the judge flags that were given, in a fixed order, as they would be typed; --cables is a stored file instead. The
-// rejection is always among them, so that its default may change.
+// settings are the judge flags that were given, in a fixed order, as they would be typed; --cables is a stored file instead. Those
+// with a default are always among them, so that the default may change.
 func (f *judgeFlags) settings(given *cobra.Command) (out []string) {
 	own := &cobra.Command{}
 	new(judgeFlags).bind(own)
 	for _, name := range flagNames(own) {
 		flag := given.Flags().Lookup(name)
-		if name == "cables" || !flag.Changed && name != "reject-beyond" {
+		if name == "cables" || !flag.Changed && name != "reject-beyond" && name != "find-loads" {
 			continue
 		}
 		values := []string{flag.Value.String()}
@@ -82,7 +84,11 @@ func judgeStored(s register.File, cables *register.File, settings []string) (j j
 	if err := f.apply(cmd, []*survey.Survey{j.survey}); err != nil {
 		return j, err
 	}
-	cases := casesOf(input{surveys: []*survey.Survey{j.survey}, designs: j.designs}, nil, fit.Options{RejectBeyond: f.rejectBeyond})
+	fitting := fit.Options{RejectBeyond: f.rejectBeyond}
+	if f.findLoads {
+		fitting.FindLoads = mostFound
+	}
+	cases := casesOf(input{surveys: []*survey.Survey{j.survey}, designs: j.designs}, nil, fitting)
 	spans := make([]survey.SpanPoints, len(cases)) // assessAll lets go of those in the cases
 	for i, c := range cases {
 		spans[i] = c.Points
