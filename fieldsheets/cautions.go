@@ -1,5 +1,7 @@
 package fieldsheets
 
+import "slices"
+
 // cautions stand on every summary and sheet.
 var cautions = []string{
 	"This sheet advises; it is no permit and no certificate. A licensed engineer and the local code decide.",
@@ -8,3 +10,6 @@ var cautions = []string{
 	"Do not take up, let out or load a cable on this sheet alone. Keep clear of a cable whose verdict is overload or off design until an engineer has released it.",
 	"A verdict is for the day and the conditions of the survey. Wind, ice, traffic and temperature change it.",
 }
+
+// Cautions are the sentences that close every summary and sheet.
+func Cautions() []string { return slices.Clone(cautions) }

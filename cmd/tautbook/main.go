@@ -8,5 +8,5 @@ import (
 )
 
 func main() {
-	os.Exit(run(os.Args[1:], streams{in: os.Stdin, out: os.Stdout, err: os.Stderr, color: wantsColor(os.Stdout), now: time.Now}))
+	os.Exit(run(os.Args[1:], streams{in: os.Stdin, out: os.Stdout, err: os.Stderr, color: wantsColor(os.Stdout), progress: isTerminal(os.Stderr), now: time.Now}))
 }

@@ -56,14 +56,9 @@ func (f *readingFlags) read(files []string, structure string, s streams) (input,
 			return in, err
 		}
 	}
-	opts := survey.PointOptions{Order: f.order, Separator: f.separator, Decimal: f.decimal, Encoding: f.encoding, Unit: f.unit,
-		Cable: f.cable, Span: f.span, Known: in.designs, Structure: structure}
-	for _, text := range f.codes {
-		rule, err := survey.ParseCodeRule(text)
-		if err != nil {
-			return in, usageError{fmt.Errorf("--code: %w", err)}
-		}
-		opts.Codes = append(opts.Codes, rule)
+	opts, err := f.pointOptions(in.designs, structure)
+	if err != nil {
+		return in, err
 	}
 	var problems []error
 	for _, name := range files {
@@ -75,6 +70,20 @@ func (f *readingFlags) read(files []string, structure string, s streams) (input,
 		in.surveys = append(in.surveys, sv)
 	}
 	return in, errors.Join(problems...)
+}
+
+// pointOptions are the flags as the survey reader takes them.
+func (f *readingFlags) pointOptions(designs []survey.Design, structure string) (survey.PointOptions, error) {
+	opts := survey.PointOptions{Order: f.order, Separator: f.separator, Decimal: f.decimal, Encoding: f.encoding, Unit: f.unit,
+		Cable: f.cable, Span: f.span, Known: designs, Structure: structure}
+	for _, text := range f.codes {
+		rule, err := survey.ParseCodeRule(text)
+		if err != nil {
+			return opts, usageError{fmt.Errorf("--code: %w", err)}
+		}
+		opts.Codes = append(opts.Codes, rule)
+	}
+	return opts, nil
 }
 
 func readSurvey(name string, opts survey.PointOptions, s streams) (*survey.Survey, error) {

@@ -25,6 +25,7 @@ type streams struct {
 	in       io.Reader
 	out, err io.Writer
 	color    bool // escape codes are welcome on out
+	progress bool // err is a terminal, where long work may say how far it is
 	now      func() time.Time
 }
 
@@ -91,7 +92,7 @@ func newRoot(s streams) *cobra.Command {
 		RunE: func(cmd *cobra.Command, _ []string) error { return cmd.Help() },
 	}
 	root.SetFlagErrorFunc(func(_ *cobra.Command, err error) error { return usageError{err} })
-	root.AddCommand(newCheck(s), newAssess(s), newDemo(s), newManual(s))
+	root.AddCommand(newCheck(s), newAssess(s), newRecord(s), newVisits(s), newEvent(s), newVerify(s), newRegister(s), newDemo(s), newManual(s))
 	narrow(root)
 	return root
 }
@@ -115,8 +116,13 @@ func version() string {
 
 // wantsColor reports whether a file is a terminal whose owner did not ask for plain text (NO_COLOR, TERM=dumb).
 func wantsColor(f *os.File) bool {
+	return isTerminal(f) && os.Getenv("NO_COLOR") == "" && os.Getenv("TERM") != "dumb"
+}
+
+// isTerminal reports whether a person looks at a file as it is written.
+func isTerminal(f *os.File) bool {
 	info, err := f.Stat()
-	return err == nil && info.Mode()&os.ModeCharDevice != 0 && os.Getenv("NO_COLOR") == "" && os.Getenv("TERM") != "dumb"
+	return err == nil && info.Mode()&os.ModeCharDevice != 0
 }
 
 // atLeastOne asks for one file or more.

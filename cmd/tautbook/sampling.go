@@ -3,7 +3,6 @@ package main
 import (
 	"fmt"
 	"io"
-	"os"
 	"strconv"
 	"sync"
 	"time"
@@ -56,10 +55,8 @@ type progress struct {
 
 func newProgress(s streams) *progress {
 	p := &progress{now: s.now}
-	if f, ok := s.err.(*os.File); ok {
-		if info, err := f.Stat(); err == nil && info.Mode()&os.ModeCharDevice != 0 {
-			p.to = f
-		}
+	if s.progress {
+		p.to = s.err
 	}
 	return p
 }
