@@ -105,6 +105,8 @@ type Result struct {
 	W            []float64     // test statistic of each: see SingleTest
 	Rejected     []Suspect     // dropped
 	Suspects     []Suspect     // listed, still used
+	Stretches    []Stretch     // neighbours that were not dropped because they lie off the curve together
+	Torn         int           // that many points, too many to drop, lie off the curve that most of them agree on; 0 = none
 	LeftOut      []Suspect     // never used: within Options.Clear of a support or a local load
 
 	DegreesOfFreedom int

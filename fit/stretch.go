@@ -1,0 +1,93 @@
+package fit
+
+import (
+	"fmt"
+	"math"
+	"slices"
+)
+
+// stretchChance is how improbable a run of neighbours on one side of the curve must be before it is taken for the cable itself and
+// not for errors: common practice, no source.
+const stretchChance = 0.001
+
+// Stretch is a run of neighbouring points that all lie off the curve through the others, on one side of it. Errors of points have
+// no reason to stand side by side: a local load, a kink, another shape or one wrong set-up has. Such points are not dropped.
+type Stretch struct {
+	From, To float64 // stations, m
+	Points   int
+	Off      float64 // mean vertical distance from the curve through the other points, m, positive above it
+	Chance   float64 // of such a run when the points off the curve stand anywhere
+}
+
+// stretches are the runs among the dropped points that chance does not explain; places get those of their points in x.all.
+func (x *rejection) stretches() (out []Stretch, places []int) {
+	n := len(x.all)
+	order := byStation(x.all)
+	side := make([]float64, n) // of dropped points, 0 for the rest
+	for i, place := range x.dropped {
+		side[place] = x.Rejected[i].Residual
+	}
+	for i := 0; i < n; {
+		v := side[order[i]]
+		to := i + 1
+		for to < n && v != 0 && side[order[to]]*v > 0 {
+			to++
+		}
+		if chance := runChance(n, len(x.dropped), to-i); v != 0 && chance < stretchChance {
+			s := Stretch{From: x.all[order[i]].S, To: x.all[order[to-1]].S, Points: to - i, Chance: chance}
+			for _, place := range order[i:to] {
+				s.Off += side[place] / float64(s.Points)
+				places = append(places, place)
+			}
+			out = append(out, s)
+		}
+		i = to
+	}
+	return out, places
+}
+
+// runChance bounds the probability that k of n points, drawn anywhere and each on either side, hold a run of length neighbours on
+// one side: the expected number of such runs, counted by where they begin.
+func runChance(n, k, length int) float64 {
+	if length > k || length < 2 {
+		return 1
+	}
+	chance := float64(n-length+1) * math.Pow(0.5, float64(length-1))
+	for i := range length {
+		chance *= float64(k-i) / float64(n-i)
+	}
+	return math.Min(1, chance)
+}
+
+// giveBack returns stretches of the cable to the fit. When most of the rest would be gone, nothing is left that could be called the
+// curve: then all points come back.
+func (x *rejection) giveBack() error {
+	stretches, places := x.stretches()
+	if len(x.dropped) > mostDropped(len(x.all)) {
+		x.Torn, places = len(x.dropped), slices.Clone(x.dropped)
+	} else if len(stretches) == 0 {
+		return nil
+	}
+	x.Stretches = stretches
+	var kept []Suspect
+	var dropped []int
+	for i, place := range x.dropped {
+		s := x.Rejected[i]
+		if slices.Contains(places, place) {
+			x.left = append(x.left, place)
+			s.Reason = fmt.Sprintf("off the curve through the other points together with its neighbours: w = %.3g", s.W)
+			if x.Torn > 0 {
+				s.Reason = fmt.Sprintf("off the curve that most points agree on: w = %.3g", s.W)
+			}
+			x.Suspects = append(x.Suspects, s)
+			continue
+		}
+		kept, dropped = append(kept, s), append(dropped, place)
+	}
+	x.Rejected, x.dropped = kept, dropped
+	slices.Sort(x.left)
+	return x.solveOn(x.left)
+}
+
+// mostDropped is the greatest number of n points that may be dropped: the better part must be a clear majority.
+func mostDropped(n int) int { return n * 45 / 100 }
