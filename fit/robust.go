@@ -10,7 +10,8 @@ import (
 const (
 	fewestForRobust  = 8    // points below which half of them determine no curve with a check
 	elementalSamples = 300  // triples drawn for each form of the bow: with 40 % wild points one in five is clean
-	probeSamples     = 40   // triples drawn only to see whether a search is needed
+	probeSamples     = 60   // triples drawn only to see whether a search is needed
+	probePoints      = 200  // points looked at for that
 	refined          = 4    // best triples of each form that are refined
 	robustPoints     = 1000 // points that a robust start looks at; of more, as many are drawn
 )
@@ -152,7 +153,7 @@ func (x *rejection) elementals(places []int, solved error) []*elemental {
 		lo, hi = math.Min(lo, obs[i].S), math.Max(hi, obs[i].S)
 		z0 += obs[i].Z / float64(len(places))
 	}
-	make1 := func(bow func(s, u float64) float64, slope func(s float64) float64) *elemental {
+	form := func(bow func(s, u float64) float64, slope func(s float64) float64) *elemental {
 		n := len(obs)
 		all := make([]float64, 5*n)
 		e := &elemental{u: all[:n], bow: all[n : 2*n], z: all[2*n : 3*n], weight: all[3*n : 4*n], size: all[4*n:]}
@@ -176,12 +177,9 @@ func (x *rejection) elementals(places []int, solved error) []*elemental {
 			z, _, _ := ev.at(s, nil)
 			return (z - c.Z1 - chord*(s-c.S1)) / (c.Curvature * (hi - lo) * (hi - lo))
 		}
-		out = append(out, make1(bow, func(s float64) float64 { _, t, _ := ev.at(s, nil); return t }))
+		out = append(out, form(bow, func(s float64) float64 { _, t, _ := ev.at(s, nil); return t }))
 	}
-	if solved == nil && x.sound() {
-		return out
-	}
-	return append(out, make1(func(_, u float64) float64 { return u * u }, func(float64) float64 { return chord }))
+	return append(out, form(func(_, u float64) float64 { return u * u }, func(float64) float64 { return chord }))
 }
 
 // through is the curve of three points; false when they are too close to each other.

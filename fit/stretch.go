@@ -4,22 +4,31 @@ import (
 	"fmt"
 	"math"
 	"slices"
+
+	"gonum.org/v1/gonum/stat/distuv"
 )
 
 // stretchChance is how improbable a run of neighbours on one side of the curve must be before it is taken for the cable itself and
 // not for errors: common practice, no source.
 const stretchChance = 0.001
 
+// smoothChance is the two-sided probability of a step between neighbours above which the curve bends to a point rather than the
+// point stands off.
+const smoothChance = 0.001
+
 // Stretch is a run of neighbouring points that all lie off the curve through the others, on one side of it. Errors of points have
-// no reason to stand side by side: a local load, a kink, another shape or one wrong set-up has. Such points are not dropped.
+// no reason to stand side by side, nor to be led up to by the points around them: a local load, a kink, another shape or one wrong
+// set-up has. Such points are not dropped.
 type Stretch struct {
 	From, To float64 // stations, m
 	Points   int
 	Off      float64 // mean vertical distance from the curve through the other points, m, positive above it
 	Chance   float64 // of such a run when the points off the curve stand anywhere
+	Smooth   bool    // the residuals lead up to it without a step: the cable bends there
 }
 
-// stretches are the runs among the dropped points that chance does not explain; places get those of their points in x.all.
+// stretches are the runs among the dropped points that chance does not explain, and those that the points around them lead up to;
+// places get their points in x.all.
 func (x *rejection) stretches() (out []Stretch, places []int) {
 	n := len(x.all)
 	order := byStation(x.all)
@@ -27,23 +36,63 @@ func (x *rejection) stretches() (out []Stretch, places []int) {
 	for i, place := range x.dropped {
 		side[place] = x.Rejected[i].Residual
 	}
+	steps := x.steps(order)
 	for i := 0; i < n; {
 		v := side[order[i]]
 		to := i + 1
 		for to < n && v != 0 && side[order[to]]*v > 0 {
 			to++
 		}
-		if chance := runChance(n, len(x.dropped), to-i); v != 0 && chance < stretchChance {
-			s := Stretch{From: x.all[order[i]].S, To: x.all[order[to-1]].S, Points: to - i, Chance: chance}
-			for _, place := range order[i:to] {
-				s.Off += side[place] / float64(s.Points)
-				places = append(places, place)
-			}
+		if v == 0 {
+			i = to
+			continue
+		}
+		s := Stretch{From: x.all[order[i]].S, To: x.all[order[to-1]].S, Points: to - i, Chance: runChance(n, len(x.dropped), to-i), Smooth: true}
+		for k := i; k < to; k++ {
+			s.Off += side[order[k]] / float64(s.Points)
+			s.Smooth = s.Smooth && steps[k] <= distuv.UnitNormal.Quantile(1-smoothChance/2)
+		}
+		if s.Smooth || s.Chance < stretchChance {
 			out = append(out, s)
+			places = append(places, order[i:to]...)
 		}
 		i = to
 	}
 	return out, places
+}
+
+// steps are, in order of stations, how far the residual of each point is from the line through those of its neighbours (at an end
+// of the span its two next ones), in standard deviations.
+func (x *rejection) steps(order []int) []float64 {
+	n := len(order)
+	out := make([]float64, n)
+	e := x.Curve.evaluator()
+	scale := x.scale(x.w)
+	v, variance := make([]float64, n), make([]float64, n)
+	for i, place := range order {
+		o := &x.all[place]
+		z, t, _ := e.at(o.S, nil)
+		v[i], variance[i] = o.Z-z, scale*(o.VarZ-2*t*o.CovSZ+t*t*o.VarS)
+	}
+	for i := range n {
+		a, b := i-1, i+1
+		switch {
+		case n < 3:
+			return out
+		case i == 0:
+			a, b = 1, 2
+		case i == n-1:
+			a, b = n-3, n-2
+		}
+		sa, sb := x.all[order[a]].S, x.all[order[b]].S
+		part := 0.5
+		if sb > sa {
+			part = (x.all[order[i]].S - sa) / (sb - sa)
+		}
+		step := v[i] - (1-part)*v[a] - part*v[b]
+		out[i] = math.Abs(step) / math.Sqrt(variance[i]+(1-part)*(1-part)*variance[a]+part*part*variance[b])
+	}
+	return out
 }
 
 // runChance bounds the probability that k of n points, drawn anywhere and each on either side, hold a run of length neighbours on
