@@ -39,7 +39,7 @@ func (o *outcome) count(r *Result, bad map[string]bool) {
 	if right == len(bad) && wrong == 0 {
 		o.all++
 	}
-	if len(r.Stretches) > 0 || r.Torn > 0 {
+	if len(r.Stretches) > 0 || r.Torn != nil {
 		o.withheld++
 	}
 }
@@ -135,7 +135,7 @@ func TestCleanSurveysArePassedBy(t *testing.T) {
 			for seed := range uint64(runs) {
 				rng := rand.New(rand.NewPCG(seed, 42))
 				obs := noisy(rng, hang(96, 0.02, 0.05), n, 0.003, stated)
-				if r, err := InPlane(obs, Frame{}, End{}, End{Station: 96}, Options{RejectBeyond: 6, NoAlternatives: true}); err != nil || len(r.Rejected)+len(r.Stretches)+r.Torn > 0 {
+				if r, err := InPlane(obs, Frame{}, End{}, End{Station: 96}, Options{RejectBeyond: 6, NoAlternatives: true}); err != nil || len(r.Rejected)+len(r.Stretches)+len(r.Torn) > 0 {
 					dropped++
 				}
 				var w workspace
@@ -228,7 +228,7 @@ func TestFeaturesOfTheCableAreNotDropped(t *testing.T) {
 				if len(r.Rejected) > 1 {
 					lost++
 				}
-				if len(r.Stretches) > 0 || r.Torn > 0 {
+				if len(r.Stretches) > 0 || r.Torn != nil {
 					told++
 				}
 			}

@@ -1,7 +1,6 @@
 package fit
 
 import (
-	"fmt"
 	"math"
 	"slices"
 
@@ -21,7 +20,7 @@ const smoothChance = 0.001
 // set-up has. Such points are not dropped.
 type Stretch struct {
 	From, To float64 // stations, m
-	Points   int
+	Points   []Suspect
 	Off      float64 // mean vertical distance from the curve through the other points, m, positive above it
 	Chance   float64 // of such a run when the points off the curve stand anywhere
 	Smooth   bool    // the residuals lead up to it without a step: the cable bends there
@@ -47,12 +46,15 @@ func (x *rejection) stretches() (out []Stretch, places []int) {
 			i = to
 			continue
 		}
-		s := Stretch{From: x.all[order[i]].S, To: x.all[order[to-1]].S, Points: to - i, Chance: runChance(n, len(x.dropped), to-i), Smooth: true}
+		s := Stretch{From: x.all[order[i]].S, To: x.all[order[to-1]].S, Chance: runChance(n, len(x.dropped), to-i), Smooth: true}
 		for k := i; k < to; k++ {
-			s.Off += side[order[k]] / float64(s.Points)
+			s.Off += side[order[k]] / float64(to-i)
 			s.Smooth = s.Smooth && steps[k] <= distuv.UnitNormal.Quantile(1-smoothChance/2)
 		}
 		if s.Smooth || s.Chance < stretchChance {
+			for _, place := range order[i:to] {
+				s.Points = append(s.Points, x.Rejected[slices.Index(x.dropped, place)])
+			}
 			out = append(out, s)
 			places = append(places, order[i:to]...)
 		}
@@ -108,30 +110,28 @@ func runChance(n, k, length int) float64 {
 	return math.Min(1, chance)
 }
 
-// giveBack returns stretches of the cable to the fit. When most of the rest would be gone, nothing is left that could be called the
-// curve: then all points come back.
+// giveBack returns stretches of the cable to the fit. When so many points would go that what is left is no clear majority, no curve
+// can be called that of the cable: then all points come back.
 func (x *rejection) giveBack() error {
 	stretches, places := x.stretches()
 	if len(x.dropped) > mostDropped(len(x.all)) {
-		x.Torn, places = len(x.dropped), slices.Clone(x.dropped)
+		x.Torn, places = x.Rejected, x.dropped
 	} else if len(stretches) == 0 {
 		return nil
 	}
 	x.Stretches = stretches
+	back := make(map[int]bool, len(places))
+	for _, place := range places {
+		back[place] = true
+	}
 	var kept []Suspect
 	var dropped []int
 	for i, place := range x.dropped {
-		s := x.Rejected[i]
-		if slices.Contains(places, place) {
+		if back[place] {
 			x.left = append(x.left, place)
-			s.Reason = fmt.Sprintf("off the curve through the other points together with its neighbours: w = %.3g", s.W)
-			if x.Torn > 0 {
-				s.Reason = fmt.Sprintf("off the curve that most points agree on: w = %.3g", s.W)
-			}
-			x.Suspects = append(x.Suspects, s)
 			continue
 		}
-		kept, dropped = append(kept, s), append(dropped, place)
+		kept, dropped = append(kept, x.Rejected[i]), append(dropped, place)
 	}
 	x.Rejected, x.dropped = kept, dropped
 	slices.Sort(x.left)

@@ -106,7 +106,7 @@ type Result struct {
 	Rejected     []Suspect     // dropped
 	Suspects     []Suspect     // listed, still used
 	Stretches    []Stretch     // neighbours that were not dropped because they lie off the curve together
-	Torn         int           // that many points, too many to drop, lie off the curve that most of them agree on; 0 = none
+	Torn         []Suspect     // too many to drop: they lie off the curve that the most of them agree on, and are still used
 	LeftOut      []Suspect     // never used: within Options.Clear of a support or a local load
 
 	DegreesOfFreedom int

@@ -42,6 +42,8 @@ type Assessment struct {
 	Budget   []BudgetLine `json:"budget"`
 
 	Drawing Drawing `json:"-"`
+
+	together []fit.Suspect // points that lie off the curve together and are still used
 }
 
 // Verdict is the word for the state of a cable.
