@@ -73,12 +73,7 @@ func through(points [][2]float64) string {
 	return b.String()
 }
 
-// picture sets size, title and description for readers that do not see it, and returns the markup.
-func (s *svg) picture(id, title, desc string, w, h float64) template.HTML {
-	s.describe(title, desc, w, h)
-	return s.markup(id)
-}
-
+// describe sets size, title and description for readers that do not see the picture.
 func (s *svg) describe(title, desc string, w, h float64) *svg {
 	s.title, s.desc, s.w, s.h = title, desc, w, h
 	return s

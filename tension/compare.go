@@ -161,6 +161,7 @@ func (j *judgement) decide() {
 		}
 	}
 	j.a.Verdict, j.ground = decide(e)
+	j.a.DecidedBy = string(j.ground)
 }
 
 // readEvidence adds what a direct reading says.

@@ -35,11 +35,12 @@ type Assessment struct {
 	Stiffness                *Stiffness     `json:"stiffness,omitempty"`
 	Strength                 *Strength      `json:"strength_use"`
 
-	Verdict  Verdict      `json:"verdict"`
-	Reason   string       `json:"reason"`    // one sentence: why this verdict
-	NextStep string       `json:"next_step"` // one sentence: what to do or to measure now
-	Findings []Finding    `json:"findings"`
-	Budget   []BudgetLine `json:"budget"`
+	Verdict   Verdict      `json:"verdict"`
+	DecidedBy string       `json:"decided_by"` // the rule that gave the verdict: strength, rival strength, load, tension, two readings, implied load, inside, coarse, none, unfit, reading, "reading, load" or conflict
+	Reason    string       `json:"reason"`     // one sentence: why this verdict
+	NextStep  string       `json:"next_step"`  // one sentence: what to do or to measure now
+	Findings  []Finding    `json:"findings"`
+	Budget    []BudgetLine `json:"budget"`
 
 	Drawing Drawing `json:"-"`
 

@@ -69,7 +69,7 @@ Results go to standard output, everything else to standard error. Exit codes:
   0  done
   1  input refused, or a file could not be read or written
   2  wrong usage
-  3  with --exit-by-verdict: a cable is undecided or has no design, none is worse
+  3  with --exit-by-verdict: a cable is undecided or without design, none worse
   4  with --exit-by-verdict: a cable is slack, overloaded or off design
 
 It advises. A licensed engineer and the local code decide.`
@@ -91,7 +91,8 @@ func newRoot(s streams) *cobra.Command {
 		RunE: func(cmd *cobra.Command, _ []string) error { return cmd.Help() },
 	}
 	root.SetFlagErrorFunc(func(_ *cobra.Command, err error) error { return usageError{err} })
-	root.AddCommand(newCheck(s), newAssess(s), newDemo(s))
+	root.AddCommand(newCheck(s), newAssess(s), newDemo(s), newManual(s))
+	narrow(root)
 	return root
 }
 
