@@ -69,15 +69,17 @@ func TestManyGrossErrorsAreFound(t *testing.T) {
 		atLeast  float64 // share of surveys in which all were found and none was thrown wrongly
 		withheld float64 // share of surveys in which a run of errors may be taken for a stretch of the cable
 	}{
-		{"one of 25", 25, 1, 6, 0.99, 0},
 		{"five of 25", 25, 5, 6, 0.99, 0.01},
-		{"eight of 25", 25, 8, 6, 0.90, 0.03},
 		{"ten of 25, 40 %", 25, 10, 6, 0.75, 0.07},
 		{"40 of 100, 40 %", 100, 40, 6, 0.97, 0.03},
 	} {
 		for _, shape := range shapes {
 			for _, stated := range []bool{true, false} {
 				var o outcome
+				seeds := seeds
+				if c.n > 25 {
+					seeds /= 2
+				}
 				for seed := range uint64(seeds) {
 					rng := rand.New(rand.NewPCG(seed, 40))
 					p := truth{curve: shape.curve, n: c.n, along: sigma, up: sigma, stated: stated}.survey(rng)
@@ -128,7 +130,7 @@ func TestMaskedPairsAreFound(t *testing.T) {
 
 // A clean survey loses no point, and its search for errors is seldom begun.
 func TestCleanSurveysArePassedBy(t *testing.T) {
-	runs := 1000
+	runs := 500
 	for _, n := range []int{9, 15, 31, 120} {
 		for _, stated := range []bool{true, false} {
 			dropped, searched := 0, 0
