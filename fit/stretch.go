@@ -35,7 +35,7 @@ func (x *rejection) stretches() (out []Stretch, places []int) {
 	for i, place := range x.dropped {
 		side[place] = x.Rejected[i].Residual
 	}
-	steps := x.steps(order)
+	steps := x.steps(order) // in a cloud wrong points are alike by chance, and a bend is a run of many: steps say nothing there
 	for i := 0; i < n; {
 		v := side[order[i]]
 		to := i + 1
@@ -46,7 +46,7 @@ func (x *rejection) stretches() (out []Stretch, places []int) {
 			i = to
 			continue
 		}
-		s := Stretch{From: x.all[order[i]].S, To: x.all[order[to-1]].S, Chance: runChance(n, len(x.dropped), to-i), Smooth: true}
+		s := Stretch{From: x.all[order[i]].S, To: x.all[order[to-1]].S, Chance: runChance(n, len(x.dropped), to-i), Smooth: n < fewestForBlocks}
 		for k := i; k < to; k++ {
 			s.Off += side[order[k]] / float64(to-i)
 			s.Smooth = s.Smooth && steps[k] <= distuv.UnitNormal.Quantile(1-smoothChance/2)
