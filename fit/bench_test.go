@@ -37,6 +37,22 @@ func BenchmarkFit31(b *testing.B) {
 	})
 }
 
+// A clean survey of which wrong points would be dropped: it must hardly cost more than one of which none are.
+func BenchmarkCleanSurvey(b *testing.B) {
+	for _, stated := range []bool{true, false} {
+		obs := noisy(rand.New(rand.NewPCG(1, 3)), hang(120, 0, 0.0482), 31, 0.005, stated)
+		for _, beyond := range []float64{0, 6} {
+			b.Run("stated="+strconv.FormatBool(stated)+"/beyond="+strconv.Itoa(int(beyond)), func(b *testing.B) {
+				for b.Loop() {
+					if _, err := InPlane(obs, Frame{}, End{}, End{Station: 120}, Options{RejectBeyond: beyond, NoAlternatives: true}); err != nil {
+						b.Fatal(err)
+					}
+				}
+			})
+		}
+	}
+}
+
 func BenchmarkCable(b *testing.B) {
 	for _, n := range []int{10, 100, 10000} {
 		p := truth{curve: hang(120, 0.05, 0.03), n: n, along: 0.005, up: 0.005, stated: true}.survey(rand.New(rand.NewPCG(1, 2)))

@@ -97,14 +97,14 @@ func InPlane(obs []Observation, frame Frame, a, b End, o Options) (*Result, erro
 	if r.locals, err = o.locals(a, b); err != nil {
 		return nil, err
 	}
-	if err = r.adjust(w, share, o, false); o.FindLoads > 0 && len(r.Rejected) > 1 {
+	if err = r.adjust(w, share, o, false); o.FindLoads > 0 && (len(r.Rejected) > 1 || r.Stretches != nil || r.Torn != nil) {
 		// What was dropped point by point may have been a local load: the other order is tried, and the one that keeps more points wins.
 		other := &Result{Frame: frame, A: a, B: b, Widening: 1, APriori: r.APriori, Observations: slices.Clone(obs)}
 		if _, err := accuracy(other.Observations); err != nil {
 			return nil, err
 		}
 		other.locals, _ = o.locals(a, b)
-		if other.adjust(w, share, o, true) == nil && len(other.locals) > len(r.locals) && len(other.Rejected) < len(r.Rejected) {
+		if other.adjust(w, share, o, true) == nil && len(other.locals) > len(r.locals) && len(other.Rejected)+other.together() < len(r.Rejected)+r.together() {
 			r, err = other, nil
 		}
 	}
@@ -142,7 +142,21 @@ func (r *Result) adjust(w *workspace, share float64, o Options, searchFirst bool
 		}
 		return err
 	}
-	return r.search(w, share, o)
+	before := len(r.locals)
+	err = r.search(w, share, o)
+	if len(r.locals) > before { // the load is what they were off by
+		r.Stretches, r.Torn = nil, nil
+	}
+	return err
+}
+
+// together is the number of points that were not dropped because they lie off the curve together.
+func (r *Result) together() int {
+	n := len(r.Torn)
+	for _, s := range r.Stretches {
+		n += len(s.Points)
+	}
+	return n
 }
 
 // share is the share of self weight that the shape stands for.

@@ -105,6 +105,8 @@ type Result struct {
 	W            []float64     // test statistic of each: see SingleTest
 	Rejected     []Suspect     // dropped
 	Suspects     []Suspect     // listed, still used
+	Stretches    []Stretch     // neighbours that were not dropped because they lie off the curve together
+	Torn         []Suspect     // too many to drop: they lie off the curve that the most of them agree on, and are still used
 	LeftOut      []Suspect     // never used: within Options.Clear of a support or a local load
 
 	DegreesOfFreedom int

@@ -255,6 +255,7 @@ func (j *judgement) tellSurvey() {
 	if n := len(r.Rejected); n > 0 {
 		j.add("rejected", Look, "%d of %d points left out: %s.", n, n+len(r.Observations), suspects(r.Rejected))
 	}
+	j.tellTogether()
 	j.tellSwing()
 	if n := len(r.LeftOut); n > 0 {
 		j.add("left-out", Note, "%d points near supports or local loads were not used, because bending makes another shape there: %s.", n, names(r.LeftOut))
@@ -287,6 +288,36 @@ func (j *judgement) tellSurvey() {
 	}
 }
 
+// tellTogether says which points lie off the curve together, and that too many were left out to be errors only.
+func (j *judgement) tellTogether() {
+	r := j.r
+	const asFor = "Still used: look there for a local load, a touching branch, a bend near a clamp, a wrong target height for some points, or points on another cable."
+	j.a.together = r.Torn
+	for _, s := range r.Stretches {
+		j.a.together = append(j.a.together, s.Points...)
+		n, side := len(s.Points), "above"
+		if s.Off < 0 {
+			side = "below"
+		}
+		why := "neighbours of that many together are not chance errors"
+		if s.Smooth {
+			why = "the points around lead up to them without a step"
+		}
+		what := fmt.Sprintf("%d points between %.2f m and %.2f m (%s) lie", n, s.From, s.To, suspects(s.Points))
+		if n == 1 {
+			what = fmt.Sprintf("Point %s at %.2f m lies", suspects(s.Points), s.From)
+		}
+		j.add("off-together", Act, "%s about %s %s the curve through the others, and %s. %s", what, Millimetre.About(math.Abs(s.Off)), side, why, asFor)
+	}
+	all := len(r.Observations) + len(r.Rejected)
+	switch {
+	case r.Torn != nil:
+		j.add("torn", Act, "%d of %d points lie off the curve that the rest agrees on: too many to leave out, so all are used and no figure here can be trusted. Check units, codes and set-ups, then survey again.", len(r.Torn), all)
+	case 3*len(r.Rejected) > all:
+		j.add("many-rejected", Act, "More than a third of the points, %d of %d, were left out: the figures rest on the rest alone. Find out what went wrong with the survey before acting on them.", len(r.Rejected), all)
+	}
+}
+
 func (j *judgement) tellSwing() {
 	if w := j.a.Fit.Swing; w != nil {
 		side, under := "left", "side load"
@@ -315,11 +346,7 @@ func names(list []fit.Suspect) string {
 			out = append(out, fmt.Sprintf("and %d more", len(list)-most))
 			break
 		}
-		name := s.ID
-		if name == "" {
-			name = fmt.Sprintf("line %d", s.Line)
-		}
-		out = append(out, name+" "+s.Reason)
+		out = append(out, pointName(s)+" "+s.Reason)
 	}
 	return strings.Join(out, "; ")
 }
@@ -332,11 +359,7 @@ func suspects(list []fit.Suspect) string {
 			out = append(out, fmt.Sprintf("and %d more", len(list)-most))
 			break
 		}
-		name := s.ID
-		if name == "" {
-			name = fmt.Sprintf("line %d", s.Line)
-		}
-		out = append(out, fmt.Sprintf("%s (%+.0f mm, %s)", name, 1000*s.Residual, s.Reason))
+		out = append(out, fmt.Sprintf("%s (%+.0f mm, %s)", pointName(s), 1000*s.Residual, s.Reason))
 	}
 	return strings.Join(out, ", ")
 }

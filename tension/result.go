@@ -53,6 +53,7 @@ type Assessment struct {
 	Drawing Drawing `json:"-"`
 
 	forces *spanForces // what spans of one cable share; nil for a cable of one span
+	together []fit.Suspect // points that lie off the curve together and are still used
 }
 
 // Verdict is the word for the state of a cable.

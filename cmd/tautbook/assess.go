@@ -44,7 +44,9 @@ against the design at the day's temperature and load, and prints the condition s
 Design values come from cables.csv; without it there are shapes but no forces, unless --self-weight or --deck-load gives a
 load. Conditions of the visit stand as "# key: value" lines at the top of the survey file or are given by flag.
 
-Points whose normalised residual is beyond --reject-beyond are left out, one at a time, and listed; 0 leaves out none.
+Points as unlikely as --reject-beyond standard deviations are left out and listed; 0 leaves out none. When several are suspected, the
+curve that most points agree on is found first, so that errors that are alike do not hide each other. Neighbours that lie off
+the curve together are the cable, not errors: they are named and kept.
 
 A load that hangs at one place makes a kink. Loads of that kind are told by --load "CABLE; 3.2 +- 0.2 kN; at 12.4 m; what"; kinks that
 nobody told are searched for, and what is found is said in the findings. --find-loads=false fits without looking for any.`
@@ -234,7 +236,11 @@ func assessAll(cases []tension.Case) ([]tension.Assessment, error) {
 	}
 	close(next)
 	group.Wait()
-	return out, errors.Join(errs...)
+	if err := errors.Join(errs...); err != nil {
+		return nil, err
+	}
+	tension.NameWrongCables(cases, out)
+	return out, nil
 }
 
 func newReport(in input, cables []tension.Assessment, s streams) fieldsheets.Report {
