@@ -89,7 +89,7 @@ func signOf(v float64, negative bool) float64 {
 
 // sexagesimal adds up degrees, minutes and seconds, rad.
 func sexagesimal(text string, parts []string, mark byte) (sum float64, err error) {
-	if len(parts) == 0 || len(parts) > 3 {
+	if len(parts) == 0 || len(parts) > 3 || strings.Contains(text, " -") {
 		return 0, wrong(text, "degrees, minutes and seconds, such as 123 45 06.7", "")
 	}
 	for i, p := range parts {
