@@ -1,6 +1,7 @@
 package fieldsheets
 
 import (
+	"bytes"
 	"encoding/csv"
 	"io"
 	"slices"
@@ -32,17 +33,21 @@ func WriteCSV(w io.Writer, r Report) error {
 	if err := out.Write(header); err != nil {
 		return err
 	}
-	for i := range r.Cables {
+	if out.Flush(); out.Error() != nil {
+		return out.Error()
+	}
+	return inOrder(w, len(r.Cables), func(text *bytes.Buffer, i int) error {
+		line := csv.NewWriter(text)
 		row := make([]string, len(csvColumns))
 		for k, c := range csvColumns {
 			row[k] = c.cell(&r.Cables[i])
 		}
-		if err := out.Write(row); err != nil {
+		if err := line.Write(row); err != nil {
 			return err
 		}
-	}
-	out.Flush()
-	return out.Error()
+		line.Flush()
+		return line.Error()
+	})
 }
 
 func exactly(v float64) string { return strconv.FormatFloat(v, 'g', -1, 64) }
@@ -110,6 +115,16 @@ func direct(get func(d *tension.Direct) *tension.Quantity) func(a *tension.Asses
 	}
 }
 
+// next is a figure of the support toward the next span.
+func next(get func(s *tension.SupportForce) *tension.Quantity) func(a *tension.Assessment) *tension.Quantity {
+	return func(a *tension.Assessment) *tension.Quantity {
+		if a.NextSupport == nil {
+			return nil
+		}
+		return get(a.NextSupport)
+	}
+}
+
 func swing(get func(w *tension.Swing) *tension.Quantity) func(a *tension.Assessment) *tension.Quantity {
 	return func(a *tension.Assessment) *tension.Quantity {
 		if a.Fit.Swing == nil {
@@ -159,6 +174,7 @@ func makeColumns() (out []csvColumn) {
 		{"swing_deg", swing(func(w *tension.Swing) *tension.Quantity { return &w.AngleDeg })},
 		{"side_load_N_per_m", swing(func(w *tension.Swing) *tension.Quantity { return w.SideLoad })},
 		{"horizontal_tension_N", func(a *tension.Assessment) *tension.Quantity { return a.HorizontalTension }},
+		{"joint_horizontal_tension_N", func(a *tension.Assessment) *tension.Quantity { return a.JointHorizontalTension }},
 		{"reaction_A_vertical_N", reaction(0, func(r *tension.Reaction) *tension.Quantity { return &r.Vertical })},
 		{"reaction_A_tension_N", reaction(0, func(r *tension.Reaction) *tension.Quantity { return &r.Tension })},
 		{"reaction_A_slope_deg", reaction(0, func(r *tension.Reaction) *tension.Quantity { return &r.SlopeDeg })},
@@ -173,6 +189,9 @@ func makeColumns() (out []csvColumn) {
 		{"direct_reading_horizontal_tension_N", direct(func(d *tension.Direct) *tension.Quantity { return &d.HorizontalTension })},
 		{"direct_reading_ratio", direct(func(d *tension.Direct) *tension.Quantity { return d.Ratio })},
 		{"direct_reading_load_factor", direct(func(d *tension.Direct) *tension.Quantity { return &d.LoadFactor })},
+		{"next_support_tension_difference_N", next(func(s *tension.SupportForce) *tension.Quantity { return &s.TensionStep })},
+		{"next_support_resultant_N", next(func(s *tension.SupportForce) *tension.Quantity { return &s.Resultant })},
+		{"next_support_resultant_from_vertical_deg", next(func(s *tension.SupportForce) *tension.Quantity { return &s.ResultantFromDown })},
 		{"horizontal_tension_at_design_temperature_N", func(a *tension.Assessment) *tension.Quantity { return a.AtDesignTemperature }},
 	} {
 		add(quantityColumns(q.name, q.get)...)

@@ -88,6 +88,9 @@ func groups(a *tension.Assessment) []group {
 	if a.Direct != nil {
 		out = append(out, directGroup(a))
 	}
+	if a.MonteCarlo != nil {
+		out = append(out, monteCarloGroup(a.MonteCarlo))
+	}
 	return append(out, strengthGroup(a), loadGroup(a), shapeGroup(a))
 }
 

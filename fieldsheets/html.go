@@ -32,6 +32,7 @@ type page struct {
 	Visit    []row
 	Tally    string
 	Cables   []cableView
+	Joined   []continuousView
 	Urgent   []cableView // the same, most urgent first
 	Files    []fileView
 	Designs  string // the cables file
@@ -98,6 +99,9 @@ func pageOf(r Report) page {
 		Signers: []string{"Surveyed by", "Assessed by", "Reviewed by"}}
 	for i := range r.Cables {
 		p.Cables = append(p.Cables, viewOf(i, &r.Cables[i]))
+	}
+	for i := range r.Continuous {
+		p.Joined = append(p.Joined, continuousViewOf(&r.Continuous[i]))
 	}
 	p.Urgent = slices.Clone(p.Cables)
 	slices.SortStableFunc(p.Urgent, func(a, b cableView) int { return urgency[a.Verdict] - urgency[b.Verdict] })

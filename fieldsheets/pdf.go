@@ -60,6 +60,9 @@ func WritePDF(w io.Writer, r Report, size Paper) error {
 	for i := range p.Cables {
 		d.cable(&p.Cables[i])
 	}
+	for i := range p.Joined {
+		d.joined(&p.Joined[i])
+	}
 	d.provenance(p)
 	d.cautions(p)
 	if err := d.pdf.Output(w); err != nil {

@@ -89,6 +89,18 @@ func (d *paper) cable(c *cableView) {
 	}
 }
 
+// joined is the section of one cable over its supports.
+func (d *paper) joined(c *continuousView) {
+	d.pdf.AddPage()
+	d.heading(c.Title, 14)
+	d.paragraph("", bodyPt, c.Lead)
+	for _, f := range c.Findings {
+		d.room(8)
+		d.labelled(strings.ToUpper(string(f.Level)), f.Text)
+	}
+	d.columns(c.Groups)
+}
+
 func (d *paper) bullet(text string) {
 	d.font("", bodyPt-0.5)
 	lines := d.split(d.shown(text), d.wide-4)

@@ -11,12 +11,14 @@ import (
 // Report is one visit as it is handed over: what was read, how it was understood, and what it says about every cable.
 // Printers do not change it.
 type Report struct {
-	Tool     Tool                 `json:"tool"`
-	Printed  time.Time            `json:"printed"`
-	Visit    Visit                `json:"visit"`
-	Survey   Survey               `json:"survey"`
-	Cables   []tension.Assessment `json:"cables"`
-	Cautions []string             `json:"cautions"`
+	Tool    Tool                 `json:"tool"`
+	Printed time.Time            `json:"printed"`
+	Visit   Visit                `json:"visit"`
+	Survey  Survey               `json:"survey"`
+	Cables  []tension.Assessment `json:"cables"`
+	// Continuous are the cables that pass over intermediate supports: what their spans say together.
+	Continuous []tension.Continuous `json:"continuous_cables,omitempty"`
+	Cautions   []string             `json:"cautions"`
 }
 
 // Tool names the program that made a report.
@@ -100,13 +102,14 @@ type RecordedLocal struct {
 // Input is what a report is made of beside the assessments.
 type Input struct {
 	Surveys       []*survey.Survey
-	CablesFile    string          // "" when there was none
-	CablesNotices []survey.Notice // what its reader said
+	CablesFile    string               // "" when there was none
+	CablesNotices []survey.Notice      // what its reader said
+	Continuous    []tension.Continuous // of the assessments, see tension.JoinSpans
 }
 
 // NewReport puts a report together; printed is the time that stands on the sheet.
 func NewReport(tool Tool, printed time.Time, in Input, cables []tension.Assessment) Report {
-	r := Report{Tool: tool, Printed: printed, Cables: cables, Cautions: slices.Clone(cautions)}
+	r := Report{Tool: tool, Printed: printed, Cables: cables, Continuous: in.Continuous, Cautions: slices.Clone(cautions)}
 	r.Survey = Survey{CablesFile: in.CablesFile, Notices: noNil(in.CablesNotices), Files: []SurveyFile{}}
 	if r.Cables == nil {
 		r.Cables = []tension.Assessment{}

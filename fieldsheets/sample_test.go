@@ -77,6 +77,30 @@ func sampleSurvey() *survey.Survey {
 			Listed: []survey.ListedLoad{{Cable: "loaded", Load: *q(30, 1), Spread: survey.AlongCable, What: "service pipe"}}, Notes: []string{"invented data"}}}
 }
 
+// sampleContinuous is a cable over two supports, one of them stuck.
+func sampleContinuous() tension.Continuous {
+	off, stuck, sum, p := 0.4, -5.1, 26.3, 2e-6
+	support := tension.SupportForce{From: "1", To: "2", Over: survey.BetweenEqualTension, Surveyed: true, TensionFrom: *q(17290, 260), TensionTo: *q(17320, 262), TensionStep: *q(30, 75),
+		HorizontalStep: *q(28, 74), Along: *q(28, 74), Left: *q(-410, 6), Down: *q(3650, 55), Resultant: *q(3673, 55), ResultantAzimuth: 152, ResultantFromDown: *q(6.4, 0.3),
+		Bend: *q(12.1, 0.02), FrictionNeeded: q(0.008, 0.02), Off: &off}
+	jammed := support
+	jammed.From, jammed.To, jammed.Over, jammed.Off, jammed.Stuck = "2", "3", survey.BetweenEqualHorizontal, &stuck, true
+	jammed.FrictionNeeded, jammed.HorizontalStep = nil, *q(-810, 159)
+	return tension.Continuous{Structure: "Invented footbridge", Cable: "track", SurveyFile: "points.csv",
+		Spans:    []tension.JoinedSpan{{Span: "1", Separate: *q(17160, 255), Joint: q(17170, 240)}, {Span: "2", Reversed: true, Separate: *q(17190, 257), Joint: q(17170, 240)}, {Span: "3", Separate: *q(16380, 250)}},
+		Supports: []tension.SupportForce{support, jammed}, ChiSquare: &sum, DegreesOfFreedom: 2, P: &p,
+		Findings: []tension.Finding{{ID: "support-stuck", Level: tension.Act, Text: "The support between spans 2 and 3 is stuck, in a sentence."}}}
+}
+
+// sampleMonteCarlo is a run that bears out H and not the ratio.
+func sampleMonteCarlo() *tension.MonteCarlo {
+	low, in, high := 0.97, 0.03, 0.0
+	good := tension.Simulated{Mean: 17161, U: 255, Low: 16660, High: 17665, LinearLowOff: 1.2, LinearHighOff: -0.8, Tolerance: 5, SamplingError: 1.5, LinearAccepted: true}
+	bad := tension.Simulated{Mean: 0.803, U: 0.017, Low: 0.775, High: 0.839, LinearLowOff: -0.005, LinearHighOff: -0.01, Tolerance: 0.0005, SamplingError: 0.0001}
+	return &tension.MonteCarlo{Trials: 200000, Failed: 3, Seed: 1, Adaptive: true, Stable: true, HorizontalTension: &good, Ratio: &bad, GreatestTension: &good,
+		PSlack: &low, PInside: &in, POverload: &high, Text: "Linear propagation is not good enough for the ratio, in a sentence."}
+}
+
 func sampleReport() Report {
 	flat := bare("flat", tension.Undecided)
 	flat.HorizontalTensionAtLeast = new(float64)
@@ -88,7 +112,10 @@ func sampleReport() Report {
 	loaded.Load.Record = survey.LoadsListed
 	loaded.Expected.LoadRatio = *q(1.79, 0.05)
 	loaded.Rival.Excluded, loaded.Rival.ExcludedBy = true, "the record of loads"
+	loaded.MonteCarlo = sampleMonteCarlo()
+	joined := sampleContinuous()
+	loaded.JointHorizontalTension, loaded.NextSupport = joined.Spans[0].Joint, &joined.Supports[0]
 	cables := []tension.Assessment{full("c1", tension.AsDesigned), full("c2", tension.Slack), full("c3", tension.OffDesign), loaded, flat, bare("c6", tension.NoDesign)}
 	return NewReport(Tool{Name: "tautbook", Version: "test"}, time.Date(2026, 6, 12, 8, 30, 0, 0, time.UTC),
-		Input{Surveys: []*survey.Survey{sampleSurvey()}, CablesFile: "cables.csv", CablesNotices: []survey.Notice{{File: "cables.csv", Line: 1, Text: "column not used"}}}, cables)
+		Input{Surveys: []*survey.Survey{sampleSurvey()}, CablesFile: "cables.csv", CablesNotices: []survey.Notice{{File: "cables.csv", Line: 1, Text: "column not used"}}, Continuous: []tension.Continuous{joined}}, cables)
 }

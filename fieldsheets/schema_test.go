@@ -25,7 +25,7 @@ func schemaOf(t reflect.Type, defs map[string]any) any {
 		return map[string]any{"type": "array", "items": schemaOf(t.Elem(), defs)}
 	case reflect.Float64:
 		return map[string]any{"type": "number"}
-	case reflect.Int:
+	case reflect.Int, reflect.Uint64:
 		return map[string]any{"type": "integer"}
 	case reflect.Bool:
 		return map[string]any{"type": "boolean"}

@@ -28,6 +28,9 @@ func WriteText(w io.Writer, r Report, o TextOptions) error {
 	for i := range r.Cables {
 		p.cable(&r.Cables[i])
 	}
+	for i := range r.Continuous {
+		p.continuous(&r.Continuous[i])
+	}
 	p.understanding(r)
 	p.title("Cautions")
 	for _, c := range r.Cautions {
@@ -211,12 +214,7 @@ func (p *textPrinter) cable(a *tension.Assessment) {
 		}
 	}
 	p.grid(readings(a))
-	for _, g := range groups(a) {
-		p.line("\n  %s", g.Title)
-		for _, r := range g.Rows {
-			p.wrapped(fmt.Sprintf("    %-28s ", r.Label), cleanSentence(r.Value))
-		}
-	}
+	p.groups(groups(a))
 	p.budget(a)
 	first := true
 	for _, f := range a.Findings {

@@ -34,19 +34,28 @@ func (t SingleTest) critical(alpha float64) float64 {
 	return distuv.StudentsT{Sigma: 1, Nu: t.Dof}.Quantile(1 - alpha/2)
 }
 
-// quantiles keeps the last quantiles asked for: one of many cables has mostly the degrees of freedom of the one before, and a
+// quantiles keeps the quantiles asked for: one of many cables has mostly the degrees of freedom of the one before, and a
 // quantile costs as much as the fit.
 type quantiles struct {
-	alpha, dof, t float64 // of critical
-	k, low, high  float64 // of region
+	t            map[[2]float64]float64 // critical, by alpha and degrees of freedom
+	k, low, high float64                // of region
 }
+
+// mostQuantiles is how many quantiles are kept; surveys of very many different sizes start anew.
+const mostQuantiles = 256
 
 // critical is t.critical(alpha).
 func (q *quantiles) critical(t SingleTest, alpha float64) float64 {
-	if q.alpha != alpha || q.dof != t.Dof {
-		q.alpha, q.dof, q.t = alpha, t.Dof, t.critical(alpha)
+	key := [2]float64{alpha, t.Dof}
+	v, ok := q.t[key]
+	if !ok {
+		if q.t == nil || len(q.t) >= mostQuantiles {
+			q.t = make(map[[2]float64]float64)
+		}
+		v = t.critical(alpha)
+		q.t[key] = v
 	}
-	return q.t
+	return v
 }
 
 // region is the 95 % acceptance region of a variance factor with k degrees of freedom.

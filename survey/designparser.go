@@ -47,6 +47,7 @@ func (p *designParser) parse() Design {
 	d.SafetyFactor = p.safetyFactor(r.SafetyFactor)
 	d.SlackBelow = p.limit("slack_below", r.SlackBelow)
 	d.OverloadAbove = p.limit("overload_above", r.OverloadAbove)
+	p.between(&d)
 	p.load(&d)
 	p.plausible(&d)
 	return d
@@ -135,6 +136,14 @@ func (p *designParser) limit(column, cell string) *float64 {
 		p.problem(column, cell, "a percentage of the expected tension above 0 (and below 100 for slack_below)", "")
 	}
 	return &f
+}
+
+// between settles how the cable passes over its intermediate supports.
+func (p *designParser) between(d *Design) {
+	var err error
+	if d.OverA, d.OverB, err = ParseSupportBetween(p.row.Between); err != nil {
+		p.problem("support_between", p.row.Between, betweenExpected, "")
+	}
 }
 
 // load settles which load shapes the cable.

@@ -46,6 +46,7 @@ type designRow struct {
 	UBending       string `csv:"u_bending_stiffness"`
 	TakeUp         string `csv:"take_up_per_turn"`
 	UTakeUp        string `csv:"u_take_up_per_turn"`
+	Between        string `csv:"support_between"`
 }
 
 // designColumns are the columns with a unit, and what is allowed in them.
@@ -60,7 +61,7 @@ var designColumns = map[string]struct {
 	"slack_below":       {Fraction, true}, "overload_above": {Fraction, true},
 }
 
-var plainColumns = []string{"structure", "cable", "span", "load", "safety_factor"}
+var plainColumns = []string{"structure", "cable", "span", "load", "safety_factor", "support_between"}
 
 // designHeader is the header of a cables file as understood: units by column name.
 type designHeader struct {

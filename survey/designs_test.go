@@ -12,8 +12,8 @@ import (
 
 // fullCables is a cables file with every column; values are invented.
 const fullCables = `# design values of an invented footbridge
-structure,cable,span,load,self_weight [N/m],u_self_weight [%],deck_load [kN/m],u_deck_load [N/m],design_span [ft],u_design_span [mm],design_rise [m],u_design_rise,design_tension [kip],u_design_tension [%],design_sag [m],u_design_sag,design_temperature [degF],u_design_temperature [degC],axial_stiffness [MN],u_axial_stiffness [%],expansion [1e-6/degC],u_expansion,breaking_load [kN],u_breaking_load,safety_factor,slack_below [%],overload_above [%],diameter [in],u_diameter,take_up_per_turn [mm],u_take_up_per_turn,bending_stiffness [kN m2],u_bending_stiffness [N m2]
-Mill,main,1,both,150,2,0.4,20,100,5,-1.5,0.01,20,5,,,50,2,160,3,12,0.5,900,10,2.5,12,15,1.5,0.01,4,0.1,8.2,500
+structure,cable,span,load,self_weight [N/m],u_self_weight [%],deck_load [kN/m],u_deck_load [N/m],design_span [ft],u_design_span [mm],design_rise [m],u_design_rise,design_tension [kip],u_design_tension [%],design_sag [m],u_design_sag,design_temperature [degF],u_design_temperature [degC],axial_stiffness [MN],u_axial_stiffness [%],expansion [1e-6/degC],u_expansion,breaking_load [kN],u_breaking_load,safety_factor,slack_below [%],overload_above [%],diameter [in],u_diameter,take_up_per_turn [mm],u_take_up_per_turn,bending_stiffness [kN m2],u_bending_stiffness [N m2],support_between
+Mill,main,1,both,150,2,0.4,20,100,5,-1.5,0.01,20,5,,,50,2,160,3,12,0.5,900,10,2.5,12,15,1.5,0.01,4,0.1,8.2,500,A: fixed / B: equal tension
 `
 
 func value(q *Quantity) Quantity {
@@ -30,7 +30,7 @@ func TestDesignColumns(t *testing.T) {
 		t.Fatalf("%d designs, notices %+v, %v", len(designs), notices, err)
 	}
 	d := designs[0]
-	if d.Structure != "Mill" || d.Cable != "main" || d.Span != "1" || d.Load != LoadBoth || d.Line != 3 {
+	if d.Structure != "Mill" || d.Cable != "main" || d.Span != "1" || d.Load != LoadBoth || d.OverA != BetweenFixed || d.OverB != BetweenEqualTension || d.Line != 3 {
 		t.Errorf("%+v", d)
 	}
 	const lbf = 0.45359237 * 9.80665

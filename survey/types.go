@@ -235,10 +235,11 @@ type Design struct {
 	Expansion              *Quantity // alpha, 1/degC
 	BreakingLoad           *Quantity // MBL, N
 	SafetyFactor           *float64
-	SlackBelow             *float64  // fraction of expected (0.10 for 10 %)
-	OverloadAbove          *float64  // fraction of expected
-	Diameter               *Quantity // m
-	BendingStiffness       *Quantity // EI, N m2
-	TakeUpPerTurn          *Quantity // m of unstressed length for one turn
-	Line                   int       // line of cables.csv
+	SlackBelow             *float64       // fraction of expected (0.10 for 10 %)
+	OverloadAbove          *float64       // fraction of expected
+	Diameter               *Quantity      // m
+	BendingStiffness       *Quantity      // EI, N m2
+	TakeUpPerTurn          *Quantity      // m of unstressed length for one turn
+	OverA, OverB           SupportBetween // support_between: how the cable passes over the support at its A and B, if it goes on there
+	Line                   int            // line of cables.csv
 }

@@ -48,6 +48,8 @@ type Case struct {
 	Design     *survey.Design // nil when there are no design values for this span
 	Conditions survey.Conditions
 	Fit        fit.Options // accuracy and rejection; the shape follows from the load
+	NoDrawing  bool        // leave Assessment.Drawing empty: of very many cables the pictures' points are most of the memory
+	Sampling   *Sampling   // Monte Carlo beside the linear propagation; nil = none
 }
 
 // Assess fits the shape that the load asks for and works out forces, the comparison with the design, verdict, findings and
@@ -62,9 +64,17 @@ func Assess(c Case) (Assessment, error) {
 	j.fill()
 	j.compare()
 	j.decide()
+	if c.Sampling != nil {
+		j.a.MonteCarlo = j.simulate(*c.Sampling)
+	}
 	j.tell()
 	j.a.Budget = j.budget()
-	j.a.Drawing = j.drawing()
+	if !c.NoDrawing {
+		j.a.Drawing = j.drawing()
+	}
+	if c.Points.Span != "" {
+		j.a.forces = j.forces()
+	}
 	return j.a, nil
 }
 

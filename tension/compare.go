@@ -203,7 +203,11 @@ func (j *judgement) stiffness() *Stiffness {
 	at := func(factor, dt float64) (dayState, bool) {
 		c := day
 		c.SelfWeight, c.DeckLoad = load.self*factor, load.deck*factor
-		st, err := j.in.under(c, 0, y[outS0Today], ch, dt, points)
+		near := 0.0
+		if math.Abs(factor-1) <= 0.01 {
+			near = y[outH] // so little off, today's tension is the best first guess
+		}
+		st, err := j.in.under(c, near, y[outS0Today], ch, dt, points)
 		return st, err == nil
 	}
 	now, ok := at(1, dt)

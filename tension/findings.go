@@ -28,6 +28,18 @@ func (j *judgement) tell() {
 	j.tellShape()
 	j.tellMissing()
 	j.tellExact()
+	j.tellMonteCarlo()
+}
+
+// tellMonteCarlo says whether the linear uncertainties hold.
+func (j *judgement) tellMonteCarlo() {
+	if m := j.a.MonteCarlo; m != nil {
+		level := Note
+		if !m.LinearHolds {
+			level = Look
+		}
+		j.add("monte-carlo", level, "%s", m.Text)
+	}
 }
 
 func (j *judgement) tellStrength() {

@@ -45,6 +45,7 @@ type inputs struct {
 	readOf  survey.ReadOf // what inReading is of
 	curve   fit.Curve     // shape family and share; its numbers are overwritten from x
 	frame   spanFrame
+	filed   *State  // the designer's cable at the estimates, for draws and moves that leave its inputs alone; nil = none
 	near    outputs // figures at the estimates: first guesses for the states nearby; zero = none
 	few     float64 // factor on u of the survey for an accuracy estimated from few residuals; 1 = none
 }

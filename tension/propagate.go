@@ -20,6 +20,10 @@ func (in *inputs) propagate() propagated {
 	p := propagated{in: in, effect: make([][]outputs, len(in.sources))}
 	p.y, p.lacks = in.evaluate(in.x)
 	in.near = p.y
+	if in.have[inSpan] && in.have[inRise] && !math.IsNaN(p.y[outS0Design]) {
+		var y outputs
+		in.filed, _ = in.design(&y, in.x)
+	}
 	x := make([]float64, len(in.x))
 	for i, s := range in.sources {
 		p.effect[i] = make([]outputs, len(s.directions))

@@ -34,6 +34,7 @@ type Assessment struct {
 	Direct                   *Direct        `json:"direct_reading,omitempty"`
 	Stiffness                *Stiffness     `json:"stiffness,omitempty"`
 	Strength                 *Strength      `json:"strength_use"`
+	MonteCarlo               *MonteCarlo    `json:"monte_carlo,omitempty"`
 
 	Verdict   Verdict      `json:"verdict"`
 	DecidedBy string       `json:"decided_by"` // the rule that gave the verdict: strength, rival strength, load, tension, two readings, implied load, inside, coarse, none, unfit, reading, "reading, load" or conflict
@@ -42,7 +43,15 @@ type Assessment struct {
 	Findings  []Finding    `json:"findings"`
 	Budget    []BudgetLine `json:"budget"`
 
+	// JointHorizontalTension is H of this span, N, together with the neighbouring spans of its cable over supports that let it
+	// run; nil where no such condition holds. The verdict rests on HorizontalTension alone.
+	JointHorizontalTension *Quantity `json:"joint_horizontal_tension_N,omitempty"`
+	// NextSupport is the support between this span and the next of its cable; it stands with the cable in the sheets.
+	NextSupport *SupportForce `json:"-"`
+
 	Drawing Drawing `json:"-"`
+
+	forces *spanForces // what spans of one cable share; nil for a cable of one span
 }
 
 // Verdict is the word for the state of a cable.

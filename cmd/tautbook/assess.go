@@ -23,6 +23,7 @@ import (
 type assessOptions struct {
 	readingFlags
 	conditionFlags
+	samplingFlags
 	selfWeight, deckLoad string
 	findLoads            bool
 	rejectBeyond         float64
@@ -30,6 +31,7 @@ type assessOptions struct {
 	html, pdf, json, csv string
 	paper, pictures      string
 	exitByVerdict        bool
+	supportBetween       string
 	streams              streams
 }
 
@@ -55,12 +57,14 @@ func newAssess(s streams) *cobra.Command {
 		Long:  assessHelp,
 		Example: `  tautbook assess main-left.csv
   tautbook assess --cables cables.csv --temperature "17.5 +- 1.5 degC" --loads "as filed" --html summary.html main-left.csv
+  tautbook assess --monte-carlo adaptive --seed 1 main-left.csv
   tautbook assess --format json wire.csv --self-weight "50 N/m"`,
 		Args: atLeastOne,
 		RunE: func(cmd *cobra.Command, files []string) error { return o.run(cmd, files) },
 	}
 	o.readingFlags.bind(cmd)
 	o.conditionFlags.bind(cmd)
+	o.samplingFlags.bind(cmd)
 	fl := cmd.Flags()
 	fl.StringVar(&o.selfWeight, "self-weight", "", "self weight of every cable that has no design values, for example \"50 +- 1 N/m\"")
 	fl.StringVar(&o.deckLoad, "deck-load", "", "deck load of every cable that has no design values, per horizontal metre")
@@ -74,8 +78,27 @@ func newAssess(s streams) *cobra.Command {
 	fl.StringVar(&o.pictures, "pictures", "", "also write the drawings of every cable into this folder, as SVG and PNG")
 	fl.StringVar(&o.json, "json", "", "also write the result as JSON")
 	fl.StringVar(&o.csv, "csv", "", "also write the result as CSV, one line a cable")
+	fl.StringVar(&o.supportBetween, "support-between", "", "how cables pass over supports between two spans: fixed, equal tension (saddle, sheave) or equal horizontal (roller carriage); replaces the column of the cables file")
 	fl.BoolVar(&o.exitByVerdict, "exit-by-verdict", false, "exit 3 or 4 when a cable is not as designed (see tautbook --help)")
 	return cmd
+}
+
+// checked refuses values that no flag can have; it gives how cables pass over supports, "" for as filed.
+func (o *assessOptions) checked() (over survey.SupportBetween, err error) {
+	if !(o.rejectBeyond >= 0) {
+		return "", usageError{fmt.Errorf("--reject-beyond is %g, expected 0 or more", o.rejectBeyond)}
+	}
+	if p := fieldsheets.Paper(o.paper); p != fieldsheets.A4 && p != fieldsheets.Letter {
+		return "", usageError{fmt.Errorf("--paper is %q, expected A4 or Letter", o.paper)}
+	}
+	over, other, err := survey.ParseSupportBetween(o.supportBetween)
+	if err == nil && over != other {
+		err = errors.New("one word holds for every support; for each end of a span use the column support_between of the cables file")
+	}
+	if err != nil {
+		return "", usageError{fmt.Errorf("--support-between: %w", err)}
+	}
+	return over, nil
 }
 
 func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
@@ -83,11 +106,13 @@ func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
 	if err != nil {
 		return err
 	}
-	if !(o.rejectBeyond >= 0) {
-		return usageError{fmt.Errorf("--reject-beyond is %g, expected 0 or more", o.rejectBeyond)}
+	over, err := o.checked()
+	if err != nil {
+		return err
 	}
-	if p := fieldsheets.Paper(o.paper); p != fieldsheets.A4 && p != fieldsheets.Letter {
-		return usageError{fmt.Errorf("--paper is %q, expected A4 or Letter", o.paper)}
+	sampling, err := o.sampling(cmd)
+	if err != nil {
+		return err
 	}
 	in, err := o.read(files, *o.values["structure"], o.streams)
 	if err != nil {
@@ -108,10 +133,20 @@ func (o *assessOptions) run(cmd *cobra.Command, files []string) error {
 	if plain != nil && !slices.ContainsFunc(cases, func(c tension.Case) bool { return c.Design == plain }) {
 		fmt.Fprintf(o.streams.err, "tautbook: --self-weight and --deck-load are not used: %s has design values for every cable\n", in.cables)
 	}
+	shown := newProgress(o.streams)
+	if sampling != nil {
+		sampling.Progress = shown.add
+	}
+	for i := range cases {
+		cases[i].Sampling = sampling
+		cases[i].NoDrawing = !o.draws()
+	}
 	cables, err := assessAll(cases)
+	shown.end()
 	if err != nil {
 		return err
 	}
+	in.continuous = tension.JoinSpans(cables, over)
 	report := newReport(in, cables, o.streams)
 	if err := o.write(write, report); err != nil {
 		return err
@@ -154,11 +189,17 @@ func (o *assessOptions) plainLoad() (*survey.Design, error) {
 	return d, nil
 }
 
-// casesOf pairs every surveyed span with its design values.
+// draws reports whether some sheet has pictures.
+func (o *assessOptions) draws() bool {
+	return o.format == "html" || o.html != "" || o.pdf != "" || o.pictures != ""
+}
+
+// casesOf pairs every surveyed span with its design values. The points go from the surveys to the cases.
 func casesOf(in input, plain *survey.Design, opts fit.Options) (cases []tension.Case) {
 	index := survey.IndexDesigns(in.designs)
 	for _, sv := range in.surveys {
-		for _, sp := range sv.Spans {
+		for i, sp := range sv.Spans {
+			sv.Spans[i].Points = nil // the case has them now, and lets go of them when it is done
 			d := index.Of(sv.Conditions.Structure, sp.Cable, sp.Span)
 			if d == nil {
 				d = plain
@@ -184,6 +225,7 @@ func assessAll(cases []tension.Case) ([]tension.Assessment, error) {
 				if out[i], errs[i] = tension.Assess(cases[i]); errs[i] != nil {
 					errs[i] = fmt.Errorf("%s: %w", cases[i].File, errs[i])
 				}
+				cases[i].Points = survey.SpanPoints{} // many files of points do not fit in memory beside their results
 			}
 		})
 	}
@@ -197,7 +239,7 @@ func assessAll(cases []tension.Case) ([]tension.Assessment, error) {
 
 func newReport(in input, cables []tension.Assessment, s streams) fieldsheets.Report {
 	return fieldsheets.NewReport(fieldsheets.Tool{Name: "tautbook", Version: version()}, s.now(),
-		fieldsheets.Input{Surveys: in.surveys, CablesFile: in.cables, CablesNotices: in.notices}, cables)
+		fieldsheets.Input{Surveys: in.surveys, CablesFile: in.cables, CablesNotices: in.notices, Continuous: in.continuous}, cables)
 }
 
 // writerFor is the printer of a format.

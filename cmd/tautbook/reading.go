@@ -10,6 +10,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"tautbook/survey"
+	"tautbook/tension"
 )
 
 // readingFlags say how survey files are to be understood.
@@ -39,6 +40,8 @@ type input struct {
 	designs []survey.Design
 	notices []survey.Notice // of the cables file
 	cables  string          // its name, "" when there is none
+
+	continuous []tension.Continuous // what the spans of one cable say together
 }
 
 // read reads the cables file and every survey.

@@ -37,6 +37,10 @@ func (e Equation) Rate(psi float64) Lengths {
 
 // Between integrates from psi a to psi b.
 func (e Equation) Between(a, b float64) (l Lengths) {
+	if e.KQ == 0 {
+		l, _ = e.ownWeight(a, b)
+		return l
+	}
 	half := (b - a) / 2
 	r, panels := ruleFor(half)
 	half /= float64(panels)
@@ -50,6 +54,20 @@ func (e Equation) Between(a, b float64) (l Lengths) {
 		}
 	}
 	return Lengths{l.S * half, l.X * half, l.Y * half}
+}
+
+// ownWeight is Between without a load even along the horizontal, in closed form (Irvine 1981, sec. 1.3), and the integral
+// of the slope over S. Differences of hyperbolic functions are products, so that short and steep spans keep their digits.
+func (e Equation) ownWeight(a, b float64) (l Lengths, lift float64) {
+	half := math.Sinh((b - a) / 2)
+	sh := math.Sinh((a + b) / 2)
+	ch := math.Sqrt(1 + sh*sh)
+	l.S = 2 * ch * half / e.KW // sinh b - sinh a
+	rise := 2 * sh * half / e.KW
+	lift = l.S * sh * math.Sqrt(1+half*half) // (sinh(b)^2 - sinh(a)^2) / 2: the mean slope is sinh(mid) cosh(half)
+	l.X = e.G * ((b-a)/e.KW + e.Eta*l.S)
+	l.Y = e.G * (rise + e.Eta*lift)
+	return l, lift
 }
 
 // Below integrates (t - slope) dx from psi a to psi b: the height, m, over a line of that slope, without subtracting heights.
@@ -69,6 +87,11 @@ func (e Equation) Below(a, b, slope float64) (z float64) {
 
 // ByLogTension is the derivative of Between by ln H at fixed psi a and b, with loads and axial stiffness kept.
 func (e Equation) ByLogTension(a, b float64) (l Lengths) {
+	if e.KQ == 0 {
+		l, lift := e.ownWeight(a, b)
+		soft := e.G * e.Eta
+		return Lengths{l.S, l.X + soft*l.S, l.Y + soft*lift}
+	}
 	half := (b - a) / 2
 	r, panels := ruleFor(half)
 	half /= float64(panels)

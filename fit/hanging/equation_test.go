@@ -78,3 +78,22 @@ func TestSpanThatCannotBe(t *testing.T) {
 		}
 	}
 }
+
+// Without a load along the horizontal the lengths come in closed form; by quadrature they are the same.
+func TestOwnWeightAgainstQuadrature(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		e := equations(t)
+		e.KQ, e.KW = 0, e.KW+e.KQ
+		a := rapid.Float64Range(-2, 2).Draw(t, "a")
+		b := a + math.Pow(10, rapid.Float64Range(-6, 0.3).Draw(t, "log range"))
+		near := e
+		near.KQ = 1e-300 // the same figure, by quadrature
+		for _, c := range [][2]Lengths{{e.Between(a, b), near.Between(a, b)}, {e.ByLogTension(a, b), near.ByLogTension(a, b)}} {
+			for _, d := range [][2]float64{{c[0].S, c[1].S}, {c[0].X, c[1].X}, {c[0].Y, c[1].Y}} {
+				if math.Abs(d[0]-d[1]) > 4e-15*c[1].S*math.Cosh(2+math.Abs(a)) {
+					t.Fatalf("%.17g, by quadrature %.17g", d[0], d[1])
+				}
+			}
+		}
+	})
+}

@@ -19,6 +19,8 @@ func newRule(n int) rule {
 // an n-point rule over a half-range r has an error of order rho^(-2n) with rho = d + sqrt(1 + d^2), d = pi/(2r)
 // (Trefethen 2008, SIAM Review 50, 67-87). The bounds below keep that under 1e-17.
 var (
+	rule4  = newRule(4)  // r <= 0.02
+	rule6  = newRule(6)  // r <= 0.1
 	rule8  = newRule(8)  // r <= 0.25
 	rule16 = newRule(16) // r <= 1
 	rule32 = newRule(32) // r <= maxHalfRange
@@ -29,6 +31,10 @@ const maxHalfRange = 2.5
 // ruleFor picks the cheapest rule that is exact to rounding for half-range r, and the number of equal panels.
 func ruleFor(r float64) (rule, int) {
 	switch r = math.Abs(r); {
+	case r <= 0.02:
+		return rule4, 1
+	case r <= 0.1:
+		return rule6, 1
 	case r <= 0.25:
 		return rule8, 1
 	case r <= 1:
