@@ -157,10 +157,10 @@ func residualText(v station.Residual) string {
 	return fmt.Sprintf("the %s from %s to %s, off by %.1f\"", v.What, quote(v.Setup), quote(v.Target), v.Value/secondOfArc)
 }
 
-// settle puts the reduction into the survey and gives the points of spans seen from several set-ups what those share. m points of one
-// set-up have its shift against the reference set-up in common; points are fitted as independent, so each gets m times the
-// covariance of that shift: their mean then has the uncertainty that it really has. The reference is the set-up with the most points of the
-// span, whose own shift and turn move all points together and leave shape and tension alone. This is on the safe side for single points.
+// settle puts the reduction into the survey and gives the points of spans seen from several set-ups what those differ by. The m points of one
+// set-up share its shift and turn against the others; points are fitted as independent, so each gets m times that covariance: whatever
+// weights c the fit gives them, (sum c)^2 <= m sum c^2 (Cauchy and Schwarz), so U is never too small and can be several times too large. Half of the difference of two set-ups is laid on each, so that neither loses its weight to the other. What all set-ups of a
+// span share moves the points together and leaves shape and tension alone.
 func (d *reduction) settle(sv *Survey) {
 	sv.Reduction, sv.Header = d.told, d.header
 	if !d.stated {
@@ -168,32 +168,55 @@ func (d *reduction) settle(sv *Survey) {
 	}
 	for i := range sv.Spans {
 		sp := &sv.Spans[i]
-		count, reference := map[string]int{}, ""
+		count := map[string]int{}
+		var homes []string
 		for _, p := range sp.Points {
 			home := d.network.Home[p.ID]
-			if count[home]++; count[home] > count[reference] || reference == "" {
-				reference = home
+			if count[home]++; count[home] == 1 {
+				homes = append(homes, home)
 			}
 		}
-		widen := func(p *Point) {
-			home := d.network.Home[p.ID]
-			c, m := d.network.Between(home, reference, [3]float64{p.E, p.N, p.Z}), float64(max(count[home], 1))
-			for r := range 3 {
-				for k := range 3 {
-					c[r][k] *= m
-				}
-			}
-			p.Cov = p.Cov.plus(covOf(c))
+		if len(homes) > 1 {
+			sv.Reduction = append(sv.Reduction, fmt.Sprintf("%s: seen from %d set-ups; what they differ by is in the accuracy of its points at its upper bound, so U is on the wide side: one set-up that sees the whole span gives a sharper figure", quote(sp.Cable), len(homes)))
 		}
 		for k := range sp.Points {
-			widen(&sp.Points[k])
+			d.widen(&sp.Points[k], homes, count)
 		}
 		for _, end := range []*Point{sp.A, sp.B} {
-			if end != nil && reference != "" {
-				widen(end)
+			if end != nil {
+				d.widen(end, homes, count)
 			}
 		}
 	}
+}
+
+// widen adds the half of what the set-up of a point differs from the other set-ups of its span, on average over them.
+func (d *reduction) widen(p *Point, homes []string, count map[string]int) {
+	home := d.network.Home[p.ID]
+	var sum [3][3]float64
+	others := 0.0
+	for _, other := range homes {
+		if other == home {
+			continue
+		}
+		others++
+		c := d.network.Between(home, other, [3]float64{p.E, p.N, p.Z})
+		for r := range 3 {
+			for k := range 3 {
+				sum[r][k] += c[r][k]
+			}
+		}
+	}
+	if others == 0 {
+		return
+	}
+	m := float64(max(count[home], 1))
+	for r := range 3 {
+		for k := range 3 {
+			sum[r][k] *= m / (2 * others)
+		}
+	}
+	p.Cov = p.Cov.plus(covOf(sum))
 }
 
 // plus adds two covariances.
