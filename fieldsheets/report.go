@@ -62,6 +62,7 @@ type SurveyFile struct {
 	Codes      []survey.CodeUse   `json:"codes"`
 	Guesses    []survey.Guess     `json:"guesses"`
 	Notices    []survey.Notice    `json:"notices"`
+	Reduction  []string           `json:"reduction"` // how raw readings became points; empty for coordinates
 }
 
 // Conditions are those of one file.
@@ -143,7 +144,7 @@ func NewReport(tool Tool, printed time.Time, in Input, cables []tension.Assessme
 func NewSurveyFile(sv *survey.Survey) SurveyFile {
 	c := sv.Conditions
 	f := SurveyFile{File: sv.File, SHA256: sv.SHA256, Encoding: sv.Encoding, Separator: sv.Separator, Decimal: sv.Decimal, LengthUnit: sv.LengthUnit,
-		PointsRead: sv.PointsRead, Columns: noNil(sv.Header), Codes: noNil(sv.Codes), Guesses: noNil(sv.Guesses), Notices: noNil(sv.Notices),
+		PointsRead: sv.PointsRead, Columns: noNil(sv.Header), Codes: noNil(sv.Codes), Guesses: noNil(sv.Guesses), Notices: noNil(sv.Notices), Reduction: noNil(sv.Reduction),
 		Conditions: Conditions{Structure: c.Structure, Temperature: c.CableTemperature, Wind: c.Wind, Loads: c.Loads, Instrument: c.Instrument,
 			Crew: c.Crew, Listed: []RecordedLoad{}, Local: []RecordedLocal{}, Readings: []RecordedReading{}, Notes: noNil(c.Notes)}}
 	for _, l := range c.Listed {

@@ -114,6 +114,9 @@ func (p *textPrinter) file(f SurveyFile) {
 		columns = append(columns, label+" = "+c.Field)
 	}
 	p.wrapped("  columns  ", strings.Join(columns, "; "))
+	for _, t := range f.Reduction {
+		p.wrapped("  reduced  ", cleanSentence(t))
+	}
 	for _, c := range f.Codes {
 		p.wrapped("  code     ", codeText(c))
 	}
@@ -170,6 +173,9 @@ func (p *textPrinter) conditions(f SurveyFile) {
 		if strings.HasPrefix(col.Field, "u_") {
 			accuracy = "with each point"
 		}
+	}
+	if len(f.Reduction) > 0 {
+		accuracy = "with each reading, see reduced"
 	}
 	if c.AccuracyH != nil && c.AccuracyV != nil {
 		accuracy = fmt.Sprintf("%.3g mm horizontal, %.3g mm vertical", 1000**c.AccuracyH, 1000**c.AccuracyV)

@@ -73,6 +73,13 @@ func TestBrokenSurveys(t *testing.T) {
 	})
 }
 
+func TestBrokenReadings(t *testing.T) {
+	broken(t, "readings", 49, func(path string) error {
+		_, err := ReadPointsFile(path, PointOptions{})
+		return err
+	})
+}
+
 func TestBrokenCablesFiles(t *testing.T) {
 	broken(t, "cables", 35, func(path string) error {
 		_, _, err := ReadDesignsFile(path)

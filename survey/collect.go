@@ -43,6 +43,9 @@ func (p *PointReader) collect() (*Survey, error) {
 	}
 	sv.PointsRead = p.rows
 	s.finish()
+	if p.reduced != nil {
+		p.reduced.settle(sv)
+	}
 	return sv, nil
 }
 

@@ -14,6 +14,7 @@ import (
 	"strings"
 	"unicode/utf8"
 
+	"github.com/klauspost/compress/zstd"
 	"golang.org/x/text/encoding/charmap"
 	"golang.org/x/text/encoding/unicode"
 	"golang.org/x/text/transform"
@@ -22,6 +23,13 @@ import (
 // headSize is how much of a file is looked at before anything is decided.
 const headSize = 64 << 10
 
+// zstdMagic are the first bytes of a zstd frame (RFC 8878, 3.1.1), and zstdWindow the largest window that is taken, bytes: the
+// least upper limit that the standard recommends is 8 MiB, and the usual packers stay below this one.
+const (
+	zstdMagic  = "\x28\xb5\x2f\xfd"
+	zstdWindow = 128 << 20
+)
+
 // source is an input as UTF-8 text with what was found out about its bytes.
 type source struct {
 	text     *bufio.Reader
@@ -29,6 +37,7 @@ type source struct {
 	raw      io.Reader // the bytes as received, through the hash
 	encoding string
 	guesses  []Guess
+	close    func() // frees what unpacking holds, nil when there is nothing
 }
 
 // hashed is the SHA-256 of all bytes as received; what is left unread is read first.
@@ -53,8 +62,18 @@ func open(r io.Reader, name, encoding string) (*source, error) {
 			return nil, &InputError{Problems: []Problem{{File: name, Line: 1, Expected: "a gzip file", Mend: "it looks cut off or damaged: fetch it again"}}}
 		}
 		in = bufio.NewReaderSize(z, headSize)
+	} else if magic, _ := in.Peek(len(zstdMagic)); string(magic) == zstdMagic {
+		z, err := zstd.NewReader(in, zstd.WithDecoderConcurrency(1), zstd.WithDecoderMaxWindow(zstdWindow))
+		if err != nil {
+			return nil, fmt.Errorf("%s: cannot read zstd: %w", name, err)
+		}
+		s.close = z.Close
+		in = bufio.NewReaderSize(z, headSize)
 	}
 	head, err := in.Peek(headSize)
+	if cutShort(err) && len(head) == 0 {
+		return nil, &InputError{Problems: []Problem{{File: name, Line: 1, Expected: "the rest of the compressed file", Mend: "it looks cut off or damaged: fetch it again"}}}
+	}
 	if cutShort(err) {
 		err = io.EOF // the reader of the rows tells it, with the line
 	}
@@ -99,7 +118,6 @@ var binaries = []struct{ magic, what, mend string }{
 	{"\xd0\xcf\x11\xe0", "an old spreadsheet or document", "save the sheet as CSV"},
 	{"%PDF", "a PDF", "ask for the table as CSV"},
 	{"LASF", "a laser point file", "export the points as CSV"},
-	{"\x28\xb5\x2f\xfd", "compressed with zstd", "unpack it first; only gzip is read straight"},
 }
 
 // noText refuses well-known binary files by name.
@@ -115,6 +133,12 @@ func noText(in *bufio.Reader, name string) error {
 // cutShort reports whether an error is that of a compressed file that ends too early or is damaged.
 func cutShort(err error) bool {
 	var corrupt flate.CorruptInputError
+	for _, damaged := range []error{zstd.ErrCRCMismatch, zstd.ErrMagicMismatch, zstd.ErrWindowSizeExceeded, zstd.ErrReservedBlockType, zstd.ErrCompressedSizeTooBig,
+		zstd.ErrBlockTooSmall, zstd.ErrUnexpectedBlockSize, zstd.ErrFrameSizeMismatch, zstd.ErrFrameSizeExceeded, zstd.ErrDecoderSizeExceeded} {
+		if errors.Is(err, damaged) {
+			return true
+		}
+	}
 	return errors.Is(err, io.ErrUnexpectedEOF) || errors.Is(err, gzip.ErrChecksum) || errors.Is(err, gzip.ErrHeader) || errors.As(err, &corrupt)
 }
 

@@ -52,6 +52,7 @@ type PointReader struct {
 	settled    bool              // columns and units are settled: conditions that would change them come too late
 	above      string            // the last comment line before the first row
 	codes      map[string]string // codes seen, so that a row with a known code allocates nothing
+	reduced    *reduction        // the points of a file of raw readings, nil for coordinates
 	last       [2]int            // bytes in the last cell of the row in hand and of the one before
 }
 
@@ -65,11 +66,21 @@ func (p *PointReader) guess(what, taken, why, setBy string) {
 // NewPointReader opens a point file: encoding, separator, header and units are settled before it returns, and with them every
 // guess. Conditions at the top of the file are read; those further down are read as they come. The error is an *InputError for
 // a file that is not understood and another error for an option that is not.
+//
+// A file of raw readings is no list of points before it is reduced whole: ReadPoints takes one, NewPointReader refuses it.
 func NewPointReader(r io.Reader, o PointOptions) (*PointReader, error) {
 	src, err := open(r, o.Name, o.Encoding)
 	if err != nil {
 		return nil, err
 	}
+	if line, header := src.readings(); header != "" {
+		return nil, &InputError{Problems: []Problem{{File: o.Name, Line: line, Found: header, Expected: "coordinates, not raw readings", Mend: "reduce the readings first"}}}
+	}
+	return newPointReader(src, o)
+}
+
+// newPointReader is NewPointReader on an opened input.
+func newPointReader(src *source, o PointOptions) (*PointReader, error) {
 	p := &PointReader{opts: o, src: src, rec: newRecords(src.text, o.Name), guesses: src.guesses, codes: map[string]string{}}
 	if err := p.settleDialect(); err != nil {
 		return nil, err
@@ -110,6 +121,9 @@ func (p *PointReader) Next() (Point, error) {
 
 // next is Next without the problems, into pt.
 func (p *PointReader) next(pt *Point) error {
+	if p.reduced != nil {
+		return p.reduced.next(pt)
+	}
 	for {
 		cells, line := p.first, p.firstLine
 		p.first = nil
@@ -285,17 +299,28 @@ func emptyBeyond(cells [][]byte, n int) bool {
 }
 
 // ReadPoints reads a whole survey: points sorted by cable, span and role, with everything that was assumed. The error is an
-// *InputError that lists every problem with its place; nothing is returned then. Every data row ends in exactly one place of the survey: the points
+// *InputError that lists every problem with its place; nothing is returned then. A file of raw readings, known by its header, is reduced to
+// coordinates first (see package station). Every data row ends in exactly one place of the survey: the points
 // or a support of a span, Control, Ground or Ignored.
 func ReadPoints(r io.Reader, o PointOptions) (*Survey, error) {
-	p, err := NewPointReader(r, o)
+	src, err := open(r, o.Name, o.Encoding)
+	if err != nil {
+		return nil, err
+	}
+	if src.close != nil {
+		defer src.close()
+	}
+	if _, header := src.readings(); header != "" {
+		return readReadings(src, o)
+	}
+	p, err := newPointReader(src, o)
 	if err != nil {
 		return nil, err
 	}
 	return p.collect()
 }
 
-// ReadPointsFile is ReadPoints for a file, which may be compressed with gzip. Name defaults to the path.
+// ReadPointsFile is ReadPoints for a file, which may be compressed with gzip or zstd. Name defaults to the path.
 func ReadPointsFile(path string, o PointOptions) (*Survey, error) {
 	f, err := os.Open(path)
 	if err != nil {

@@ -3,12 +3,16 @@ package survey
 import (
 	"bufio"
 	"bytes"
+	"fmt"
 	"io"
 	"unicode/utf8"
 )
 
 // longestLine is the limit on one line, bytes; a longer one is no survey.
 const longestLine = 1 << 20
+
+// mostCells is the limit on the cells of one row; a survey has a dozen.
+const mostCells = 4096
 
 // endOfText is the character (Ctrl-Z) with which old instruments and editors close a text file.
 const endOfText = 0x1a
@@ -19,6 +23,7 @@ type records struct {
 	in        *bufio.Reader
 	name      string
 	separator byte // ',', ';', '\t' or ' ' for runs of blanks
+	seconds   bool // a quote that does not open a cell is the sign of seconds
 	returns   bool // lines end with a lone carriage return
 	line      int  // of the record in hand
 	next      int  // of the line to be read
@@ -93,11 +98,29 @@ func (r *records) read(comment func(line int, text []byte)) ([][]byte, error) {
 		if !utf8.Valid(line) {
 			return nil, r.fault("UTF-8", "the line holds other bytes: say --encoding windows-1252, or save the file as UTF-8")
 		}
-		if bytes.IndexByte(line, '"') < 0 || r.separator == ' ' {
-			return r.split(line), nil
+		if bytes.IndexByte(line, '"') < 0 || r.separator == ' ' || r.seconds && !r.opens(line) {
+			if cells := r.split(line); len(cells) <= mostCells {
+				return cells, nil
+			}
+			return nil, r.fault(fmt.Sprintf("at most %d cells in a row", mostCells), "this is not a survey, or its line ends are lost")
 		}
 		return r.quoted(line)
 	}
+}
+
+// opens reports whether a quote opens a cell of the line.
+func (r *records) opens(line []byte) bool {
+	for len(line) > 0 {
+		if line = bytes.TrimLeft(line, " "); len(line) > 0 && line[0] == '"' {
+			return true
+		}
+		i := bytes.IndexByte(line, r.separator)
+		if i < 0 {
+			break
+		}
+		line = line[i+1:]
+	}
+	return false
 }
 
 // split parts a line without quotes.

@@ -83,7 +83,8 @@ type Survey struct {
 	Conditions Conditions
 	Guesses    []Guess
 	Notices    []Notice
-	Flat       bool // a two-column survey: station and elevation only
+	Reduction  []string // how raw readings became points, one sentence a line; nil for a file of coordinates
+	Flat       bool     // a two-column survey: station and elevation only
 }
 
 // UnmatchedLoads are the listed loads that name a cable or span of which the survey holds no point: a load that would be

@@ -52,7 +52,7 @@ type Assessment struct {
 
 	Drawing Drawing `json:"-"`
 
-	forces *spanForces // what spans of one cable share; nil for a cable of one span
+	forces   *spanForces   // what spans of one cable share; nil for a cable of one span
 	together []fit.Suspect // points that lie off the curve together and are still used
 }
 

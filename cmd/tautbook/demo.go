@@ -28,7 +28,7 @@ func newDemo(s streams) *cobra.Command {
 		Use:     "demo [DIR]",
 		Short:   "The main job on a built-in invented site",
 		Long:    demoHelp,
-		Example: "  tautbook demo\n  tautbook demo /tmp/site",
+		Example: "  tautbook demo\n  tautbook demo site",
 		Args: func(_ *cobra.Command, args []string) error {
 			if len(args) > 1 {
 				return usageError{fmt.Errorf("found %d arguments, expected one folder at most", len(args))}
