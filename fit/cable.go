@@ -244,7 +244,8 @@ func (r *Result) solve(w *workspace, share float64, o Options) error {
 	}
 	z0 /= float64(len(r.Observations))
 	p := &w.problem
-	*p = curveProblem{obs: r.Observations, base: Curve{S1: lo, S2: hi, SelfShare: share}, z0: z0, n: 3, cusps: p.cusps}
+	p.obs, p.base, p.z0, p.n = r.Observations, Curve{S1: lo, S2: hi, SelfShare: share}, z0, 3
+	p.loads, p.columns, p.records = nil, nil, nil
 	var start gradient
 	if r.locals == nil {
 		p.start(start[:])

@@ -18,6 +18,7 @@ type curveProblem struct {
 	n       int // number of parameters
 	cusps   []Cusp
 	records []record
+	e       evaluator
 }
 
 func (p *curveProblem) Size() (m, n int) { return len(p.obs) + len(p.records), p.n }
@@ -80,7 +81,8 @@ func (e *evaluator) foot(o *Observation, z0 float64, g *gradient) (r, sigma floa
 // Evaluate: at the foot the derivative by the foot's own station vanishes, so that of the distance is exactly that of the
 // height there over the standard deviation across the curve.
 func (p *curveProblem) Evaluate(theta, r, j []float64) {
-	e := p.curve(theta).evaluatorBy(p.columns)
+	e := &p.e
+	e.set(p.curve(theta), p.columns)
 	if j == nil {
 		for i := range p.obs {
 			r[i], _ = e.foot(&p.obs[i], p.z0, nil)

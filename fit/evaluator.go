@@ -17,11 +17,17 @@ type evaluator struct {
 func (c Curve) evaluator() evaluator { return c.evaluatorBy(nil) }
 
 // evaluatorBy is evaluator with derivatives by sizes and places of local loads as well, in the given columns.
-func (c Curve) evaluatorBy(columns []column) evaluator {
-	e := evaluator{c: c, hold: -1}
+func (c Curve) evaluatorBy(columns []column) (e evaluator) {
+	e.set(c, columns)
+	return e
+}
+
+// set prepares the evaluator for another curve; a fit keeps one, so that nothing is cleared or copied at every step.
+func (e *evaluator) set(c Curve, columns []column) {
+	e.c, e.hold, e.loads = c, -1, nil
 	if len(c.Cusps) > 0 {
 		e.loads = c.cusped(columns)
-		return e
+		return
 	}
 	switch c.Shape() {
 	case Catenary:
@@ -29,7 +35,6 @@ func (c Curve) evaluatorBy(columns []column) evaluator {
 	case Mixed:
 		e.mix, e.ok = c.mixed()
 	}
-	return e
 }
 
 // at is height, slope and second derivative at station s; g, when not nil, gets the gradient of the height.
