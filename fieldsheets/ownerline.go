@@ -96,6 +96,8 @@ func howSure(a *tension.Assessment) string {
 		return "at least 95 %" + onRecord + "."
 	case a.Verdict == tension.OffDesign:
 		return "that something is off is at least 95 % sure; which of the causes it is stays open."
+	case a.DecidedBy == tension.ByImplausible:
+		return notKnown + ": the supports, their codes or the design values cannot be right."
 	case a.Verdict == tension.Undecided && e != nil && e.Ratio != nil:
 		return fmt.Sprintf("slack %s, inside the limits %s, overload %s%s.", tension.Probability(e.PSlack), tension.Probability(e.PInside), tension.Probability(e.POverload), onRecord)
 	case a.Verdict == tension.Undecided:

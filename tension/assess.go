@@ -291,12 +291,59 @@ func (j *judgement) uCurvature() float64 { return j.in.few * math.Sqrt(j.r.Cov[2
 func (j *judgement) unfit() string {
 	r := j.r
 	switch l := r.B.Station - r.A.Station; {
+	case r.Torn != nil:
+		return fmt.Sprintf("%d of %d points lie off the curve that the rest agrees on, too many to leave out.", len(r.Torn), len(r.Observations)+len(r.Rejected))
 	case r.RMS > 0.005*l || r.AcrossRMS > 0.05*l:
 		return fmt.Sprintf("The points do not lie on one hanging curve: they scatter by %s in height and %s across the plane.", Metre.About(r.RMS), Metre.About(r.AcrossRMS))
 	case j.in.x[inCurvature] < -3*j.uCurvature():
 		return fmt.Sprintf("The points bulge upwards (sag at mid-span %s): this is not a hanging cable.", Metre.Figure(j.a.Fit.SagMid))
 	}
 	return ""
+}
+
+// markOff is how far, m or as a part of the chord, the fitted cable may pass a surveyed support mark before the mark, its code or its
+// height is taken for wrong: pins and saddles are no larger. Common practice, no source.
+const (
+	markOff      = 0.3
+	markOffShare = 0.01
+)
+
+// implausible says why the expected tension cannot be right, whatever the probabilities say: a surveyed support that is not at the end of
+// this cable, or a designed cable that would have broken over today's supports. "" when nothing speaks against it.
+func (j *judgement) implausible() string {
+	y, length := &j.p.y, j.r.B.Station-j.r.A.Station
+	for _, m := range j.marks() {
+		if size := math.Abs(m.off.Value); size > math.Max(markOff, markOffShare*length) && size > 3*m.off.U {
+			return fmt.Sprintf("The fitted cable misses the mark of support %s by %s: its height, its place or its code is wrong, or the cable does not end there.",
+				m.name, Metre.Figure(Quantity{Value: size, U: m.off.U}))
+		}
+	}
+	if e := y[outHExpected] / y[outH] * y[outGreatestT]; j.p.known(outHExpected) && j.in.have[inBreaking] && e > j.in.x[inBreaking] {
+		return fmt.Sprintf("Over today's supports the designed cable would carry %s, more than its breaking load of %s: design values, unit or supports are wrong.",
+			force(Quantity{Value: e, U: e / y[outHExpected] * j.p.u(outHExpected)}), force(Quantity{Value: j.in.x[inBreaking]}))
+	}
+	return ""
+}
+
+// mark is how far above (below: negative) a surveyed support mark the fitted cable passes, m.
+type mark struct {
+	name string
+	off  Quantity
+}
+
+// marks are those of the surveyed supports.
+func (j *judgement) marks() (out []mark) {
+	r := j.r
+	for i, e := range []struct {
+		name string
+		end  fit.End
+		z    float64
+	}{{"A", r.A, r.Curve.Z1}, {"B", r.B, r.Curve.Z2}} {
+		if e.end.Surveyed {
+			out = append(out, mark{e.name, Quantity{Value: e.z - e.end.MarkZ, U: math.Hypot(math.Sqrt(r.Cov[i][i]), e.end.UMarkZ)}})
+		}
+	}
+	return out
 }
 
 // atLeast is the 95 % lower bound of H when the curve is too flat for an estimate: load over the greatest curvature that

@@ -150,6 +150,7 @@ func (j *judgement) decide() {
 	e := evidence{record: j.record, pSlack: math.NaN(), pInside: math.NaN(), pOver: math.NaN(), pLoadOver: math.NaN(),
 		pRivalLess: math.NaN(), pRivalMore: math.NaN(), pStrength: math.NaN(), pRivalUseOver: math.NaN()}
 	e.unfit = j.unfit() != ""
+	e.implausible = j.implausible() != ""
 	j.readEvidence(&e)
 	if x := j.a.Expected; x != nil {
 		e.compared = true

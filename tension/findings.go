@@ -5,7 +5,6 @@ import (
 	"math"
 	"strings"
 
-	"tautbook/fit"
 	"tautbook/survey"
 )
 
@@ -137,28 +136,17 @@ func (j *judgement) tellTemperature() {
 }
 
 func (j *judgement) tellSupports() {
-	r := j.r
 	if !j.in.frame.surveyed {
 		j.add("supports-not-surveyed", Look, "Both supports must be surveyed and coded A and B for reactions at the supports; those given are at the outermost points. A moved support would not be seen.")
 	}
-	for _, e := range []struct {
-		name string
-		end  fit.End
-		z    float64
-		at   int
-	}{{"A", r.A, r.Curve.Z1, 0}, {"B", r.B, r.Curve.Z2, 1}} {
-		if !e.end.Surveyed {
-			continue
-		}
-		off := e.z - e.end.MarkZ
-		u := math.Sqrt(r.Cov[e.at][e.at] + e.end.UMarkZ*e.end.UMarkZ)
-		if math.Abs(off) > 3*u {
+	for _, m := range j.marks() {
+		if math.Abs(m.off.Value) > 3*m.off.U {
 			word := "above"
-			if off < 0 {
+			if m.off.Value < 0 {
 				word = "below"
 			}
 			j.add("mark-off-cable", Look, "The fitted cable passes %s %s the mark of support %s. Either the mark is not on the centre line, or the cable bends near the support, or the code is wrong.",
-				Millimetre.Figure(Quantity{Value: math.Abs(off), U: u}), word, e.name)
+				Millimetre.Figure(Quantity{Value: math.Abs(m.off.Value), U: m.off.U}), word, m.name)
 		}
 	}
 	j.tellMoved("span", "farther apart", "closer together", outChord, inSpan)

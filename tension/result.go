@@ -38,7 +38,7 @@ type Assessment struct {
 	MonteCarlo               *MonteCarlo    `json:"monte_carlo,omitempty"`
 
 	Verdict   Verdict      `json:"verdict"`
-	DecidedBy string       `json:"decided_by"` // the rule that gave the verdict: strength, rival strength, load, tension, two readings, implied load, inside, coarse, none, unfit, reading, "reading, load" or conflict
+	DecidedBy string       `json:"decided_by"` // the rule that gave the verdict: strength, rival strength, load, tension, two readings, implied load, inside, coarse, none, unfit, implausible, reading, "reading, load" or conflict
 	Reason    string       `json:"reason"`     // one sentence: why this verdict
 	NextStep  string       `json:"next_step"`  // one sentence: what to do or to measure now
 	Findings  []Finding    `json:"findings"`

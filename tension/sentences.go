@@ -12,6 +12,8 @@ func (j *judgement) reason() string {
 	switch j.ground {
 	case groundUnfit:
 		return j.unfit() + " No tension can be read from them."
+	case groundImplausible:
+		return j.implausible() + " Held against that, no verdict would mean anything."
 	case groundReading, groundReadLoad:
 		return j.byReading()
 	case groundConflict:
@@ -156,6 +158,8 @@ func (j *judgement) nextStep() string {
 	switch j.ground {
 	case groundUnfit:
 		return "Check codes, units and the order of columns with \"tautbook check\"; give the points of one cable at a time (codes, or --code CODE=ignore)."
+	case groundImplausible:
+		return "Check codes and heights of the supports, the design span and rise, and their units; survey the supports again. Do not take up or let out on this sheet."
 	case groundReading:
 		switch j.a.Verdict {
 		case AsDesigned:

@@ -23,10 +23,10 @@ func (j *judgement) tellLocal() {
 		case l.From != FoundInShape:
 			j.add("local-load", Note, "Local load on record at station %s: %s, %s (%s).", Metre.Figure(l.Station), orUnnamed(l.What), size, l.From)
 		case l.Kink.Value > 0:
-			j.add("local-load-found", Act, "The shape has a kink at station %s: a local load of %s hangs there that no record names (probability of such a kink by chance: %s). Go and look. Every force here counts it in.",
+			j.add("local-load-found", Act, "The shape has a kink at station %s, as of a local load of %s that no record names (probability of such a kink by chance: %s), or as of neighbours surveyed wrongly together. Go and look. Every force here counts the load in.",
 				Metre.Figure(l.Station), size, Probability(*l.Chance))
 		default:
-			j.add("local-lift-found", Act, "The shape has an upward kink at station %s: something holds the cable up there (a prop, a branch, a stay) with %s (probability by chance: %s). Go and look.",
+			j.add("local-lift-found", Act, "The shape has an upward kink at station %s, as if something held the cable up there (a prop, a branch, a stay) with %s (probability by chance: %s), or as of neighbours surveyed wrongly together. Go and look. Every force here counts the lift in.",
 				Metre.Figure(l.Station), strings.TrimPrefix(size, "-"), Probability(*l.Chance))
 		}
 	}

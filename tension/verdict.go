@@ -22,14 +22,19 @@ const (
 	groundCoarse        ground = "coarse"
 	groundNone          ground = "none"
 	groundUnfit         ground = "unfit"         // the points are no hanging cable
+	groundImplausible   ground = "implausible"   // supports or design values cannot be right
 	groundReading       ground = "reading"       // by a direct reading of the tension
 	groundReadLoad      ground = "reading, load" // shape and direct reading give a load above the design load
 	groundConflict      ground = "conflict"      // the direct reading contradicts the record of loads
 )
 
+// ByImplausible is Assessment.DecidedBy of a cable whose supports or design values cannot be right.
+const ByImplausible = string(groundImplausible)
+
 // evidence is what the verdict rests on. Probabilities are NaN when they could not be worked out; NaN is never sure.
 type evidence struct {
-	unfit                    bool // the points are no hanging cable
+	unfit                    bool // the points are no hanging cable, or too many contradict each other
+	implausible              bool // the expected tension rests on supports or design values that cannot be right
 	compared                 bool // there is an expected tension
 	pSlack, pInside, pOver   float64
 	record                   survey.LoadStatus
@@ -58,7 +63,11 @@ func decide(e evidence) (Verdict, ground) {
 	switch {
 	case e.unfit:
 		return Undecided, groundUnfit
-	case e.pReadUse >= sure, e.pReadOver >= sure:
+	case e.pReadUse >= sure:
+		return Overload, groundReading
+	case e.implausible && !(e.pStrength >= sure) && !(e.pReadLoad >= sure) && !(looked && e.pLoadOver >= sure):
+		return Undecided, groundImplausible // what is left rests on the expected tension
+	case e.pReadOver >= sure:
 		return Overload, groundReading
 	case looked && e.readDenies:
 		return OffDesign, groundConflict

@@ -52,6 +52,10 @@ func TestDecide(t *testing.T) {
 		{"coarse", with(func(e *evidence) { e.pSlack, e.pInside, e.pOver = 0.3, 0.6, 0.1 }), Undecided, groundCoarse},
 		{"just not sure", with(func(e *evidence) { e.pSlack, e.pInside, e.pOver = 0.949, 0.051, 0 }), Undecided, groundCoarse},
 		{"just sure", with(func(e *evidence) { e.pSlack, e.pInside, e.pOver = 0.95, 0.05, 0 }), Slack, groundTension},
+		{"supports that cannot be right", with(func(e *evidence) { slack(e); e.implausible = true }), Undecided, groundImplausible},
+		{"the same, a reading of a low tension", with(func(e *evidence) { e.implausible, e.pReadSlack = true, 0.99 }), Undecided, groundImplausible},
+		{"the same, over strength all the same", with(func(e *evidence) { e.implausible, e.pStrength = true, 0.99 }), Overload, groundStrength},
+		{"the same, load on record above the design load", with(func(e *evidence) { e.implausible, e.pLoadOver = true, 0.99 }), Overload, groundLoad},
 		{"rival unknown", with(func(e *evidence) { open(e); e.rivalKnown, e.pRivalMore, e.pRivalLess = false, nan, nan }), AsDesigned, groundInside},
 	} {
 		if got, why := decide(c.e); got != c.want || why != c.why {
