@@ -18,6 +18,10 @@ func reconciledSentence(r *Reconciled) string {
 		}
 		return text + "."
 	case CannotTell:
+		if r.loadAgainstLength() {
+			return fmt.Sprintf("The load on record and the designed length do not go together: the load %s, or the length %s. The verdict takes the load, because somebody looked at it; a direct reading of the tension would confirm it.",
+				r.needs(pieceLoad), r.needs(pieceLength))
+		}
 		text := "The evidence contradicts itself and cannot tell which piece is wrong: "
 		for i, name := range r.Suspected {
 			if i > 0 {
@@ -29,6 +33,17 @@ func reconciledSentence(r *Reconciled) string {
 	default:
 		return fmt.Sprintf("More than one piece of evidence is wrong: whichever one is left out, the rest still contradicts itself (probability by chance: %s).", Probability(r.Chance))
 	}
+}
+
+// loadAgainstLength reports whether a load that was looked at and the designed length are all the evidence: then the verdict has chosen
+// between them, and the sentence must not sound as if it had not.
+func (r *Reconciled) loadAgainstLength() bool {
+	for _, p := range r.Pieces {
+		if strings.HasPrefix(p.Name, pieceReading) {
+			return false
+		}
+	}
+	return r.Looked && r.piece(pieceLoad).Needed != nil && r.piece(pieceLength).Needed != nil
 }
 
 // apartBy says what would tell the suspected pieces apart.
@@ -52,7 +67,7 @@ func (r *Reconciled) needs(name string) string {
 	}
 	digits := p.Scale()
 	return fmt.Sprintf("would have to be %s instead of %s (%.1f standard uncertainties apart)",
-		digits.Value(Quantity{Value: *p.Needed, U: *p.UApart}), digits.Value(Quantity{Value: p.Given.Value, U: *p.UApart}), math.Abs(*p.Residual))
+		digits.Figure(Quantity{Value: *p.Needed, U: *p.UApart}), digits.Value(p.Given), math.Abs(*p.Residual))
 }
 
 // agreesSentence says what agrees, and what that says of a load that nobody looked at.
