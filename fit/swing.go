@@ -75,6 +75,8 @@ func (r *Result) swing() (s *Swing, offset, turn float64) {
 	}
 	u *= r.Widening // neighbours that err alike in height do so in plan
 	test.W /= r.Widening
+	// The depth below the chord is as uncertain as the curvature, and the tangent is offset over depth.
+	u = math.Hypot(u, tan*math.Sqrt(r.Cov[2][2])/r.Curve.Curvature)
 	s.U = u / (1 + tan*tan)
 	s.Chance = test.p()
 	s.Taken = s.Chance < swingChance

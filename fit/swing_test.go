@@ -101,7 +101,7 @@ func (b blown) survey(rng *rand.Rand, n int, sigma, gust float64, marks bool) su
 // The plane of a blown cable, level and inclined, with and without surveyed supports: angle, curvature and forces against the
 // equilibrium in space, with their coverage.
 func TestSwungCable(t *testing.T) {
-	runs := 500
+	runs := 1000
 	if testing.Short() {
 		runs = 150
 	}
