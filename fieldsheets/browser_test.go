@@ -45,6 +45,9 @@ func lookAt(t *testing.T, pages map[string]string) string {
 func TestPagesInTheBrowser(t *testing.T) {
 	pages := map[string]string{"summary": printed(t, "html", sampleReport()), "hostile": printed(t, "html", dress("<img src=x onerror=alert(1)>")),
 		"long": printed(t, "html", dress(strings.Repeat("x", 500))), "right-to-left": printed(t, "html", dress("\u202eשלום عالم"))}
+	for name, text := range map[string]string{"sheet": "plain", "sheet-hostile": "<img src=x onerror=alert(1)>", "sheet-long": strings.Repeat("x", 500)} {
+		pages[name] = sheetPrinted(t, sampleSheet(text))
+	}
 	if found := lookAt(t, pages); found != "" {
 		t.Error(found)
 	}

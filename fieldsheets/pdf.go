@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"io"
 	"strings"
+	"time"
 
 	"codeberg.org/go-pdf/fpdf"
 	"golang.org/x/image/font/gofont/gobold"
@@ -51,11 +52,8 @@ func WritePDF(w io.Writer, r Report, size Paper) error {
 		return err
 	}
 	p := pageOf(r)
-	d.pdf.SetTitle(p.Title, true)
-	d.pdf.SetCreator(r.Tool.Name+" "+r.Tool.Version, true)
-	d.pdf.SetCreationDate(r.Printed)
-	d.pdf.SetModificationDate(r.Printed)
-	d.footer(p)
+	d.properties(p.Title, r.Tool, r.Printed)
+	d.footer(p.Title, r.Tool, r.Printed)
 	d.owner(p)
 	for i := range p.Cables {
 		d.cable(&p.Cables[i])
@@ -64,7 +62,7 @@ func WritePDF(w io.Writer, r Report, size Paper) error {
 		d.joined(&p.Joined[i])
 	}
 	d.provenance(p)
-	d.cautions(p)
+	d.closing(p.Cautions, p.Signers)
 	if err := d.pdf.Output(w); err != nil {
 		return fmt.Errorf("cannot print the PDF: %w", err)
 	}
@@ -85,6 +83,14 @@ func newPaper(size Paper) (*paper, error) {
 	wide, _ := d.pdf.GetPageSize()
 	d.wide = wide - 2*marginMM
 	return d, nil
+}
+
+// properties are what readers of PDF show beside the sheet.
+func (d *paper) properties(title string, tool Tool, printed time.Time) {
+	d.pdf.SetTitle(title, true)
+	d.pdf.SetCreator(tool.Name+" "+tool.Version, true)
+	d.pdf.SetCreationDate(printed)
+	d.pdf.SetModificationDate(printed)
 }
 
 func (d *paper) font(weight string, pt float64) { d.pdf.SetFont("go", weight, pt) }
@@ -122,7 +128,7 @@ func (d *paper) write(text string, lineHeight float64) {
 }
 
 // footer stands on every page.
-func (d *paper) footer(p page) {
+func (d *paper) footer(title string, tool Tool, printed time.Time) {
 	d.pdf.AliasNbPages("")
 	d.pdf.SetFooterFunc(func() {
 		d.pdf.SetY(-footMM)
@@ -130,7 +136,7 @@ func (d *paper) footer(p page) {
 		d.pdf.SetTextColor(68, 68, 68)
 		d.pdf.CellFormat(d.wide/2, 5, "Advice, not a permit: read with the cautions.", "", 0, "L", false, 0, "")
 		d.pdf.CellFormat(d.wide/2, 5, fmt.Sprintf("page %d of {nb}", d.pdf.PageNo()), "", 1, "R", false, 0, "")
-		d.pdf.CellFormat(d.wide, 4, d.shown(p.Title+" · made by "+p.Report.Tool.Name+" "+p.Report.Tool.Version+", printed "+p.Printed), "", 0, "L", false, 0, "")
+		d.pdf.CellFormat(d.wide, 4, d.shown(title+" · made by "+tool.Name+" "+tool.Version+", printed "+printed.Format("2006-01-02 15:04")), "", 0, "L", false, 0, "")
 		d.pdf.SetTextColor(0, 0, 0)
 	})
 }
@@ -177,6 +183,9 @@ type figures struct {
 
 func (d *paper) lay(title string, list []row, wide float64) figures {
 	f := figures{title: title, height: 6.4}
+	if title == "" {
+		f.height = 1
+	}
 	d.font("", bodyPt-1)
 	for _, r := range list {
 		cells := [2][]string{d.split(d.shown(r.Label), labelShare*wide-2), d.split(d.shown(r.Value), (1-labelShare)*wide-2)}
@@ -197,6 +206,9 @@ func rowHeight(cells [2][]string) float64 {
 // put prints a table of figures with its corner at (x, y). Rows that do not fit go to the next page under the repeated title.
 func (d *paper) put(f figures, x, y, wide float64) {
 	head := func(again string) {
+		if f.title == "" {
+			return
+		}
 		d.font("B", bodyPt-0.5)
 		d.pdf.SetXY(x, y)
 		d.pdf.CellFormat(wide, 5.2, d.shown(f.title)+again, "", 0, "L", false, 0, "")

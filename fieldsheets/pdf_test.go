@@ -24,6 +24,11 @@ func pdfText(t testing.TB, r Report, size Paper) string {
 	if err := WritePDF(&out, r, size); err != nil {
 		t.Fatal(err)
 	}
+	return wordsOfPDF(t, out)
+}
+
+func wordsOfPDF(t testing.TB, out bytes.Buffer) string {
+	t.Helper()
 	doc, err := pdf.NewReader(bytes.NewReader(out.Bytes()), int64(out.Len()))
 	if err != nil {
 		t.Fatal(err)

@@ -156,11 +156,11 @@ func orderedLists(f fileView) func(yield func(string, []string) bool) {
 	}
 }
 
-// cautions and signatures close the sheet.
-func (d *paper) cautions(p page) {
-	d.room(90)
+// closing are the cautions and signatures that close every sheet.
+func (d *paper) closing(cautions, signers []string) {
+	d.room(50 + 13*float64(len(signers)))
 	d.heading("Cautions", 12)
-	for _, c := range p.Cautions {
+	for _, c := range cautions {
 		d.bullet(c)
 	}
 	if len(d.missing) > 0 {
@@ -175,9 +175,12 @@ func (d *paper) cautions(p page) {
 		}
 		d.bullet("Characters that the font of this PDF does not have stand as □: " + strings.Join(list, ", ") + ". The HTML sheet shows them.")
 	}
+	if len(signers) == 0 {
+		return
+	}
 	d.pdf.Ln(3)
 	d.table("Signatures", []float64{0.2, 0.55, 0.25}, []string{"", "Name and signature", "Date"}, nil)
-	for _, s := range p.Signers {
+	for _, s := range signers {
 		d.room(13)
 		y := d.pdf.GetY() + 9
 		d.font("", bodyPt)
