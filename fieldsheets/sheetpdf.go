@@ -66,7 +66,7 @@ func (d *paper) section(s *Section, pt float64) {
 	if len(s.Facts) > 0 {
 		var list []row
 		for _, f := range s.Facts {
-			list = append(list, row{f.Label, f.Value})
+			list = append(list, row(f))
 		}
 		d.rows("", list)
 	}
