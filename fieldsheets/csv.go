@@ -224,6 +224,23 @@ func makeColumns() (out []csvColumn) {
 		}
 		return a.Reconciled.Says
 	}))
+	add(textColumn("causes_that_fit", func(a *tension.Assessment) string {
+		if a.Explanation == nil {
+			return ""
+		}
+		var list []string
+		for _, c := range a.Explanation.Causes {
+			if c.Standing == tension.Fits {
+				list = append(list, string(c.Kind))
+			}
+		}
+		return strings.Join(list, "; ")
+	}), textColumn("explanation", func(a *tension.Assessment) string {
+		if a.Explanation == nil {
+			return ""
+		}
+		return a.Explanation.Says
+	}))
 	add(textColumn("reason", func(a *tension.Assessment) string { return a.Reason }), textColumn("next_step", func(a *tension.Assessment) string { return a.NextStep }),
 		csvColumn{"not_determined", func(a *tension.Assessment) string { return strings.Join(missing(a), "; ") }})
 	return out

@@ -88,6 +88,9 @@ func groups(a *tension.Assessment) []group {
 	if a.Direct != nil {
 		out = append(out, directGroup(a))
 	}
+	if a.Explanation != nil {
+		out = append(out, explanationGroup(a))
+	}
 	if a.Reconciled != nil {
 		out = append(out, evidenceGroup(a))
 	}

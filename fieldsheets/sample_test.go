@@ -57,14 +57,20 @@ func full(cable string, v tension.Verdict) tension.Assessment {
 		Verdict:  v, Reason: "The reason in a sentence with 17.16 ± 0.51 kN.", NextStep: "The next step in a sentence.",
 		Findings: []tension.Finding{{ID: "note", Level: tension.Note, Text: "Something to know."}, {ID: "act", Level: tension.Act, Text: "Something to do."}, {ID: "look", Level: tension.Look, Text: "Something to look at."}},
 		Budget:   []tension.BudgetLine{{Input: "self weight on file", Value: "38.00 N/m", U: "0.40 N/m", OnH: 180, OnR: 0.009, Share: 0.7}, {Input: "shape of the cable (survey)", Value: "21 points", U: "rms 2.8 mm", OnH: 20, OnR: 0.001, Share: 0.3}},
-		Drawing:  drawn()}
+		Explanation: &tension.Explanation{ChiSquare: 31, DegreesOfFreedom: 2, Chance: 2e-7, Needed: true, LengthDiffers: *q(0.031, 0.004), DetectableLength: number(0.011),
+			Says: "Extra even load and length gained or lost explain it equally well, and the evidence cannot tell them apart.", Tells: "To tell: a look at the loads.",
+			Causes: []tension.Cause{
+				{Kind: tension.LengthChanged, Standing: tension.Fits, Size: q(0.031, 0.004), Unit: "m", ChiSquare: 0.4, DegreesOfFreedom: 1, Chance: 0.53, Tension: q(17200, 260), Text: "The cable has become 31.0 ± 8.0 mm longer (unstressed) than designed.", Check: "Look at sockets and clamps for about 31 mm of fresh movement."},
+				{Kind: tension.TemperatureWrong, Standing: tension.AgainstRecord, Why: "recorded: 18.0 ± 2.0 °C", Size: q(47, 3), Unit: "degC", ChiSquare: 0.4, DegreesOfFreedom: 1, Chance: 0.53, OffRecord: 23, Text: "The cable was at 47.0 ± 6.0 °C.", Check: "Put a contact thermometer on the cable."},
+				{Kind: tension.LoadAtOnePlace, Standing: tension.DoesNotFit, Unit: "N", ChiSquare: 30, DegreesOfFreedom: 1}}},
+		Drawing: drawn()}
 }
 
 // bare is an assessment from which everything is absent that can be.
 func bare(cable string, v tension.Verdict) tension.Assessment {
 	a := full(cable, v)
 	a.Temperature, a.HorizontalTension, a.Reactions, a.ImpliedLoad, a.UnstressedLength, a.AtDesignTemperature = nil, nil, []tension.Reaction{}, nil, nil, nil
-	a.Expected, a.Rival, a.Stiffness, a.Strength, a.Budget, a.Findings = nil, nil, nil, nil, []tension.BudgetLine{}, []tension.Finding{}
+	a.Expected, a.Rival, a.Explanation, a.Stiffness, a.Strength, a.Budget, a.Findings = nil, nil, nil, nil, nil, []tension.BudgetLine{}, []tension.Finding{}
 	a.Fit.CatenaryConstant, a.Fit.LowPointStation, a.Fit.LowPointElevation, a.Fit.Rejected, a.Fit.Alternatives = nil, nil, nil, []fit.Suspect{}, []fit.Alternative{}
 	a.Load, a.Reconciled = tension.LoadSummary{Record: survey.LoadsNotChecked}, nil
 	a.Drawing.Expected, a.Drawing.Dropped = nil, nil

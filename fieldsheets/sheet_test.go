@@ -66,7 +66,9 @@ func TestSheetsSayTheSame(t *testing.T) {
 	if err := WriteSheetPDF(&out, s, A4); err != nil {
 		t.Fatal(err)
 	}
-	flat := func(text string) string { return strings.Join(strings.Fields(strings.ReplaceAll(text, "\u00a0", " ")), " ") }
+	flat := func(text string) string {
+		return strings.Join(strings.Fields(strings.ReplaceAll(text, "\u00a0", " ")), " ")
+	}
 	prints := map[string]string{"text": flat(sheetText(t, s, TextOptions{})), "HTML": flat(sheetPrinted(t, s)), "PDF": flat(wordsOfPDF(t, out))}
 	for name, p := range prints {
 		for _, want := range []string{"Take up 42", "Stop at 30.0 kN.", "Do this first.", "21 mm", "Tell the owner", "Done by", "as left", "licensed engineer"} {

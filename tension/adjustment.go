@@ -3,6 +3,7 @@ package tension
 import (
 	"errors"
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/mat"
 )
@@ -37,13 +38,17 @@ var errNotDetermined = errors.New("tension: the evidence does not determine the 
 // anew at each step (Pope 1972). With weight P = (A A')^-1, b = dF/dh: dh = -(b'P b)^-1 b'P w, k = -P(w + b dh), e = A'k, chi^2 =
 // e'e with rows - 1 degrees of freedom. The covariance is that of the linear model at the solution. The error wraps errNotDetermined when the
 // conditions are dependent or say nothing of h.
-func adjust(c conditions, h float64) (*adjusted, error) {
+func adjust(c conditions, h float64) (*adjusted, error) { return adjustFrom(c, h, nil) }
+
+// adjustFrom is adjust with the conditions already linearised at the start; nil = not.
+func adjustFrom(c conditions, h float64, l *linearised) (*adjusted, error) {
 	s := &adjusted{h: h, e: make([]float64, c.errors)}
-	var l *linearised
 	moved := math.Inf(1)
-	for range 40 {
+	for i := range 40 {
 		var err error
-		if moved > settled {
+		if i == 0 && l != nil {
+			// as given
+		} else if moved > settled {
 			l, err = c.linear(s.e, s.h)
 		} else { // so near that the derivatives stay
 			err = c.at(s.e, s.h, l.f, l.z)
@@ -124,6 +129,28 @@ func (c conditions) linear(e []float64, h float64) (*linearised, error) {
 		l.zb.SetVec(i, (z[i]-l.z[i])/small)
 	}
 	return l, nil
+}
+
+// pick copies some rows; figures are numbers of those there are, nil = the picked rows themselves.
+func (l *linearised) pick(rows, figures []int) *linearised {
+	_, n := l.a.Dims()
+	out := &linearised{a: mat.NewDense(len(rows), n, nil), b: mat.NewVecDense(len(rows), nil)}
+	for k, i := range rows {
+		out.f = append(out.f, l.f[i])
+		out.a.SetRow(k, l.a.RawRowView(i))
+		out.b.SetVec(k, l.b.AtVec(i))
+	}
+	if figures == nil {
+		out.z, out.za, out.zb = slices.Clone(out.f), mat.DenseCopyOf(out.a), mat.VecDenseCopyOf(out.b)
+		return out
+	}
+	out.za, out.zb = mat.NewDense(len(figures), n, nil), mat.NewVecDense(len(figures), nil)
+	for k, i := range figures {
+		out.z = append(out.z, l.z[i])
+		out.za.SetRow(k, l.za.RawRowView(i))
+		out.zb.SetVec(k, l.zb.AtVec(i))
+	}
+	return out
 }
 
 // solve does one step: it sets the correlates and returns the change of h.

@@ -65,6 +65,7 @@ func Assess(c Case) (Assessment, error) {
 	j.compare()
 	j.reconcile()
 	j.decide()
+	j.explain()
 	if c.Sampling != nil {
 		j.a.MonteCarlo = j.simulate(*c.Sampling)
 	}
@@ -214,9 +215,11 @@ type judgement struct {
 	record             survey.LoadStatus
 	doubted            survey.LoadStatus // what was recorded, when the shape shows a local load that the record does not name
 	temperatureAssumed bool
-	adjusted           *adjusted // of all evidence
-	notReconciled      error     // why the evidence could not be adjusted
-	scatter            float64   // probability of readings that differ by as much as these
+	adjusted           *adjusted   // of all evidence
+	atRecord           *linearised // every condition at the estimates; nil = not worked out yet
+	atRecordRows       []evidenceRow
+	notReconciled      error   // why the evidence could not be adjusted
+	scatter            float64 // probability of readings that differ by as much as these
 	in                 *inputs
 	p                  propagated
 	a                  Assessment

@@ -21,6 +21,7 @@ func (j *judgement) tell() {
 	j.tellLocal()
 	j.tellReading()
 	j.tellReconciled()
+	j.tellExplanation()
 	j.tellLength()
 	j.tellTemperature()
 	j.tellSupports()
@@ -92,7 +93,17 @@ func orUnnamed(s string) string {
 	return s
 }
 
+// tellExplanation says what would explain a cable that is not as recorded.
+func (j *judgement) tellExplanation() {
+	if e := j.a.Explanation; e != nil && e.Needed {
+		j.add("explanation", Look, "%s", strings.TrimSpace(e.Says+" "+e.Tells))
+	}
+}
+
 func (j *judgement) tellLength() {
+	if e := j.a.Explanation; e != nil && e.Needed {
+		return // the explanation says it
+	}
 	l := j.a.UnstressedLength
 	if d := j.a.Direct; d != nil && math.Abs(d.OffRecord) > apart {
 		return // the load on record is not the load: the length that follows from it is none either

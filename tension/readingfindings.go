@@ -38,6 +38,7 @@ func (j *judgement) tellReconciled() {
 	case r == nil && j.notReconciled != nil && len(j.in.readings) > 0:
 		j.add("evidence", Note, "The evidence could not be adjusted together: %v.", strings.TrimPrefix(j.notReconciled.Error(), "tension: "))
 	case r == nil:
+	case len(j.in.readings) == 0 && j.a.Explanation != nil && j.a.Explanation.Needed: // load against length alone: the explanation says it
 	case r.Outcome == Agrees:
 		j.add("evidence", Note, "%s", r.Says)
 	default:

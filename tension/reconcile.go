@@ -2,6 +2,7 @@ package tension
 
 import (
 	"math"
+	"slices"
 	"sync"
 
 	"gonum.org/v1/gonum/mat"
@@ -20,8 +21,9 @@ const (
 // evidenceRow is one condition of the reconciliation.
 type evidenceRow struct {
 	name    string
-	reading *readInput // nil: load or length
+	reading *readInput // nil: load, length or chord
 	length  bool
+	chord   int // inSpan or inRise: the supports as designed; 0 = not
 }
 
 const (
@@ -112,10 +114,22 @@ func (r *Reconciled) figures(s *adjusted) {
 
 // adjustRows sets up and solves the adjustment of some conditions.
 func (j *judgement) adjustRows(rows []evidenceRow) (*adjusted, error) {
-	moves := j.in.statedMoves()
-	hasLength := j.p.known(outS0Design) && j.p.known(outHExpected)
+	c := j.conditionsOf(rows, j.in.statedMoves())
+	if j.record == survey.LoadsNotChecked && j.p.known(outHRead) && j.p.y[outHRead] > 0 {
+		return adjust(c, math.Log(j.p.y[outHRead]))
+	}
+	figures := []int{0, 1}[:c.figures]
+	start, err := j.linearAtRecord(rows, figures)
+	if err != nil {
+		return nil, err
+	}
+	return adjustFrom(c, math.Log(j.p.y[outH]), start)
+}
+
+// conditionsOf are the conditions of some rows; figures are the load and, where there is a designed length, the unstressed length.
+func (j *judgement) conditionsOf(rows []evidenceRow, moves [][]step) conditions {
 	c := conditions{rows: len(rows), errors: len(moves), figures: 1}
-	if hasLength {
+	if j.hasLength() {
 		c.figures = 2
 	}
 	x := make([]float64, len(j.in.x))
@@ -128,11 +142,49 @@ func (j *judgement) adjustRows(rows []evidenceRow) (*adjusted, error) {
 		}
 		return j.in.misfits(x, math.Exp(ln), rows, f, z)
 	}
-	start := j.p.y[outH]
-	if j.record == survey.LoadsNotChecked && j.p.known(outHRead) && j.p.y[outHRead] > 0 {
-		start = j.p.y[outHRead]
+	return c
+}
+
+func (j *judgement) hasLength() bool { return j.p.known(outS0Design) && j.p.known(outHExpected) }
+
+// allRows are all conditions of this span, whether or not somebody looked at the loads: load on record, unstressed length and supports as
+// designed, readings.
+func (j *judgement) allRows() []evidenceRow {
+	rows := []evidenceRow{{name: pieceLoad}}
+	if j.hasLength() {
+		rows = append(rows, evidenceRow{name: pieceLength, length: true})
+		if j.in.frame.surveyed && j.in.have[inSpan] {
+			rows = append(rows, evidenceRow{name: "designed span", chord: inSpan})
+			if j.in.have[inRise] && !j.in.have[inTilt] {
+				rows = append(rows, evidenceRow{name: "designed rise", chord: inRise})
+			}
+		}
 	}
-	return adjust(c, math.Log(start))
+	for i := range j.in.readings {
+		if r := &j.in.readings[i]; r.unused == "" {
+			rows = append(rows, evidenceRow{name: pieceReading + r.name, reading: r})
+		}
+	}
+	return rows
+}
+
+// linearAtRecord are the conditions of some rows linearised at the estimates and the tension that the load on record gives; all rows are
+// worked out once and serve every adjustment that starts there. Figures are numbers of the usual ones, nil = the misfits of the rows.
+func (j *judgement) linearAtRecord(rows []evidenceRow, figures []int) (*linearised, error) {
+	if j.atRecord == nil {
+		all := j.allRows()
+		moves := j.in.statedMoves()
+		l, err := j.conditionsOf(all, moves).linear(make([]float64, len(moves)), math.Log(j.p.y[outH]))
+		if err != nil {
+			return nil, err
+		}
+		j.atRecord, j.atRecordRows = l, all
+	}
+	var at []int
+	for _, r := range rows {
+		at = append(at, slices.IndexFunc(j.atRecordRows, func(o evidenceRow) bool { return o.name == r.name }))
+	}
+	return j.atRecord.pick(at, figures), nil
 }
 
 // misfits fills the conditions, each relative, and the figures load and unstressed length.
@@ -168,6 +220,10 @@ func (in *inputs) misfits(x []float64, h float64, rows []evidenceRow, f, z []flo
 				return err
 			}
 			f[i] = p/x[r.reading.at] - 1
+		case r.chord == inSpan:
+			f[i] = (x[inStationB]-x[inStationA])/x[inSpan] - 1
+		case r.chord == inRise:
+			f[i] = (s.ch.Rise - x[inRise]) / x[inSpan]
 		default:
 			f[i] = h*x[inCurvature]/in.hanging(x, s.load, h, s.per) - 1
 		}

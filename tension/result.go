@@ -33,6 +33,7 @@ type Assessment struct {
 	Rival                    *Rival         `json:"rival_reading,omitempty"`
 	Direct                   *Direct        `json:"direct_reading,omitempty"`
 	Reconciled               *Reconciled    `json:"reconciled,omitempty"`
+	Explanation              *Explanation   `json:"explanation,omitempty"`
 	Stiffness                *Stiffness     `json:"stiffness,omitempty"`
 	Strength                 *Strength      `json:"strength_use"`
 	MonteCarlo               *MonteCarlo    `json:"monte_carlo,omitempty"`
